@@ -1,0 +1,42 @@
+"""The console script. `--version` is answered before anything else is imported."""
+
+import gc
+import os
+import sys
+
+from magsafe import __version__
+
+_FAULT = 70
+
+
+def main() -> None:
+    """Run the command line; a fault of the program leaves with 70, never with the 1 that means stop."""
+    if sys.argv[1:] == ["--version"]:
+        sys.stdout.write(f"magsafe {__version__}\n")
+        return
+    # A command lives a second: collecting cycles while it imports costs a tenth of that and frees nothing. Plug-ins
+    # of the validation library are other people's code, and looking for them takes time too.
+    gc.disable()
+    os.environ.setdefault("PYDANTIC_DISABLE_PLUGINS", "__all__")
+    from magsafe.cli.app import run  # noqa: PLC0415  (not needed for --version)
+
+    debug = "--debug" in sys.argv
+    try:
+        run([argument for argument in sys.argv[1:] if argument != "--debug"])
+    except BrokenPipeError:
+        # The reader closed early, as `head` does: nothing is wrong, and nothing more can be said.
+        sys.stderr.close()
+        sys.exit(0)
+    except Exception as fault:
+        if debug:
+            raise
+        kind = type(fault).__name__
+        sys.stderr.write(
+            f"magsafe: a fault of the program, not of the design ({kind}: {fault}).\n"
+            "Nothing was proven. Run the same command with --debug and report what it prints.\n"
+        )
+        sys.exit(_FAULT)
+
+
+if __name__ == "__main__":
+    main()
