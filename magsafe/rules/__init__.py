@@ -1,0 +1,68 @@
+"""Exposure limits and the time they are averaged over, as data with edition and source.
+
+SI floats and the standard library only. Field limits are RMS, power is that of the envelope's
+crest unless it says "averaged", times are in seconds, shares are fractions 0..1.
+"""
+
+from magsafe.rules.duty import (
+    Mode,
+    OnAirShare,
+    Over,
+    Pattern,
+    TuneUp,
+    UnknownMode,
+    averaged_power,
+    judged_power,
+    mode_duty,
+    mode_named,
+    mode_names,
+    window_share,
+    worst_window_share,
+    worst_window_share_of_shorter_overs,
+)
+from magsafe.rules.limit import (
+    FieldKind,
+    Limit,
+    Provenance,
+    Rule,
+    RuleFileError,
+    Segment,
+    Tier,
+    UnknownRule,
+    Who,
+    load_rule,
+    parse_rule,
+    rule_names,
+)
+from magsafe.rules.table import TableError, UnknownName
+
+__all__ = [
+    "FieldKind",
+    "Limit",
+    "Mode",
+    "OnAirShare",
+    "Over",
+    "Pattern",
+    "Provenance",
+    "Rule",
+    "RuleFileError",
+    "Segment",
+    "TableError",
+    "Tier",
+    "TuneUp",
+    "UnknownMode",
+    "UnknownName",
+    "UnknownRule",
+    "Who",
+    "averaged_power",
+    "judged_power",
+    "load_rule",
+    "mode_duty",
+    "mode_named",
+    "mode_names",
+    "parse_rule",
+    "rule_names",
+    "window_share",
+    "worst_window_share",
+    "worst_window_share_of_shorter_overs",
+]
