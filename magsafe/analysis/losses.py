@@ -1,0 +1,148 @@
+"""Resistances of the loop's parts, each with the ends that different questions need."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from magsafe.design import tables
+from magsafe.design.model import Capacitor, Conductor, Joint, Loop
+from magsafe.design.quantities import Uncertain
+from magsafe.physics import conductor, small_loop
+from magsafe.spread import Spread
+
+
+@dataclass(frozen=True, slots=True)
+class Loss:
+    """The resistance of one part, referred to the port current [ohm].
+
+    `low` may rest on what is typical of a kind; `bare` is the low end that rests on stated values alone, zero
+    where nothing is stated. `grows` is the power of (1 + reactance excess) by which the port sees it grow: 2 along
+    the conductor, 1 for a capacitor of given Q, 0 at the port. `typical` names the rows of common practice used.
+    """
+
+    low: float
+    bare: float
+    likely: float
+    high: float
+    grows: int
+    typical: tuple[str, ...] = ()
+
+    def at(self, end: str, excess: float) -> float:
+        """Return the resistance at one end, with a share of the reactance excess."""
+        value: float = getattr(self, end)
+        return value * (1.0 + excess) ** self.grows
+
+    def spread(self, excess: float) -> Spread:
+        """Return the spread up to the largest reactance excess."""
+        return Spread(self.low, self.likely, self.at("high", excess))
+
+
+def conductivity(made_of: Conductor) -> Spread:
+    """Return the conductivity [S/m] at the conductor's temperature, with the scatter of its material."""
+    if made_of.conductivity is not None:
+        return Spread.exact(made_of.conductivity)
+    row = tables.materials()[made_of.material or ""]
+    warm = float(
+        conductor.conductivity_at(
+            row.conductivity,
+            row.coefficient,
+            made_of.temperature,
+        )
+    )
+    return Spread.exact(warm).widened(row.scatter, row.scatter)
+
+
+def impedance_per_metre(made_of: Conductor, frequency: float) -> tuple[Spread, float]:
+    """Return resistance [ohm/m] with its spread, and internal reactance [ohm/m], of a rod or tube."""
+    sigma = conductivity(made_of)
+    low, likely, high = sigma.low or 0.0, sigma.likely or 0.0, sigma.high or 0.0
+    # A thin wall's resistance does not fall steadily with conductivity: the ends are looked for between.
+    tried = np.append(np.linspace(low, high, 9), likely)
+    radius = np.float64((made_of.outer_diameter or 0.0) / 2.0)
+    at = frequency
+    if made_of.form == "rod":
+        impedance = conductor.rod_impedance(at, tried, radius)
+    else:
+        impedance = conductor.tube_impedance(at, tried, radius, made_of.wall or 0.0)
+    rough = tables.roughness_share()
+    resistance = Spread(
+        float(impedance.real.min()) * (1.0 + (rough.low or 0.0)),
+        float(impedance.real[-1]) * (1.0 + (rough.likely or 0.0)),
+        float(impedance.real.max()) * (1.0 + (rough.high or 0.0)),
+    )
+    return resistance, float(impedance.imag[-1])
+
+
+def conductor_loss(per_metre: Spread, perimeter: float, x: float) -> Loss:
+    """Return the loss of the conductor from its resistance per metre [ohm/m]."""
+    factor = perimeter * float(small_loop.loss_taper(x))
+    low = (per_metre.low or 0.0) * factor
+    return Loss(low, low, (per_metre.likely or 0.0) * factor, (per_metre.high or 0.0) * factor, grows=2)
+
+
+def stated_ends(stated: Uncertain | None, typical: Spread | None) -> tuple[float, float, float, float]:
+    """Return (low, bare, likely, high) of a loss from what is stated and what is typical of its kind.
+
+    A single stated value is its own high end; its low end is the typical low, or zero. Only a stated low lowers
+    the volts without resting on common practice.
+    """
+    typical_low = (typical.low or 0.0) if typical else 0.0
+    if stated is None:
+        known = typical or Spread.exact(0.0)
+        return typical_low, 0.0, known.likely or 0.0, known.high or 0.0
+    if stated.single:
+        return min(typical_low, stated.likely), 0.0, stated.likely, stated.high
+    return stated.low, stated.low, stated.likely, stated.high
+
+
+_PLACES = {"capacitor": 0, "spread": 2, "opposite": 2}
+
+
+def joint_loss(joint: Joint, x: float) -> Loss:
+    """Return the loss of one group of joints, where it sits."""
+    typical = tables.joint_resistance(joint.kind) if joint.kind else None
+    at = x
+    share = {
+        "capacitor": 1.0,
+        "opposite": float(small_loop.opposite_taper(at)) ** 2,
+        "spread": float(small_loop.loss_taper(at)),
+    }[joint.at]
+    low, bare, likely, high = (end * joint.count * share for end in stated_ends(joint.resistance, typical))
+    uses = joint.kind and (joint.resistance is None or joint.resistance.single)
+    rows = (f"joint, {joint.kind}",) if uses else ()
+    return Loss(low, bare, likely, high, _PLACES[joint.at], rows)
+
+
+def joint_losses(loop: Loop, x: float) -> tuple[Loss, ...]:
+    """Return the losses of all joints."""
+    return tuple(joint_loss(joint, x) for joint in loop.joint)
+
+
+def capacitor_loss(part: Capacitor, reactance: float, frequency: float) -> Loss:
+    """Return the series resistance of the capacitor tuned to a loop of this reactance [ohm].
+
+    A Q stated at another frequency is widened to both sides by the square root of the ratio of the frequencies:
+    metal losses grow so (common practice).
+    """
+    typical_q = capacitor_typical(part)
+    if part.series_resistance is not None:
+        typical = Spread(reactance / (typical_q.high or 1.0), None, None)
+        ends = stated_ends(part.series_resistance, typical)
+        rows = (f"capacitor, {part.kind}",) if part.series_resistance.single else ()
+        return Loss(*ends, grows=0, typical=rows)
+    typical = Spread(*(reactance / (q or 1.0) for q in (typical_q.high, typical_q.likely, typical_q.low)))
+    stated = None
+    if part.quality_factor is not None:
+        q, away = part.quality_factor, 1.0
+        if part.quality_factor_at is not None:
+            ratio = frequency / part.quality_factor_at
+            away = max(ratio, 1.0 / ratio) ** 0.5
+        stated = Uncertain(reactance / (q.high * away), reactance / q.likely, reactance * away / q.low, q.single)
+    rows = () if stated is not None and not stated.single else (f"capacitor, {part.kind}",)
+    return Loss(*stated_ends(stated, typical), grows=1, typical=rows)
+
+
+def capacitor_typical(part: Capacitor) -> Spread:
+    """Return the Q that is typical of the capacitor's kind (common practice)."""
+    wiper = part.kind == "air variable" and part.wiper
+    return tables.capacitor_quality_factor("air variable with a wiper" if wiper else part.kind)

@@ -1,0 +1,274 @@
+"""Figures of whole designs: against full-wave values, and by their laws."""
+
+from typing import Any
+
+import pytest
+from designs import MakeDesign, plain_design
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from magsafe.analysis.operating_point import OperatingPoint, operating_point
+
+
+def point(**changes: Any) -> OperatingPoint:
+    made = plain_design(**changes)
+    return operating_point(made, made.transmission[0])
+
+
+def likely(found: OperatingPoint, name: str) -> float:
+    value: float | None = getattr(found.figures, name).spread.likely
+    assert value is not None
+    return value
+
+
+FULL_WAVE = [
+    # frequency, figure, value, tolerance: full-wave values computed independently of this project
+    ("7.1 MHz", "conductor_efficiency", 0.163, 0.02),
+    ("7.1 MHz", "capacitor_peak_voltage", 7950.0, 0.02),
+    ("7.1 MHz", "unloaded_q", 2895.0, 0.02),
+    ("7.1 MHz", "half_power_bandwidth", 4900.0, 0.02),
+    ("14.2 MHz", "conductor_efficiency", 0.70, 0.02),
+    ("14.2 MHz", "capacitor_peak_voltage", 8000.0, 0.03),
+    ("14.2 MHz", "unloaded_q", 1469.0, 0.04),
+]
+
+
+@pytest.mark.parametrize(("frequency", "figure", "value", "tolerance"), FULL_WAVE)
+def test_a_metre_of_copper_against_full_wave_values(
+    frequency: str, figure: str, value: float, tolerance: float
+) -> None:
+    found = point(transmission__0__frequency=frequency)
+    assert likely(found, figure) == pytest.approx(value, rel=tolerance)
+    spread = getattr(found.figures, figure).spread
+    assert spread.low <= value * (1.0 + 0.005)
+    assert spread.high >= value * (1.0 - 0.005)
+
+
+def test_power_in_is_radiated_and_lost() -> None:
+    found = point(
+        capacitor__series_resistance="20 mohm",
+        loop__joint=[{"name": "lugs", "resistance": "1 mohm", "at": "opposite"}],
+    )
+    current = likely(found, "capacitor_rms_current")
+    parts = ("radiation", "conductor", "joint", "capacitor", "ground")
+    spent = sum(current**2 * likely(found, f"{part}_resistance") for part in parts)
+    assert spent == pytest.approx(100.0, rel=1e-9)
+    heat = current**2 * likely(found, "capacitor_resistance")
+    assert likely(found, "capacitor_dissipation") == pytest.approx(heat, rel=1e-9)
+    efficiency = likely(found, "radiation_resistance") / likely(found, "total_resistance")
+    assert likely(found, "conductor_efficiency") == pytest.approx(efficiency, rel=1e-9)
+
+
+def test_a_joint_opposite_the_capacitor_counts_with_the_larger_current_there() -> None:
+    def joint(at: str) -> float:
+        joints = [{"name": "lugs", "resistance": "1 mohm", "at": at}]
+        return likely(point(loop__joint=joints, transmission__0__frequency="14.2 MHz"), "joint_resistance")
+
+    found = point(transmission__0__frequency="14.2 MHz")
+    taper = likely(found, "largest_current") / likely(found, "capacitor_rms_current")
+    assert joint("capacitor") == pytest.approx(1e-3)
+    assert joint("opposite") == pytest.approx(1e-3 * taper**2)
+    assert joint("capacitor") < joint("spread") < joint("opposite")
+
+
+def test_every_loss_has_its_own_dangerous_end() -> None:
+    """Volts from all losses low, efficiency from all high, a part's heat from its own loss high and others low."""
+    found = point(
+        capacitor__series_resistance={"low": "5 mohm", "likely": "20 mohm", "high": "60 mohm"},
+        loop__joint=[
+            {
+                "name": "lugs",
+                "resistance": {"low": "0.1 mohm", "likely": "1 mohm", "high": "10 mohm"},
+                "at": "capacitor",
+            }
+        ],
+    )
+    low = found.figures.total_resistance.spread.low or 0.0
+    volts = found.figures.capacitor_peak_voltage.spread
+    reactance = likely(found, "port_reactance")
+    assert volts.high == pytest.approx((2.0 * 100.0 / low) ** 0.5 * reactance, rel=0.02)
+    heat = found.figures.capacitor_dissipation.spread
+    conductor = found.figures.conductor_resistance.spread.low or 0.0
+    own_corner = 100.0 * 0.060 / (0.060 + likely(found, "radiation_resistance") + conductor + 0.1e-3)
+    all_high = 100.0 * 0.060 / (found.figures.total_resistance.spread.high or 1.0)
+    assert heat.high == pytest.approx(own_corner, rel=0.02)
+    assert (heat.high or 0.0) > all_high
+
+
+def test_low_ground_takes_resistance_away_from_a_flat_loop_and_volts_rise() -> None:
+    free = point()
+    flat = point(loop__plane="horizontal", loop__centre_height="1.0 m", site__ground="perfect")
+    ratio = (flat.figures.capacitor_peak_voltage.spread.high or 0.0) / (
+        free.figures.capacitor_peak_voltage.spread.high or 1.0
+    )
+    assert (flat.figures.ground_resistance.spread.likely or 0.0) < 0.0
+    assert ratio > 1.05
+    total = flat.figures.radiation_resistance.spread.likely or 0.0
+    assert total + (flat.figures.ground_resistance.spread.likely or 0.0) >= 0.0
+
+
+@pytest.mark.parametrize("ground", ["average", "sea water", "poor", None])
+def test_any_soil_is_bracketed_and_its_loss_is_not_guessed(ground: str | None) -> None:
+    found = point(site__ground=ground, loop__centre_height="2 m")
+    free = point()
+    assert not found.figures.ground_resistance.spread.known
+    assert found.figures.total_resistance.spread.high is None
+    assert found.figures.unloaded_q.spread.low is None
+    assert found.figures.capacitor_peak_voltage.spread.low is None
+    volts = found.figures.capacitor_peak_voltage.spread
+    assert volts.likely == pytest.approx(free.figures.capacitor_peak_voltage.spread.likely)
+    assert (volts.high or 0.0) >= (free.figures.capacitor_peak_voltage.spread.high or 0.0)
+
+
+def test_a_missing_height_brackets_every_height() -> None:
+    anywhere = point(site__ground="average").figures.capacitor_peak_voltage.spread.high or 0.0
+    for height in ("1.0 m", "2 m", "5 m", "9 m", "10.5 m", "20 m"):
+        there = point(site__ground="average", loop__centre_height=height)
+        assert anywhere >= (there.figures.capacitor_peak_voltage.spread.high or 0.0)
+
+
+def test_soil_never_exceeds_the_bracket_in_the_reference_table() -> None:
+    """The least ratios of the reference notes' table over soils (section 7) lie above the bracket's low end."""
+    least = {0.2: 1.03, 0.25: 0.832, 0.3: 0.697, 0.4: 0.746, 0.75: 0.968}  # vertical loop, 7.1 MHz
+    for height, ratio in least.items():
+        metres = height * 299_792_458.0 / 7.1e6
+        found = point(site__ground="average", loop__centre_height=f"{metres:.6f} m")
+        free = point()
+        radiation = likely(free, "radiation_resistance")
+        low = (found.figures.total_resistance.spread.low or 0.0) - likely(free, "conductor_resistance")
+        assert low / radiation <= ratio + 0.01
+
+
+def test_a_polygon_is_nearly_the_circle_of_its_area() -> None:
+    octagon = point(
+        loop={
+            "shape": "polygon",
+            "sides": 12,
+            "perimeter": "3.1416 m",
+            "conductor": {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"},
+        }
+    )
+    circle = point()
+    for name in ("unloaded_q", "capacitor_peak_voltage"):
+        assert likely(octagon, name) == pytest.approx(likely(circle, name), rel=0.03)
+    # Twelve sides of the same perimeter enclose 97.7 % of the circle's area: plane geometry.
+    assert likely(octagon, "radiation_resistance") == pytest.approx(
+        likely(circle, "radiation_resistance") * 0.977**2, rel=0.002
+    )
+
+
+OUT_OF_RANGE = [
+    ({"transmission__0__frequency": "28.5 MHz"}, "wavelengths"),
+    ({"loop__turns": 2, "loop__turn_spacing": "80 mm"}, "one turn"),
+    ({"loop__conductor__outer_diameter": "60 mm"}, "radius"),
+    ({"loop__conductor__plating": {"material": "silver", "thickness": "5 um"}}, "plated"),
+    ({"capacitor": {"kind": "none"}}, "full-wave"),
+]
+
+
+@pytest.mark.parametrize(("changes", "word"), OUT_OF_RANGE)
+def test_beyond_every_method_nothing_is_stretched(changes: dict[str, Any], word: str) -> None:
+    found = point(**changes)
+    assert any(word in reason for reason in found.out_of_range)
+    assert not found.figures.capacitor_peak_voltage.spread.known
+    assert word in found.figures.capacitor_peak_voltage.why
+    assert found.figures.perimeter_in_wavelengths.spread.known
+
+
+POWERS = st.floats(0.01, 5000.0)
+MILLIOHMS = st.floats(0.0, 500.0)
+
+
+@settings(max_examples=60)
+@given(one=POWERS, more=st.floats(1.0, 50.0), frequency=st.floats(1.8, 23.0))
+def test_more_power_never_lowers_a_voltage(one: float, more: float, frequency: float) -> None:
+    def volts(watts: float) -> float:
+        found = point(
+            transmission__0__power=f"{watts:.6f} W",
+            transmission__0__frequency=f"{frequency:.6f} MHz",
+        )
+        return found.figures.capacitor_peak_voltage.spread.high or 0.0
+
+    lower, higher = min(one, 9000.0), min(one * more, 9000.0)
+    assert volts(higher) >= volts(lower) * (1.0 - 1e-12)
+    root = (round(higher, 6) / round(lower, 6)) ** 0.5
+    assert volts(higher) == pytest.approx(volts(lower) * root, rel=1e-6)
+
+
+@settings(max_examples=60)
+@given(
+    less=MILLIOHMS,
+    added=MILLIOHMS,
+    where=st.sampled_from(["capacitor", "opposite", "spread"]),
+    ground=st.sampled_from(["none", "perfect", "average"]),
+    frequency=st.floats(1.8, 23.0),
+)
+def test_more_loss_never_raises_a_voltage_or_an_efficiency(
+    less: float, added: float, where: str, ground: str, frequency: float
+) -> None:
+    def found(milliohms: float) -> OperatingPoint:
+        value = f"{milliohms:.6f} mohm"
+        return point(
+            loop__joint=[
+                {
+                    "name": "j",
+                    "resistance": {"low": value, "likely": value, "high": value},
+                    "at": where,
+                }
+            ],
+            loop__centre_height="3 m",
+            site__ground=ground,
+            transmission__0__frequency=f"{frequency:.6f} MHz",
+        )
+
+    better, worse = found(less), found(less + added)
+    for name in (
+        "capacitor_peak_voltage",
+        "capacitor_rms_current",
+        "conductor_efficiency",
+        "unloaded_q",
+    ):
+        for end in ("likely", "high"):
+            high = getattr(getattr(better.figures, name).spread, end)
+            low = getattr(getattr(worse.figures, name).spread, end)
+            assert low <= high * (1.0 + 1e-9), (name, end)
+
+
+@settings(max_examples=40)
+@given(diameter=st.floats(0.3, 3.0), share=st.floats(0.01, 0.25), thick=st.floats(0.001, 0.05))
+def test_every_spread_is_in_order_over_the_whole_range(diameter: float, share: float, thick: float) -> None:
+    frequency = share * 299.792458 / (3.14159265 * diameter)
+    if not 0.1 < frequency < 300.0:
+        return
+    found = point(
+        loop__diameter=f"{diameter:.6f} m",
+        loop__conductor__outer_diameter=f"{max(diameter * thick * 1000.0, 0.1):.4f} mm",
+        transmission__0__frequency=f"{frequency:.6f} MHz",
+    )
+    assert not [reason for reason in found.out_of_range if "wavelengths" not in reason]
+
+
+def test_a_line_loss_of_one_value_lowers_no_volts(design: MakeDesign) -> None:
+    single = point(feed={"line_loss": "3 dB"})
+    stated = point(feed={"line_loss": {"low": "3 dB", "likely": "3 dB", "high": "3 dB"}})
+    none = point()
+
+    def worst(found: OperatingPoint) -> float:
+        return found.figures.capacitor_peak_voltage.spread.high or 0.0
+
+    assert worst(single) == pytest.approx(worst(none))
+    assert worst(stated) == pytest.approx(worst(none) * 10.0 ** (-3.0 / 20.0))
+    assert single.power_at_loop.likely == pytest.approx(100.0 * 10.0**-0.3)
+
+
+def test_overshoot_is_counted_in_volts() -> None:
+    plain, over = point(), point(margins={"overshoot": "2 dB"})
+    ratio = likely(over, "capacitor_peak_voltage") / likely(plain, "capacitor_peak_voltage")
+    assert ratio == pytest.approx(10.0 ** (2.0 / 20.0))
+    assert likely(over, "capacitor_rms_current") == pytest.approx(likely(plain, "capacitor_rms_current"))
+
+
+def test_am_reaches_four_times_its_carrier() -> None:
+    found = point(transmission__0={"frequency": "7.1 MHz", "carrier_power": "25 W", "mode": "AM"})
+    assert found.power == pytest.approx(100.0)
+    assert likely(found, "capacitor_peak_voltage") == pytest.approx(likely(point(), "capacitor_peak_voltage"))
