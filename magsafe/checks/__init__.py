@@ -1,0 +1,1 @@
+"""Floor 4: figures held against ratings and limits: findings, ceiling, sheet."""

@@ -1,0 +1,115 @@
+"""What was assumed because the design does not state it, in plain sentences for the sheet."""
+
+from collections.abc import Iterator, Sequence
+
+from magsafe import words
+from magsafe.analysis.losses import capacitor_typical
+from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.design import tables
+from magsafe.design.model import Design
+
+
+def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, ...]:
+    """Return the assumptions behind a sheet, most weighty first."""
+    found = (
+        *_ground(design, points),
+        *_losses(design),
+        *_feed(design),
+        *_use(design),
+        *_kept(design),
+    )
+    return tuple(dict.fromkeys(found))
+
+
+def _ground(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
+    name = design.ground_name
+    if name == "none":
+        yield "Free space only: no ground, floor or wall is near, as the design states."
+        return
+    if any(point.ground_left_out for point in points):
+        yield (
+            "Likely values leave the ground out. Volts and amps at worst take the least resistance that free space, "
+            "a perfect plane or any soil can give; the loss in the soil, which lowers them, is not computed."
+        )
+    if name is None:
+        yield "site.ground is not given: any ground is taken as possible."
+    if design.loop.centre_height is None:
+        yield "loop.centre_height is not given: any height is taken as possible."
+
+
+def _losses(design: Design) -> Iterator[str]:
+    conductor, part = design.loop.conductor, design.capacitor
+    if conductor.material is not None:
+        row = tables.materials()[conductor.material]
+        yield (
+            f"{row.name}: {row.conductivity / 1e6:.3g} MS/m at 20 degC, give or take {100 * row.scatter:.3g} % "
+            f"({row.source}; {row.provenance})."
+        )
+    yield (
+        f"The conductor is at {conductor.temperature - 273.15:.3g} degC, as at the start of an over; its heating is "
+        "not computed. Roughness and oxide may add 10 % to its resistance (common practice)."
+    )
+    if part.kind == "none":
+        return
+    stated = part.quality_factor or part.series_resistance
+    typical = capacitor_typical(part)
+    if stated is None or stated.single:
+        what = "not stated" if stated is None else "a single value, which is no low end for volts"
+        yield (
+            f"The capacitor's losses are {what}: Q {typical.low:.0f} to {typical.high:.0f} is typical of its kind "
+            f"({part.kind}, common practice). No verdict is clear by that credit."
+        )
+    if part.quality_factor_at is not None:
+        yield (
+            "The capacitor's Q at another frequency than stated may be off either way by the root of their ratio "
+            "(common practice)."
+        )
+    for joint in design.loop.joint:
+        if joint.resistance is None and joint.kind is not None:
+            row_of = tables.joint_resistance(joint.kind)
+            low, high = (words.number(v or 0.0, "ohm", "mΩ") for v in (row_of.low, row_of.high))
+            yield (
+                f"Joint {joint.name}: {low} to {high} mΩ each is typical of a {joint.kind} (common practice). "
+                "No verdict is clear by that credit."
+            )
+    if not design.loop.joint:
+        yield (
+            "No joints are given: none is counted, which is the dangerous side for volts and the good side for "
+            "efficiency."
+        )
+
+
+def _feed(design: Design) -> Iterator[str]:
+    loss = design.feed.line_loss
+    if loss is None:
+        yield "feed.line_loss is not given: all of the transmitter's power is taken to arrive at the loop."
+    elif loss.single:
+        yield "The line loss is a single value: for volts and amps the line is taken to lose nothing."
+    yield "The loop is matched at its resonance."
+    if design.feed.coupling == "small loop":
+        yield "The coupling loop's own size is not computed by this version."
+
+
+def _use(design: Design) -> Iterator[str]:
+    for transmission in design.transmission:
+        band = tables.band_of(transmission.frequency)
+        if band is None:
+            yield (
+                f"{words.frequency(transmission.frequency)} lies in no amateur band of any ITU region "
+                "(Radio Regulations, Article 5, from memory): the station's licence decides."
+            )
+        if transmission.carrier_power is not None:
+            yield "Of an AM carrier, the envelope's crest is taken as 4 times its power (full modulation)."
+    if design.margins.overshoot == 0.0:
+        yield "No overshoot of the envelope at key-down is counted (margins.overshoot); 1 to 2 dB is common practice."
+
+
+def _kept(design: Design) -> Iterator[str]:
+    kept = [key for key in ("altitude", "air_temperature") if getattr(design.site, key) is not None]
+    if kept:
+        yield f"site.{' and site.'.join(kept)}: kept for the air gap and the heat, which this version does not compute."
+    if design.capacitor.weather == "open":
+        yield "The capacitor stands in the open: rain, dew, salt and insects take away any voltage rating."
+    if design.capacitor.stray > 0.0:
+        stray = words.amount(design.capacitor.stray, "F")
+        yield f"Stray capacitance of {stray} is counted as part of the capacitor's range."

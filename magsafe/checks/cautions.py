@@ -1,0 +1,38 @@
+"""What can happen to whom, and how to avoid it. On every sheet, whatever its verdict."""
+
+from magsafe import words
+from magsafe.analysis.operating_point import OperatingPoint
+
+
+def cautions(points: tuple[OperatingPoint, ...]) -> tuple[str, ...]:
+    """Return the cautions, the computed volts in the first of them."""
+    return (
+        f"RF burns. {_volts(points)} A touch burns deeply, without the warning of a shock. Fence the loop, keep "
+        "people, pets and dry or flammable things a metre and more from conductor and capacitor, also at a few watts.",
+        "Tuning. Never turn the capacitor by hand at the loop under power. Tune at 5 W or less from a distance, then "
+        "raise the power in steps. If the SWR creeps or jumps during a carrier, stop: something arcs or heats.",
+        "Fields. Nobody stays near the loop during a transmission until exposure is proven for that place. Limits "
+        "protect against established short-term effects only.",
+        "Implants. The limits do not protect wearers of pacemakers, pumps, neurostimulators or hearing implants. "
+        "They keep out until their clinician has cleared it.",
+        "Hot parts. Conductor, joints and capacitor stay hot after key-down; solder can let go under load.",
+        "Stored charge. Capacitors may hold a charge from wind or static. Discharge them before touching. Vacuum "
+        "glass can implode: wear eye protection.",
+        "Power lines. Keep at least one and a half times the full height of mast and loop away from overhead lines.",
+        "Lightning. Disconnect and ground the feed line before a storm; no work in wind or thunder. No loop and no "
+        "sheet makes an aerial lightning-proof.",
+        "Law. This sheet reports what was computed against the limits it names. Local regulation, the licence and a "
+        "qualified person's judgement go before it.",
+    )
+
+
+def _volts(points: tuple[OperatingPoint, ...]) -> str:
+    found = [(point.figures.capacitor_peak_voltage.spread.high or 0.0, point.power) for point in points]
+    volts, power = max(found)
+    if volts == 0.0:
+        return "The loop carries kilovolts even at a few watts."
+    at_five = volts * (5.0 / power) ** 0.5
+    return (
+        f"The loop carries up to {words.amount(volts, 'V', qualifier='peak')} at {power:.4g} W, and still "
+        f"{words.amount(at_five, 'V', qualifier='peak')} at 5 W."
+    )

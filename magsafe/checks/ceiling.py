@@ -1,0 +1,52 @@
+"""The highest power at which every power-dependent finding keeps its margin, and which finding holds it there."""
+
+from collections.abc import Sequence
+
+from magsafe.checks.sheet import Finding, PowerCeiling
+
+
+def ceiling(findings: Sequence[Finding], transmission: int) -> PowerCeiling:
+    """Return the ceiling of one transmission from its findings and those of the whole sheet.
+
+    What is unproven cannot be counted: it is left out, and the ceiling is then told as "at most".
+    """
+    counted = [(f.power_at_margin, f.id) for f in findings if f.power_at_margin is not None]
+    limits = [f.power_at_limit for f in findings if f.power_at_limit is not None]
+    left_out = tuple(f.id for f in findings if f.verdict == "unproven")
+    value, held_by = min(counted, default=(None, None))
+    thin = tuple(
+        f.id
+        for f in findings
+        if f.verdict == "narrow"
+        and f.power_at_margin is not None
+        and f.margin_found is not None
+        and f.margin_asked is not None
+        and f.margin_found >= f.margin_asked
+        and f.provenance == "memory"
+    )
+    return PowerCeiling(
+        value=value,
+        at_limit=min(limits, default=None),
+        transmission=transmission,
+        held_by=held_by,
+        complete=not left_out,
+        left_out=left_out,
+        on_thin_evidence=thin,
+    )
+
+
+def least(ceilings: Sequence[PowerCeiling]) -> PowerCeiling:
+    """Return the least ceiling of all transmissions; the sheet's names all that is left out of any."""
+    counted = [c for c in ceilings if c.value is not None]
+    lowest = min(counted, key=lambda c: c.value or 0.0, default=ceilings[0])
+    at_limit = min((c.at_limit for c in ceilings if c.at_limit is not None), default=None)
+    left_out = tuple(dict.fromkeys(name for c in ceilings for name in c.left_out))
+    thin = tuple(dict.fromkeys(name for c in ceilings for name in c.on_thin_evidence))
+    return lowest.model_copy(
+        update={
+            "at_limit": at_limit,
+            "left_out": left_out,
+            "complete": not left_out,
+            "on_thin_evidence": thin,
+        }
+    )

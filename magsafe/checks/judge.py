@@ -1,0 +1,210 @@
+"""The one place where a verdict is born."""
+
+from dataclasses import dataclass
+from math import inf
+from typing import Literal
+
+from magsafe import words
+from magsafe.checks.sheet import Finding, Limit, Value, Verdict
+from magsafe.spread import Spread
+
+End = Literal["low", "high"]
+
+
+@dataclass(frozen=True, slots=True)
+class Check:
+    """The identity of a check: its id, its question, what to do if it does not hold, its source."""
+
+    id: str
+    question: str
+    do: str
+    source: str
+    unit: str
+    dangerous: End = "high"
+    qualifier: str = ""
+    shown: str | None = None
+
+
+def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
+    check: Check,
+    value: Spread,
+    limit: float,
+    margin: float,
+    *,
+    bare_end: float | None = None,
+    power: float | None = None,
+    thin: str = "",
+    worst: Verdict = "stop",
+    provenance: str = "verified",
+    place: str | None = None,
+) -> Finding:
+    """Hold the dangerous end of a figure against a limit.
+
+    Parameters
+    ----------
+    check : what is asked
+    value : the figure, in the check's unit
+    limit : what it may reach (for a dangerous high end) or must reach (for a low one)
+    margin : ratio between limit and dangerous end that is asked for, 1 or more
+    bare_end : the dangerous end without any credit for typical values; only where that keeps the margin too is the
+        verdict clear. None: the figure rests on no typical value
+    power : the envelope power [W] at which the figure was found, if it grows as the root of the power
+    thin : why the evidence is too thin for `clear`; empty if it is not
+    worst : the worst verdict that this check can give
+    provenance : what the limit rests on
+    place : the name of the place that was judged
+    """
+    end = value.high if check.dangerous == "high" else value.low
+    if end is None:
+        return unproven(check, f"the {check.dangerous} end of the figure is not known", value, place=place)
+    found = _margin(check.dangerous, end, limit)
+    bare = found if bare_end is None else min(found, _margin(check.dangerous, bare_end, limit))
+    verdict: Verdict = "stop" if found < 1.0 else "narrow" if bare < margin or thin else "clear"
+    if verdict == "stop" and worst != "stop":
+        verdict = worst
+    text = words.against_limit(value, limit, check.unit, check.dangerous, check.shown, check.qualifier)
+    relation = "this is too little" if found < 1.0 and check.dangerous == "low" else _relation(found, bare, margin)
+    because = f"{text}: {relation}{f'; {thin}' if thin else ''}"
+    return Finding(
+        id=check.id,
+        place=place,
+        question=check.question,
+        value=_value(value, check.unit),
+        limit=Limit(value=limit, unit=check.unit),
+        margin_asked=margin,
+        margin_found=None if found == inf else found,
+        verdict=verdict,
+        because=because,
+        do="nothing" if verdict == "clear" else _do(check, _power(power, bare / margin)),
+        source=check.source,
+        provenance=provenance,
+        power_at_margin=_power(power, bare / margin),
+        power_at_limit=_power(power, bare),
+    )
+
+
+def _margin(dangerous: End, end: float, limit: float) -> float:
+    if dangerous == "low":
+        return end / limit
+    return inf if end == 0.0 else limit / end
+
+
+def _power(power: float | None, ratio: float) -> float | None:
+    """Return the power at which a figure that grows as its root comes to a ratio of 1."""
+    if power is None or ratio == inf:
+        return None
+    # Rounded down by more than the last bit, so that at the power told the margin is kept.
+    return power * ratio**2 * (1.0 - 1e-12)
+
+
+def _do(check: Check, allowed: float | None) -> str:
+    return check.do if allowed is None else f"lower the power to {words.power(allowed)}, or {check.do}"
+
+
+def _relation(found: float, bare: float, margin: float) -> str:
+    if found < 1.0:
+        return "this exceeds the limit"
+    if found < margin:
+        return f"this is within, by {found:.3g} times where {margin:.3g} is asked"
+    if bare < margin:
+        return "this is within, but keeps the margin only by what is typical of its parts, which nobody measured"
+    return "this is within, with the margin asked for"
+
+
+def unproven(
+    check: Check,
+    because: str,
+    value: Spread | None = None,
+    do: str | None = None,
+    limit: float | None = None,
+    place: str | None = None,
+) -> Finding:
+    """Return the finding of a check that lacks something, or lies outside every method's range."""
+    return Finding(
+        id=check.id,
+        place=place,
+        question=check.question,
+        value=_value(value, check.unit) if value is not None and value.known else None,
+        limit=None if limit is None else Limit(value=limit, unit=check.unit),
+        margin_asked=None,
+        margin_found=None,
+        verdict="unproven",
+        because=because,
+        do=do or check.do,
+        source=check.source,
+        provenance="none",
+    )
+
+
+def judge_between(check: Check, value: Spread, least: float, most: float, *, loose: bool) -> Finding:
+    """Hold a whole spread between two ends. No ratio makes sense, so no margin is told.
+
+    Parameters
+    ----------
+    check : what is asked
+    value : the figure
+    least, most : the ends it must lie between
+    loose : the ends are a tolerance and not a reach: inside them the verdict is narrow
+    """
+    low, high = value.low or 0.0, inf if value.high is None else value.high
+    inside = least <= low and high <= most
+    verdict: Verdict = "stop" if not inside else "narrow" if loose else "clear"
+    name = words.shown_unit(check.unit)
+    likely = "" if value.likely is None else f"{words.amount(value.likely, check.unit)} likely, "
+    top = "an unknown end" if value.high is None else words.number(value.high, check.unit, name)
+    text = (
+        f"{likely}{words.number(low, check.unit, name)} to {top} at worst; it reaches "
+        f"{words.number(least, check.unit, name)} to {words.amount(most, check.unit)}"
+    )
+    bound = most if high > most else least
+    return Finding(
+        id=check.id,
+        question=check.question,
+        value=_value(value, check.unit),
+        limit=Limit(value=bound, unit=check.unit),
+        margin_asked=None,
+        margin_found=None,
+        verdict=verdict,
+        because=text,
+        do="nothing" if verdict == "clear" else check.do,
+        source=check.source,
+        provenance="stated in the design",
+    )
+
+
+def holds(check: Check, value: Spread, limit: float, because: str) -> Finding:
+    """Return the clear finding of a question that is answered by a range and not by a margin."""
+    return Finding(
+        id=check.id,
+        question=check.question,
+        value=_value(value, check.unit),
+        limit=Limit(value=limit, unit=check.unit),
+        margin_asked=None,
+        margin_found=None,
+        verdict="clear",
+        because=because,
+        do="nothing",
+        source=check.source,
+        provenance="computed",
+    )
+
+
+def undecided(check: Check, value: Spread, because: str) -> Finding:
+    """Return the narrow finding of a question that harms nobody and lacks what it would be held against."""
+    return Finding(
+        id=check.id,
+        question=check.question,
+        value=_value(value, check.unit),
+        limit=None,
+        margin_asked=None,
+        margin_found=None,
+        verdict="narrow",
+        because=because,
+        do=check.do,
+        source=check.source,
+        provenance="none",
+    )
+
+
+def _value(spread: Spread, unit: str) -> Value:
+    return Value(low=spread.low, likely=spread.likely, high=spread.high, unit=unit)
