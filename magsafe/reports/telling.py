@@ -1,0 +1,117 @@
+"""What a sheet says first, in sentences: the same on every surface."""
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from magsafe import words
+from magsafe.checks.sheet import ORDER, Finding, OperatingPointRecord, PowerCeiling, Sheet, Verdict
+
+
+@dataclass(frozen=True, slots=True)
+class Told:
+    """A finding with the transmissions it holds for; empty where it is of the whole sheet."""
+
+    finding: Finding
+    transmissions: tuple[str, ...]
+
+
+def headline(sheet: Sheet) -> str:
+    """Return what the verdict means for the hand on the key."""
+    points = sheet.operating_points
+    if sheet.verdict == "stop":
+        stopped = [p for p in points if any(f.verdict == "stop" for f in p.findings)] or list(points)
+        if len(points) == 1:
+            return f"Do not key this loop at {_watts(points[0])}."
+        planned = "; ".join(f"{p.name} at {_watts(p)}" for p in stopped)
+        return f"Do not key this loop as planned: {planned}."
+    if sheet.verdict == "unproven":
+        return f"Do not key this loop at {_powers(sheet)} before what is unproven is known."
+    if sheet.verdict == "narrow":
+        return f"At {_powers(sheet)} all is within the limits computed here, but not with all that was asked."
+    return f"At {_powers(sheet)} all is within the limits computed here, with the margins asked for."
+
+
+def _watts(point: OperatingPointRecord) -> str:
+    return f"{point.power:.4g} W"
+
+
+def _powers(sheet: Sheet) -> str:
+    distinct = dict.fromkeys(_watts(p) for p in sheet.operating_points)
+    return next(iter(distinct)) if len(distinct) == 1 else "the powers planned"
+
+
+def ceiling(sheet: Sheet, made: PowerCeiling) -> str:
+    """Return the highest power in one or two sentences."""
+    if made.value is None or made.at_limit is None:
+        return "No highest power can be named: nothing that depends on power could be counted."
+    first = f"first limit reached at {words.power(made.at_limit)}."
+    if made.complete:
+        text = f"Clear up to {words.power(made.value)}; {first}"
+    else:
+        text = f"Clear up to at most {words.power(made.value)}, by what could be computed; {first}"
+    several = f" in {sheet.operating_points[made.transmission].name}" if len(sheet.operating_points) > 1 else ""
+    return f"{text} {made.held_by} holds it there{several}."
+
+
+def left_out(made: PowerCeiling) -> str:
+    """Return what the ceiling does not count; empty if it counts all."""
+    if made.complete:
+        return ""
+    return f"Not counted, because unproven: {', '.join(made.left_out)}."
+
+
+def findings(sheet: Sheet, verdict: Verdict) -> Iterator[Told]:
+    """Yield the findings of one verdict, those that say the same of several transmissions once."""
+    groups: dict[tuple[str, str | None, str], tuple[Finding, list[str]]] = {}
+    for finding in sheet.findings:
+        if finding.verdict == verdict:
+            groups[finding.id, finding.place, finding.because] = (finding, [])
+    for point in sheet.operating_points:
+        for finding in point.findings:
+            if finding.verdict == verdict:
+                key = (finding.id, finding.place, finding.because)
+                groups.setdefault(key, (finding, []))[1].append(point.name)
+    for finding, names in groups.values():
+        everywhere = len(names) == len(sheet.operating_points)
+        yield Told(finding, () if everywhere else tuple(names))
+
+
+def in_the_way(sheet: Sheet) -> Iterator[Told]:
+    """Yield all findings that are not clear, the worst first."""
+    for verdict in ORDER[:-1]:
+        yield from findings(sheet, verdict)
+
+
+@dataclass(frozen=True, slots=True)
+class Row:
+    """A row of the figures' table: its figure, how it is called, its SI unit and the unit shown."""
+
+    figure: str
+    label: str
+    si: str
+    unit: str
+
+
+ROWS = (
+    Row("perimeter_in_wavelengths", "Perimeter, wavelengths", "1", ""),
+    Row("radiation_resistance", "Radiation resistance, mΩ", "ohm", "mΩ"),
+    Row("conductor_resistance", "Conductor resistance, mΩ", "ohm", "mΩ"),
+    Row("joint_resistance", "Joint resistance, mΩ", "ohm", "mΩ"),
+    Row("capacitor_resistance", "Capacitor resistance, mΩ", "ohm", "mΩ"),
+    Row("ground_resistance", "Ground resistance, mΩ", "ohm", "mΩ"),
+    Row("total_resistance", "Total resistance, mΩ", "ohm", "mΩ"),
+    Row("port_reactance", "Port reactance, Ω", "ohm", "Ω"),
+    Row("inductance", "Inductance, µH", "H", "µH"),
+    Row("tuning_capacitance", "Tuning capacitance, pF", "F", "pF"),
+    Row("conductor_efficiency", "Efficiency without ground, %", "1", "%"),
+    Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
+    Row("unloaded_q", "Unloaded Q", "1", ""),
+    Row("loaded_q", "Loaded Q, matched", "1", ""),
+    Row("half_power_bandwidth", "Half-power bandwidth, kHz", "Hz", "kHz"),
+    Row("swr2_bandwidth", "SWR-2 bandwidth, kHz", "Hz", "kHz"),
+    Row("capacitor_peak_voltage", "Capacitor voltage, kV peak", "V", "kV"),
+    Row("capacitor_rms_current", "Capacitor current, A RMS", "A", "A"),
+    Row("largest_current", "Largest current, A RMS", "A", "A"),
+    Row("capacitor_dissipation", "Heat in the capacitor, W", "W", "W"),
+    Row("conductor_temperature_rise", "Conductor, rise in K", "K", "K"),
+)

@@ -1,0 +1,201 @@
+"""A sheet on a terminal: 80 columns hold everything, the same text with and without colour, no boxes."""
+
+import sys
+from collections.abc import Iterator, Sequence
+from io import TextIOWrapper
+from textwrap import wrap
+
+from rich.console import Console, Group, RenderableType
+from rich.padding import Padding
+from rich.table import Table
+from rich.text import Text
+
+from magsafe import words
+from magsafe.checks.sheet import FigureRecord, OperatingPointRecord, Sheet, Verdict
+from magsafe.reports import telling
+from magsafe.reports.marks import MARKS
+from magsafe.spread import Spread
+
+WIDEST = 100
+_SAID = 13  # columns for shape and verdict word
+_LABEL = 28
+_ASIDE = 4  # transmissions beside each other in one table
+_PLAIN = str.maketrans(
+    {
+        "Ω": "ohm",
+        "µ": "u",
+        "…": "..",
+        "·": "-",
+        "²": "^2",
+        "–": "-",
+        "—": "-",
+        "×": "x",
+        "°": "deg ",
+    }
+)
+
+
+def console_on_output() -> Console:
+    """Return a console on standard output that no narrow encoding breaks and no user's text marks up."""
+    if isinstance(sys.stdout, TextIOWrapper):
+        sys.stdout.reconfigure(errors="replace")
+    console = Console(highlight=False, markup=False, emoji=False)
+    console.width = min(console.width, WIDEST)
+    return console
+
+
+def is_plain(console: Console) -> bool:
+    """Return whether the console's encoding is not known to hold more than ASCII."""
+    return not console.encoding.lower().startswith("utf")
+
+
+def put(console: Console, *parts: RenderableType) -> None:
+    """Print parts; where there is no colour, without the spaces that fill lines up to the width."""
+    if console.is_terminal and console.color_system:
+        console.print(*parts, sep="\n")
+        return
+    with console.capture() as capture:
+        console.print(*parts, sep="\n")
+    lines = capture.get().split("\n")
+    console.file.write("\n".join(line.rstrip(" ") for line in lines))
+
+
+def show_sheet(sheet: Sheet, console: Console | None = None) -> None:
+    """Print a sheet."""
+    console = console or console_on_output()
+    put(console, render(sheet, console.width, plain=is_plain(console)))
+
+
+def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
+    """Return a sheet as what rich prints, `width` columns wide; `plain` keeps to ASCII."""
+    say = _Speaker(width, plain)
+    return Group(
+        *say.top(sheet),
+        *say.in_the_way(sheet),
+        *say.figures(sheet.operating_points),
+        *say.clear(sheet),
+        *say.list_of("Assumed", sheet.assumptions),
+        *say.list_of("Cautions", sheet.cautions),
+    )
+
+
+class _Speaker:
+    """Turns parts of a sheet into text of one width and alphabet."""
+
+    def __init__(self, width: int, plain: bool) -> None:
+        self.width = width
+        self.plain = plain
+
+    def letters(self, text: str) -> str:
+        """Return a text in the alphabet of the stream."""
+        if not self.plain:
+            return text
+        return text.translate(_PLAIN).encode("ascii", "replace").decode()
+
+    def paragraph(self, text: str, style: str = "", indent: int = 0) -> RenderableType:
+        """Return a text wrapped to the width, indented as a whole."""
+        lines = wrap(self.letters(text), self.width - indent, break_on_hyphens=False) or [""]
+        return Text("\n".join(" " * indent + line for line in lines), style=style)
+
+    def heading(self, text: str) -> Iterator[RenderableType]:
+        """Yield an empty line and a heading."""
+        yield Text("")
+        yield Text(self.letters(text), style="bold")
+
+    def mark(self, verdict: Verdict) -> Text:
+        """Return shape and word of a verdict."""
+        said = f"[{verdict}]" if self.plain else f"{MARKS[verdict].shape} {verdict}"
+        return Text(said.ljust(_SAID), style=MARKS[verdict].colour)
+
+    def top(self, sheet: Sheet) -> Iterator[RenderableType]:
+        """Yield the verdict, what it means, and the highest power."""
+        made = sheet.power_ceiling
+        yield self.item(sheet.verdict, telling.headline(sheet), bold=True)
+        yield self.paragraph(telling.ceiling(sheet, made), indent=_SAID)
+        if telling.left_out(made):
+            yield self.paragraph(telling.left_out(made), indent=_SAID)
+        yield Text("")
+        yield self.paragraph(f"{sheet.design.name}, {sheet.date}, magsafe {sheet.magsafe}", "dim")
+
+    def item(self, verdict: Verdict, text: str, *, bold: bool = False) -> Text:
+        """Return a verdict mark and a text beside it, its further lines indented as far."""
+        lines = wrap(self.letters(text), self.width - _SAID, break_on_hyphens=False)
+        mark = self.mark(verdict)
+        if bold:
+            mark.stylize("bold")
+        body = f"\n{' ' * _SAID}".join(lines)
+        return Text.assemble(mark, (body, "bold" if bold else ""))
+
+    def in_the_way(self, sheet: Sheet) -> Iterator[RenderableType]:
+        """Yield what is not clear, the worst first."""
+        told = list(telling.in_the_way(sheet))
+        if told:
+            yield from self.heading("What stands in the way")
+        for each in told:
+            yield self.item(each.finding.verdict, _title(each))
+            yield self.paragraph(f"{each.finding.because}.", indent=_SAID)
+            yield self.paragraph(f"Do: {each.finding.do}.", indent=_SAID)
+
+    def clear(self, sheet: Sheet) -> Iterator[RenderableType]:
+        """Yield what is clear, a paragraph each."""
+        told = list(telling.findings(sheet, "clear"))
+        if told:
+            yield from self.heading("What is clear")
+        for each in told:
+            yield self.item("clear", f"{_title(each)}: {each.finding.because}.")
+
+    def figures(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
+        """Yield the table of figures, so many transmissions beside each other as the width holds."""
+        yield from self.heading("Figures: likely, below it from least to most")
+        aside = max(1, min(_ASIDE, (self.width - _LABEL) // 13))
+        for start in range(0, len(points), aside):
+            yield self._table(points[start : start + aside])
+        reasons = dict.fromkeys(
+            f"{row.label.split(',')[0]}: {figure.why}."
+            for row in telling.ROWS
+            for point in points
+            if (figure := point.figures[row.figure]).why
+        )
+        if reasons:
+            yield from self.heading("Not known, or known at one end only")
+            for reason in reasons:
+                yield self.paragraph(reason)
+
+    def _table(self, points: Sequence[OperatingPointRecord]) -> RenderableType:
+        table = Table(box=None, pad_edge=False, padding=(0, 1), show_edge=False)
+        table.add_column("", width=_LABEL)
+        for point in points:
+            name = "\n".join(dict.fromkeys((point.name, words.frequency(point.frequency))))
+            table.add_column(Text(self.letters(name)), justify="right", width=11)
+        table.add_row("Power at the key, W PEP", *(f"{point.power:.4g}" for point in points))
+        table.add_row("Clear up to, W PEP", *(self._clear_to(point) for point in points))
+        for row in telling.ROWS:
+            cells = [self._cell(point.figures[row.figure], row) for point in points]
+            table.add_row(self.letters(row.label), *cells)
+        return Padding(table, (0, 0, 1, 0))
+
+    def _clear_to(self, point: OperatingPointRecord) -> str:
+        made = point.power_ceiling
+        if made.value is None:
+            return "unproven"
+        return f"{'' if made.complete else 'at most '}{words.floor_two_digits(made.value)}"
+
+    def _cell(self, figure: FigureRecord, row: telling.Row) -> str:
+        spread = Spread(figure.low, figure.likely, figure.high)
+        if not spread.known:
+            return "not known"
+        likely = "?" if spread.likely is None else words.number(spread.likely, row.si, row.unit)
+        ends = words.ends(spread, row.si, row.unit).strip("()")
+        return self.letters(f"{likely}\n{ends}" if ends else likely)
+
+    def list_of(self, title: str, sentences: Sequence[str]) -> Iterator[RenderableType]:
+        """Yield a heading and sentences, each a paragraph with a hanging mark."""
+        yield from self.heading(title)
+        for sentence in sentences:
+            lines = wrap(self.letters(sentence), self.width - 2, break_on_hyphens=False)
+            yield Text("\n".join(f"{'- ' if i == 0 else '  '}{line}" for i, line in enumerate(lines)))
+
+
+def _title(told: telling.Told) -> str:
+    where = f" ({', '.join(told.transmissions)})" if told.transmissions else ""
+    return f"{told.finding.id}{where}"
