@@ -14,7 +14,9 @@ from pathlib import Path
 import pint
 
 _TEXT_LIMIT = 48
-_SPLIT = re.compile(r"(-?[0-9]+(?:\.[0-9]+)?) ?([A-Za-zµμΩΩ°%/]{1,16})")
+_SPLIT = re.compile(r"(-?[0-9]+(?:\.[0-9]+)?) ?([A-Za-zµΩ°%/]{1,16})")
+# The micro sign and the letter mu look the same, and so do the ohm sign and the letter omega.
+_SAME_LOOKS = {0x03BC: 0x00B5, 0x2126: 0x03A9}
 _OWN_FACTORS = {"%": 0.01, "dB": 1.0}
 
 
@@ -37,7 +39,7 @@ class Kind:
     signed: bool = False
 
 
-LENGTH = Kind("a length", "m", ("m", "cm", "mm", "um", "µm", "μm", "km", "in", "ft"), "22 mm")
+LENGTH = Kind("a length", "m", ("m", "cm", "mm", "um", "µm", "km", "in", "ft"), "22 mm")
 POSITION = Kind("a position", "m", LENGTH.units, "1.2 m", signed=True)
 FREQUENCY = Kind("a frequency", "Hz", ("Hz", "kHz", "MHz", "GHz"), "7.1 MHz")
 POWER = Kind("a power", "W", ("W", "mW", "kW"), "100 W")
@@ -47,10 +49,10 @@ CURRENT = Kind("a current", "A", ("A", "mA"), "20 A")
 RESISTANCE = Kind(
     "a resistance",
     "ohm",
-    ("ohm", "mohm", "uohm", "kohm", "Ω", "Ω", "mΩ", "mΩ", "µΩ", "µΩ", "kΩ", "kΩ"),
+    ("ohm", "mohm", "uohm", "kohm", "Ω", "mΩ", "µΩ", "kΩ"),
     "0.5 mohm",
 )
-CAPACITANCE = Kind("a capacitance", "F", ("pF", "nF", "uF", "µF", "μF", "F"), "47 pF")
+CAPACITANCE = Kind("a capacitance", "F", ("pF", "nF", "uF", "µF", "F"), "47 pF")
 CONDUCTIVITY = Kind("a conductivity", "S/m", ("S/m", "MS/m", "mS/m", "kS/m"), "58 MS/m")
 TEMPERATURE = Kind("a temperature", "K", ("degC", "°C", "K"), "20 degC", signed=True)
 DURATION = Kind("a time", "s", ("s", "min", "h"), "3 min")
@@ -98,7 +100,7 @@ def _read_text(text: str, kind: Kind, least: float | None, most: float | None) -
     expected = f'{kind.name} with its unit, such as "{kind.example}"'
     if len(text) > _TEXT_LIMIT:
         raise QuantityError(expected, "write one number and one unit, nothing else")
-    text = text.strip(" ")
+    text = text.strip(" ").translate(_SAME_LOOKS)
     match = _SPLIT.fullmatch(text)
     if match is None:
         raise QuantityError(expected, _advice(text, kind))
@@ -126,8 +128,8 @@ def _to_si(number: float, unit: str, kind: Kind) -> float:
 
 
 def _distinct(units: tuple[str, ...]) -> list[str]:
-    """Leave out the second code point that looks the same as the first."""
-    return [u for u in units if "μ" not in u and "Ω" not in u]
+    """Return the units to show in a message: without the symbols that a keyboard lacks, where letters do."""
+    return [u for u in units if "Ω" not in u and "µ" not in u]
 
 
 def _advice(text: str, kind: Kind) -> str:

@@ -43,6 +43,20 @@ class WithoutTaper:
 
 
 @dataclass(frozen=True, slots=True)
+class GroundCase:
+    """A field that may be: free space, or with the image in a perfect plane.
+
+    `square` is the square of the current that flows into the conductor at the port, RMS [A2], for each watt at the
+    loop, at its dangerous end; `bare_square` the same without credit for typical losses; `likely_square` the likely.
+    """
+
+    image: bool
+    square: float
+    bare_square: float
+    likely_square: float
+
+
+@dataclass(frozen=True, slots=True)
 class Chain:
     """The resonant loop at one frequency, ready to be asked at any corner.
 
@@ -161,6 +175,28 @@ class Chain:
     def resistance_error(self) -> tuple[float, float]:
         """Return the same of a resistance along the loop."""
         return RESISTANCE_ERROR, RESISTANCE_ERROR + self.error.efficiency_above * self.growth
+
+    def ground_cases(self) -> tuple[GroundCase, ...]:
+        """Return the fields to compare, each with the current that it would draw."""
+        cases = [(False, self.around.ratio.low or 0.0)]
+        if self.around.image is not None:
+            cases.append((True, self.around.image))
+        return tuple(
+            GroundCase(
+                image,
+                self._square("low", ratio),
+                self._square("bare", ratio),
+                1.0 / self.resistance("likely", self.around.ratio.likely or 0.0, 0.0),
+            )
+            for image, ratio in cases
+        )
+
+    def _square(self, end: str, ratio: float) -> float:
+        return max((1.0 + e) ** 2 / self.resistance(end, ratio, e) for e in self.excesses)
+
+    def field_error(self) -> float:
+        """Return how far fields may lie above those of the tapered current: charge that it leaves out radiates."""
+        return VOLTAGE_ERROR + 0.5 * self.error.efficiency_above * self.growth
 
     def efficiency_spread(self) -> Spread:
         """Return the spread of the efficiency with the ground left out."""

@@ -4,7 +4,7 @@ from dataclasses import dataclass
 
 from scipy.constants import c
 
-from magsafe.analysis.chain import WithoutTaper, chain
+from magsafe.analysis.chain import GroundCase, WithoutTaper, chain
 from magsafe.analysis.figures import Figures, figures_of, unknown_figures
 from magsafe.design.model import Design, Transmission
 from magsafe.design.shape import Outline, outline
@@ -33,6 +33,8 @@ class OperatingPoint:
     ground_left_out: bool
     bound_ratio: Spread
     without_taper: WithoutTaper | None
+    ground_cases: tuple[GroundCase, ...]
+    field_error: float
 
 
 def operating_point(design: Design, transmission: Transmission) -> OperatingPoint:
@@ -43,7 +45,9 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
     arriving = power_at_loop(design, power)
     if reasons:
         figures = unknown_figures(line, transmission.frequency, reasons)
-        return OperatingPoint(transmission, power, arriving, figures, reasons, None, None, (), False, UNKNOWN, None)
+        return OperatingPoint(
+            transmission, power, arriving, figures, reasons, None, None, (), False, UNKNOWN, None, (), 0.0
+        )
     made = chain(design, transmission.frequency, line, arriving)
     return OperatingPoint(
         transmission,
@@ -57,6 +61,8 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         made.around.likely_is_free_space,
         made.bound_ratio(),
         made.without_taper(),
+        made.ground_cases(),
+        made.field_error(),
     )
 
 

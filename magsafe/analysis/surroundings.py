@@ -19,19 +19,21 @@ class Surroundings:
 
     `ratio.low` is the least that free space, a perfect image or any soil can give; `ratio.high` is None where
     soil adds an amount that is not computed. `likely_is_free_space` says that `ratio.likely` leaves the ground out.
-    `image_share` is the largest share of the inductance that the image takes away.
+    `image` is the ratio over a perfect plane, or the least it can be where the point dipole does not tell it; None
+    where no plane is near. `image_share` is the largest share of the inductance that the image takes away.
     """
 
     ratio: Spread
     likely_is_free_space: bool
     perfect: float | None
+    image: float | None
     image_share: Spread
 
 
 def surroundings(design: Design, line: Outline, frequency: float, own: float) -> Surroundings:
     """Return the bracket of the ground at one frequency [Hz], for a loop of inductance `own` [H]."""
     if design.ground_name == "none":
-        return Surroundings(Spread.exact(1.0), False, 1.0, Spread.exact(0.0))
+        return Surroundings(Spread.exact(1.0), False, 1.0, None, Spread.exact(0.0))
     vertical = design.loop.plane == "vertical"
     height = design.loop.centre_height
     image_ratio = ground.image_ratio_vertical if vertical else ground.image_ratio_horizontal
@@ -42,15 +44,17 @@ def surroundings(design: Design, line: Outline, frequency: float, own: float) ->
         # what the ground adds are together never negative.
         everywhere = image_ratio(np.linspace(0.001, 30.0, 6000))
         least = max(0.0, float(everywhere.min()) - ground.SOIL_SHORTFALL_VERTICAL) if vertical else 0.0
-        return Surroundings(Spread(least, 1.0, None), True, None, share)
+        return Surroundings(Spread(least, 1.0, None), True, None, least, share)
     ratio = float(image_ratio(np.float64(4.0 * np.pi * frequency / c * height)))
     if design.ground_name == "perfect":
         if holds:
             low, high = min(1.0, ratio), max(1.0, ratio)
-            return Surroundings(Spread(low, ratio, high), False, ratio, Spread.exact(share.high or 0.0))
-        return Surroundings(Spread(min(1.0, ratio), 1.0, None), True, None, share)
+            return Surroundings(Spread(low, ratio, high), False, ratio, ratio, Spread.exact(share.high or 0.0))
+        least = min(1.0, ratio)
+        return Surroundings(Spread(least, 1.0, None), True, None, least, share)
     shortfall = ground.SOIL_SHORTFALL_VERTICAL if vertical else ground.SOIL_SHORTFALL_HORIZONTAL
-    return Surroundings(Spread(max(0.0, min(1.0, ratio) - shortfall), 1.0, None), True, None, share)
+    least = max(0.0, min(1.0, ratio) - shortfall)
+    return Surroundings(Spread(least, 1.0, None), True, None, ratio if holds else min(1.0, ratio), share)
 
 
 def _image_share(vertical: bool, height: float | None, line: Outline, own: float) -> Spread:

@@ -16,6 +16,7 @@ def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, 
         *_losses(design),
         *_feed(design),
         *_use(design),
+        *_people(design),
         *_kept(design),
     )
     return tuple(dict.fromkeys(found))
@@ -102,6 +103,37 @@ def _use(design: Design) -> Iterator[str]:
             yield "Of an AM carrier, the envelope's crest is taken as 4 times its power (full modulation)."
     if design.margins.overshoot == 0.0:
         yield "No overshoot of the envelope at key-down is counted (margins.overshoot); 1 to 2 dB is common practice."
+
+
+def _people(design: Design) -> Iterator[str]:
+    if not design.site.rules:
+        return
+    yield (
+        "Fields are of the loop alone, with nobody present, RMS over all components, the stronger of free space and of "
+        "a perfect plane below, each with the current that the loop would draw there."
+        if design.ground_name != "none"
+        else "Fields are of the loop alone in free space, with nobody present, RMS over all components."
+    )
+    yield "A person is judged at the worst point of a column 0.3 m either way of the place, not at the body's mean."
+    if design.site.metal_within is None:
+        yield "site.metal_within is not given: no metal is taken to be nearer than one loop diameter."
+    if design.loop.plane == "vertical" and design.capacitor.position is None:
+        yield "capacitor.position is not given: fields are the strongest of top, bottom and side."
+    if design.site.floors is None:
+        yield "site.floors is not given: people stand on the ground alone."
+    for transmission in design.transmission:
+        if transmission.over is None and transmission.on_air_share is None:
+            yield f"{transmission.title}: neither over nor on_air_share is given, so it is taken as always on the air."
+        elif transmission.over is not None:
+            yield (
+                f"{transmission.title}: no over is longer than stated and no pause shorter. Shorter overs with shorter "
+                "pauses can fill more of a window."
+            )
+        if transmission.tune_up is not None:
+            yield (
+                f"{transmission.title}: one tune-up in any averaging time, as part of an over; its carrier counts "
+                "where it is stronger than the mode's mean."
+            )
 
 
 def _kept(design: Design) -> Iterator[str]:

@@ -1,36 +1,340 @@
-"""Where may people be: until fields are computed, every rule and tier is unproven."""
+"""Where may people be: each place under each rule, and silence is never clear."""
 
-from collections.abc import Iterator
+from collections.abc import Sequence
+from dataclasses import dataclass
+from math import sqrt
 
-from magsafe.checks.judge import Check, unproven
-from magsafe.checks.sheet import Finding
-from magsafe.design.model import Design
+from magsafe.analysis.exposure import Basis, Use, bases, key_down, use_of
+from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, field_source
+from magsafe.analysis.keepout import Distances, Shells, keep_out, shells
+from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.people import Strongest, at_places
+from magsafe.checks.judge import Check, judge, unproven
+from magsafe.checks.sheet import (
+    BasisRecord,
+    DistanceRecord,
+    ExposureRecord,
+    Finding,
+    KeepoutRecord,
+    PlaceRecord,
+)
+from magsafe.design.consistency import slug
+from magsafe.design.model import Design, Place
+from magsafe.design.shape import outline
+from magsafe.rules.limit import WHO, Limit, Rule, Who, load_rule
+from magsafe.spread import Spread
 
-_WHO = ("trained", "public")
+_KEEP = "keep people out of this place, or lower the power"
+_UNITS = {"E": "V/m", "H": "A/m"}
 
 
-def exposure(design: Design) -> Iterator[Finding]:
-    """Yield a finding for each rule in force and each tier of people."""
-    if not design.site.rules:
-        yield unproven(
-            Check(
-                "exposure.rules",
-                "Which exposure rules hold at this site?",
-                'name them in site.rules, such as rules = ["icnirp-2020"]',
-                "the design",
-                "1",
-            ),
-            "site.rules is missing or empty: nothing says how strong a field may be",
-        )
-    for rule in design.site.rules:
-        for who in _WHO:
-            yield unproven(
-                Check(
-                    f"exposure.{rule}.{who}",
-                    f"Are people ({who}) within the limits of {rule}?",
-                    "keep people away until it is known, or have the field measured",
-                    rule,
-                    "1",
-                ),
-                "Fields near the loop are not computed by this version",
-            )
+def no_rules(design: Design) -> tuple[Finding, ...]:
+    """Return a finding where the design names no rule."""
+    if design.site.rules:
+        return ()
+    check = Check(
+        "exposure.rules",
+        "Which exposure rules hold at this site?",
+        'name them in site.rules, such as rules = ["icnirp-2020"]',
+        "the design",
+        "1",
+    )
+    return (unproven(check, "site.rules is missing or empty: nothing says how strong a field may be"),)
+
+
+def exposure(design: Design, point: OperatingPoint) -> tuple[tuple[ExposureRecord, ...], tuple[Finding, ...]]:
+    """Return what each rule says of people during one transmission, and the findings."""
+    view = _view(design, point)
+    records, findings = [], []
+    for name in design.site.rules:
+        rule = load_rule(name)
+        for who in WHO:
+            record, found = _tier(view, rule, who)
+            records.append(record)
+            findings.extend(found)
+    return tuple(records), tuple(findings)
+
+
+@dataclass(frozen=True, slots=True)
+class _View:
+    """One transmission with the fields about it, computed once for all rules."""
+
+    design: Design
+    point: OperatingPoint
+    use: Use
+    unknown: str
+    doubt: str
+    strongest: dict[str, Strongest]
+    around: Shells | None
+    bare_factor: float
+    likely_factor: float
+
+    @property
+    def at_loop(self) -> float:
+        """Most power at the loop for each watt at the transmitter."""
+        return (self.point.power_at_loop.high or 0.0) / self.point.power
+
+    @property
+    def margin(self) -> float:
+        return self.design.margins.exposure_ratio
+
+
+def _view(design: Design, point: OperatingPoint) -> _View:
+    unknown = _unknown(design, point)
+    doubt, use = _metal(design), use_of(point.transmission)
+    if unknown or not design.site.rules:
+        return _View(design, point, use, unknown, doubt, {}, None, 1.0, 1.0)
+    near, far = field_source(design, point, NEAR_PIECE), field_source(design, point, FAR_PIECE)
+    found = at_places(near, tuple(design.place)) if design.place else ()
+    strongest = {place.name: each for place, each in zip(design.place, found, strict=True)}
+    return _View(design, point, use, unknown, doubt, strongest, shells(far), near.bare_factor, near.likely_factor)
+
+
+def _unknown(design: Design, point: OperatingPoint) -> str:
+    """Return why no field is known; empty where it is."""
+    if point.out_of_range:
+        return "; ".join(point.out_of_range)
+    if design.loop.centre_height is None and design.ground_name != "none":
+        return "loop.centre_height is not given"
+    if design.loop.centre_height is None and design.place:
+        return "loop.centre_height is not given, and places have their heights above ground"
+    return ""
+
+
+def _metal(design: Design) -> str:
+    """Return why computed fields do not hold near metal; empty where none is that near."""
+    near, across = design.site.metal_within, 2.0 * outline(design.loop).reach
+    if near is None or near >= across:
+        return ""
+    return f"metal is within {near:.3g} m, nearer than one loop diameter ({across:.3g} m): fields there are not proven"
+
+
+def _tier(view: _View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Finding]]:
+    frequency = view.point.transmission.frequency
+    found = bases(rule, who, frequency)
+    uncovered = rule.uncovered_fields(who, frequency)
+    places = [place for place in view.design.place if place.who == who]
+    gap = f"{rule.name} has no {' and no '.join(uncovered)} limit at this frequency" if uncovered else ""
+    findings: list[Finding] = []
+    records: list[PlaceRecord] = []
+    if not places:
+        findings.append(_no_place(rule, who))
+    for place in places:
+        record, finding = _place(view, rule, found, place, view.unknown or gap)
+        records.append(record)
+        findings.append(finding)
+    why = view.unknown or gap or view.doubt or None
+    keepout = None if view.around is None or not found else _keepout(view, view.around, found)
+    return ExposureRecord(
+        rule=rule.name, edition=rule.edition, who=who, keepout=keepout, places=tuple(records), why=why
+    ), findings
+
+
+def _no_place(rule: Rule, who: Who) -> Finding:
+    check = Check(
+        f"exposure.{rule.name}.{who}",
+        f"Are people ({who}) within the limits of {rule.name}?",
+        f'add a [[place]] or a fence with who = "{who}", where they can be nearest',
+        f"{rule.standard}, {rule.edition}",
+        "1",
+    )
+    return unproven(check, f'No place with who = "{who}" is given, and silence is not clear')
+
+
+def _keepout(view: _View, around: Shells, found: tuple[Basis, ...]) -> KeepoutRecord:
+    vertical = view.design.loop.plane == "vertical"
+
+    def distances(use: Use) -> Distances:
+        return keep_out(around, found, use, view.at_loop, view.margin, vertical)
+
+    averaged, carrier = distances(view.use), distances(key_down(view.point.power))
+    return KeepoutRecord.model_validate({**_as_dict(averaged), "key_down": _as_dict(carrier)})
+
+
+def _as_dict(found: Distances) -> dict[str, object]:
+    def one(each: object) -> object:
+        return None if each is None else DistanceRecord.model_validate(each, from_attributes=True)
+
+    named = {
+        name: one(getattr(found, name))
+        for name in ("any_direction", "along_axis", "in_plane", "across", "above", "below")
+    }
+    floors = [
+        {"floor": each.floor, **{name: one(getattr(each, name)) for name in ("along_axis", "in_plane", "across")}}
+        for each in found.on_floors
+    ]
+    return {**named, "on_floors": tuple(floors)}
+
+
+# Places ----------------------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True)
+class _Judged:
+    """One field of one basis at a place."""
+
+    basis: Basis
+    kind: str
+    row: Limit
+    field: float
+    limit: float
+    judged: float
+
+    @property
+    def share(self) -> float:
+        return (self.field / self.limit) ** 2
+
+
+def _place(
+    view: _View, rule: Rule, found: tuple[Basis, ...], place: Place, unknown: str
+) -> tuple[PlaceRecord, Finding]:
+    check = Check(
+        f"exposure.{rule.name}.{place.who}.{slug(place.name)}",
+        f"Is {place.name} within the limits of {rule.name} for {place.who} people?",
+        _KEEP,
+        f"{rule.standard}, {rule.edition}",
+        "1",
+    )
+    tuning = place.when == "tuning"
+    if tuning and view.use.tune_up_time == 0.0:
+        unknown = unknown or "this transmission has no tune_up, and the place is judged while tuning"
+    if unknown or place.name not in view.strongest:
+        return _unknown_place(place), unproven(check, unknown, place=place.name)
+    strongest = view.strongest[place.name]
+    judged = _judged(view, found, strongest, tuning)
+    binding = max(judged, key=lambda each: each.share)
+    records = tuple(_basis_record(basis, judged) for basis in found)
+    powers = _powers(view, judged, tuning)
+    finding = judge(
+        Check(
+            check.id,
+            check.question,
+            _KEEP if tuning else _DO_PLACE,
+            check.source,
+            _UNITS[binding.kind],
+            shown=_UNITS[binding.kind],
+            qualifier="RMS",
+        ),
+        Spread(None, binding.field * sqrt(view.likely_factor), binding.field),
+        binding.limit,
+        view.margin,
+        bare_end=binding.field * sqrt(view.bare_factor),
+        powers=None if tuning else powers,
+        thin=_thin(judged),
+        provenance=binding.row.provenance_at(binding.basis.frequency) or "none",
+        place=place.name,
+    )
+    finding = _doubted(check, finding, (*strongest.doubts, *([view.doubt] if view.doubt else [])))
+    top = next(record for record in records if record.basis == binding.basis.name)
+    return (
+        PlaceRecord(
+            name=place.name,
+            **top.model_dump(),
+            verdict=finding.verdict,
+            power_ceiling=powers[0],
+            at_limit=powers[1],
+            when=place.when,
+            bases=records,
+        ),
+        finding,
+    )
+
+
+_DO_PLACE = "keep people out of this place"
+
+
+def _doubted(check: Check, finding: Finding, doubts: Sequence[str]) -> Finding:
+    """Return a finding that cannot be clear because part of the field is not known; a stop stays one."""
+    if not doubts or finding.verdict == "stop":
+        return finding
+    return unproven(check, f"{'; '.join(doubts)} ({finding.because})", do=_KEEP, place=finding.place)
+
+
+def _judged(view: _View, found: tuple[Basis, ...], strongest: Strongest, tuning: bool) -> list[_Judged]:
+    made = []
+    for basis in found:
+        power = view.use.judged(basis.averaging_time, "tuning" if tuning else "always")
+        for kind, square, row in (
+            ("E", strongest.electric, basis.electric),
+            ("H", strongest.magnetic, basis.magnetic),
+        ):
+            limit = None if row is None else row.at(basis.frequency)
+            if row is not None and limit is not None:
+                field = sqrt(square * power * view.at_loop)
+                likely = power * (view.point.power_at_loop.likely or 0.0) / view.point.power
+                made.append(_Judged(basis, kind, row, field, limit, likely))
+    return made
+
+
+def _basis_record(basis: Basis, judged: Sequence[_Judged]) -> BasisRecord:
+    own = {each.kind: each for each in judged if each.basis is basis}
+    binding = max(own.values(), key=lambda each: each.share)
+    electric, magnetic = own.get("E"), own.get("H")
+    return BasisRecord(
+        electric=None if electric is None else electric.field,
+        magnetic=None if magnetic is None else magnetic.field,
+        electric_limit=None if electric is None else electric.limit,
+        magnetic_limit=None if magnetic is None else magnetic.limit,
+        share_of_limit=binding.share,
+        field_ratio=sqrt(binding.share),
+        set_by=binding.kind,
+        basis=basis.name,
+        judged_power=binding.judged,
+        averaging_time=basis.averaging_time,
+        provenance=binding.row.provenance_at(basis.frequency) or "none",
+    )
+
+
+def _powers(view: _View, judged: Sequence[_Judged], tuning: bool) -> tuple[float, float]:
+    """Return the power [W] that keeps the margin on every basis, and the one that reaches a limit.
+
+    While tuning it is the carrier's power that is told, else the envelope power.
+    """
+    found = []
+    for ratio in (view.margin, 1.0):
+        powers = []
+        for each in judged:
+            time = each.basis.averaging_time
+            looked_at = view.use.judged(time, "tuning" if tuning else "always")
+            share = each.share * view.bare_factor * ratio**2
+            if share == 0.0:
+                continue
+            allowed = looked_at / share * (1.0 - 1e-12)
+            if tuning:
+                powers.append(view.use.tune_up_power / share * (1.0 - 1e-12))
+            else:
+                powers.append(view.use.envelope_for(allowed, time))
+        found.append(min(powers, default=0.0))
+    return found[0], found[1]
+
+
+def _thin(judged: Sequence[_Judged]) -> str:
+    """Return which limits nobody has read in their source; empty if all were."""
+    unread = [
+        f"{each.kind} {each.limit:.4g} {_UNITS[each.kind]} ({each.basis.name})"
+        for each in judged
+        if each.row.provenance_at(each.basis.frequency) == "memory"
+    ]
+    return f"the limit {' and '.join(unread)} rests on memory: nobody has read it in the standard" if unread else ""
+
+
+def _unknown_place(place: Place) -> PlaceRecord:
+    return PlaceRecord(
+        name=place.name,
+        electric=None,
+        magnetic=None,
+        electric_limit=None,
+        magnetic_limit=None,
+        share_of_limit=None,
+        field_ratio=None,
+        set_by=None,
+        basis=None,
+        judged_power=None,
+        averaging_time=None,
+        provenance=None,
+        verdict="unproven",
+        power_ceiling=None,
+        at_limit=None,
+        when=place.when,
+        bases=(),
+    )

@@ -33,6 +33,7 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
     *,
     bare_end: float | None = None,
     power: float | None = None,
+    powers: tuple[float, float] | None = None,
     thin: str = "",
     worst: Verdict = "stop",
     provenance: str = "verified",
@@ -49,6 +50,7 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
     bare_end : the dangerous end without any credit for typical values; only where that keeps the margin too is the
         verdict clear. None: the figure rests on no typical value
     power : the envelope power [W] at which the figure was found, if it grows as the root of the power
+    powers : in place of that, the envelope powers [W] at which the margin and the limit are reached
     thin : why the evidence is too thin for `clear`; empty if it is not
     worst : the worst verdict that this check can give
     provenance : what the limit rests on
@@ -62,6 +64,7 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
     verdict: Verdict = "stop" if found < 1.0 else "narrow" if bare < margin or thin else "clear"
     if verdict == "stop" and worst != "stop":
         verdict = worst
+    allowed, reached = powers or (_power(power, bare / margin), _power(power, bare))
     text = words.against_limit(value, limit, check.unit, check.dangerous, check.shown, check.qualifier)
     relation = "this is too little" if found < 1.0 and check.dangerous == "low" else _relation(found, bare, margin)
     because = f"{text}: {relation}{f'; {thin}' if thin else ''}"
@@ -75,11 +78,11 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
         margin_found=None if found == inf else found,
         verdict=verdict,
         because=because,
-        do="nothing" if verdict == "clear" else _do(check, _power(power, bare / margin)),
+        do="nothing" if verdict == "clear" else _do(check, allowed),
         source=check.source,
         provenance=provenance,
-        power_at_margin=_power(power, bare / margin),
-        power_at_limit=_power(power, bare),
+        power_at_margin=allowed,
+        power_at_limit=reached,
     )
 
 

@@ -4,13 +4,14 @@ from dataclasses import fields
 from datetime import date
 
 from magsafe import __version__
+from magsafe.analysis.exposure import use_of
 from magsafe.analysis.figures import Figure
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
 from magsafe.checks import capacitor, loop
 from magsafe.checks.assumptions import assumptions
 from magsafe.checks.cautions import cautions
 from magsafe.checks.ceiling import ceiling, least
-from magsafe.checks.exposure import exposure
+from magsafe.checks.exposure import exposure, no_rules
 from magsafe.checks.later import later
 from magsafe.checks.sheet import (
     DesignRecord,
@@ -20,8 +21,7 @@ from magsafe.checks.sheet import (
     Sheet,
     worst,
 )
-from magsafe.design.model import Design, Transmission
-from magsafe.rules.duty import mode_duty
+from magsafe.design.model import Design
 
 
 def check(design: Design, on: date | None = None) -> Sheet:
@@ -33,7 +33,7 @@ def check(design: Design, on: date | None = None) -> Sheet:
     on : the date on the sheet; today where it is not given
     """
     points = tuple(operating_point(design, transmission) for transmission in design.transmission)
-    shared = (*exposure(design), *later(design))
+    shared = (*no_rules(design), *later(design))
     records = tuple(_record(design, i, point, shared) for i, point in enumerate(points))
     everything = (*shared, *(finding for record in records for finding in record.findings))
     return Sheet(
@@ -51,6 +51,7 @@ def check(design: Design, on: date | None = None) -> Sheet:
 
 
 def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Finding, ...]) -> OperatingPointRecord:
+    people, exposed = exposure(design, point)
     findings = (
         capacitor.voltage(design, point),
         capacitor.current(design, point),
@@ -58,6 +59,7 @@ def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Fin
         loop.size(point),
         loop.bandwidth(point),
         loop.q_bound(point),
+        *exposed,
     )
     transmission = point.transmission
     return OperatingPointRecord(
@@ -66,17 +68,12 @@ def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Fin
         power=point.power,
         power_at_loop=point.power_at_loop.likely or 0.0,
         mode=transmission.mode,
-        duty=_duty(transmission),
+        duty=use_of(transmission).duty,
         power_ceiling=ceiling((*findings, *shared), index),
         figures=_figures(point),
         findings=findings,
+        exposure=people,
     )
-
-
-def _duty(transmission: Transmission) -> float:
-    if transmission.duty is not None:
-        return transmission.duty
-    return 1.0 if transmission.mode is None else mode_duty(transmission.mode)
 
 
 def _figures(point: OperatingPoint) -> dict[str, FigureRecord]:

@@ -92,8 +92,98 @@ class DesignRecord(Record):
     text: str
 
 
+class BasisRecord(Record):
+    """What one basis of a rule says of a place: RMS fields at the power it judges, at their dangerous end.
+
+    `set_by` is the field that decides, E or H; null values are fields that the basis does not limit.
+    """
+
+    electric: float | None
+    magnetic: float | None
+    electric_limit: float | None
+    magnetic_limit: float | None
+    share_of_limit: float
+    field_ratio: float
+    set_by: str
+    basis: str
+    judged_power: float
+    averaging_time: float
+    provenance: str
+
+
+class PlaceRecord(Record):
+    """A place under one rule: its binding basis, its verdict, and the power it could bear [W].
+
+    That is the envelope power; of a place that is judged while tuning, the tune-up carrier's.
+    """
+
+    name: str
+    electric: float | None
+    magnetic: float | None
+    electric_limit: float | None
+    magnetic_limit: float | None
+    share_of_limit: float | None
+    field_ratio: float | None
+    set_by: str | None
+    basis: str | None
+    judged_power: float | None
+    averaging_time: float | None
+    provenance: str | None
+    verdict: Verdict
+    power_ceiling: float | None
+    at_limit: float | None
+    when: str
+    bases: tuple[BasisRecord, ...]
+
+
+class DistanceRecord(Record):
+    """A distance from the loop's centre [m], rounded up; null where the search did not bound it."""
+
+    distance: float | None
+    set_by: str
+    basis: str
+
+
+class FloorRecord(Record):
+    """Distances for people on one floor; null for a direction that the loop does not have."""
+
+    floor: float
+    along_axis: DistanceRecord | None
+    in_plane: DistanceRecord
+    across: DistanceRecord | None
+
+
+class DistancesRecord(Record):
+    """Distances beyond which no point exceeds the limit less the exposure margin."""
+
+    any_direction: DistanceRecord
+    along_axis: DistanceRecord | None
+    in_plane: DistanceRecord
+    across: DistanceRecord | None
+    above: DistanceRecord
+    below: DistanceRecord
+    on_floors: tuple[FloorRecord, ...]
+
+
+class KeepoutRecord(DistancesRecord):
+    """The same averaged as the rule averages, and for an unbroken carrier at full power."""
+
+    key_down: DistancesRecord
+
+
+class ExposureRecord(Record):
+    """One rule and tier: distances and places. `why` tells why there are no distances, or what they leave out."""
+
+    rule: str
+    edition: str
+    who: str
+    keepout: KeepoutRecord | None
+    places: tuple[PlaceRecord, ...]
+    why: str | None = None
+
+
 class OperatingPointRecord(Record):
-    """One transmission: its figures, its findings, its ceiling."""
+    """One transmission: its figures, its findings, its ceiling, people."""
 
     name: str
     frequency: float
@@ -104,7 +194,7 @@ class OperatingPointRecord(Record):
     power_ceiling: PowerCeiling
     figures: dict[str, FigureRecord]
     findings: tuple[Finding, ...]
-    exposure: tuple[()] = ()
+    exposure: tuple[ExposureRecord, ...] = ()
 
 
 class Sheet(Record):
@@ -126,6 +216,35 @@ class Sheet(Record):
         """Return the findings of the sheet and of every transmission."""
         inner = (finding for point in self.operating_points for finding in point.findings)
         return (*self.findings, *inner)
+
+    def to_json(self) -> str:
+        """Return the machine form."""
+        return self.model_dump_json(by_alias=True, indent=2)
+
+
+class KeepoutPoint(Record):
+    """The part of a transmission that is about people."""
+
+    name: str
+    frequency: float
+    power: float
+    power_ceiling: PowerCeiling
+    findings: tuple[Finding, ...]
+    exposure: tuple[ExposureRecord, ...]
+
+
+class KeepoutSheet(Record):
+    """The part of a sheet that is about people, with a verdict and a ceiling of its own."""
+
+    schema_name: Annotated[Literal["magsafe.keepout/1"], Field(alias="schema")] = "magsafe.keepout/1"
+    magsafe: str
+    date: str
+    design: DesignRecord
+    findings: tuple[Finding, ...]
+    verdict: Verdict
+    power_ceiling: PowerCeiling
+    operating_points: tuple[KeepoutPoint, ...]
+    cautions: tuple[str, ...]
 
     def to_json(self) -> str:
         """Return the machine form."""

@@ -1,4 +1,20 @@
-"""`magsafe materials` and `magsafe bands`: the tables a design may name rows of."""
+"""`magsafe rules`, `magsafe materials` and `magsafe bands`: the tables a design may name rows of."""
+
+from typing import Annotated
+
+import typer
+
+
+def rules(
+    rule: Annotated[str | None, typer.Argument(metavar="[RULE]", help="Show one rule with all its limits.")] = None,
+) -> None:
+    """List the exposure rules with their editions, or one rule with every limit, its source and who has read it."""
+    from magsafe.reports.rules import show_rule, show_rules  # noqa: PLC0415  (keeps --help quick)
+
+    if rule is None:
+        show_rules()
+    else:
+        show_rule(rule)
 
 
 def materials() -> None:

@@ -4,7 +4,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from magsafe import words
-from magsafe.checks.sheet import ORDER, Finding, OperatingPointRecord, PowerCeiling, Sheet, Verdict
+from magsafe.checks.sheet import ORDER, Finding, KeepoutSheet, OperatingPointRecord, PowerCeiling, Sheet, Verdict
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,6 +51,29 @@ def ceiling(sheet: Sheet, made: PowerCeiling) -> str:
         text = f"Clear up to at most {words.power(made.value)}, by what could be computed; {first}"
     several = f" in {sheet.operating_points[made.transmission].name}" if len(sheet.operating_points) > 1 else ""
     return f"{text} {made.held_by} holds it there{several}."
+
+
+def people_headline(sheet: KeepoutSheet) -> str:
+    """Return what the verdict on people means for the hand on the key."""
+    return {
+        "stop": "Do not key this loop as planned with people where the design puts them.",
+        "unproven": "Do not key this loop with people about before what is unproven is known.",
+        "narrow": "People are within the limits computed here, but not with all that was asked.",
+        "clear": "People are within the limits computed here, with the margins asked for.",
+    }[sheet.verdict]
+
+
+def people_ceiling(sheet: KeepoutSheet) -> str:
+    """Return the highest power for people alone."""
+    made = sheet.power_ceiling
+    if made.value is None or made.at_limit is None:
+        return "No highest power can be named for people: no place could be counted."
+    most = "" if made.complete else "at most "
+    where = sheet.operating_points[made.transmission].name
+    return (
+        f"For people clear up to {most}{words.power(made.value)}; first limit reached at {words.power(made.at_limit)}. "
+        f"{made.held_by} holds it there in {where}."
+    )
 
 
 def left_out(made: PowerCeiling) -> str:

@@ -1,7 +1,7 @@
 """A sheet on a terminal: 80 columns hold everything, the same text with and without colour, no boxes."""
 
 import sys
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from io import TextIOWrapper
 from textwrap import wrap
 
@@ -11,14 +11,14 @@ from rich.table import Table
 from rich.text import Text
 
 from magsafe import words
-from magsafe.checks.sheet import FigureRecord, OperatingPointRecord, Sheet, Verdict
-from magsafe.reports import telling
+from magsafe.checks.sheet import FigureRecord, KeepoutPoint, KeepoutSheet, OperatingPointRecord, Sheet, Verdict
+from magsafe.reports import people, telling
 from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
 
 WIDEST = 100
 _SAID = 13  # columns for shape and verdict word
-_LABEL = 28
+_LABEL = 27
 _ASIDE = 4  # transmissions beside each other in one table
 _PLAIN = str.maketrans(
     {
@@ -73,10 +73,18 @@ def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
         *say.top(sheet),
         *say.in_the_way(sheet),
         *say.figures(sheet.operating_points),
+        *say.people(sheet.operating_points),
         *say.clear(sheet),
         *say.list_of("Assumed", sheet.assumptions),
         *say.list_of("Cautions", sheet.cautions),
     )
+
+
+def show_keepout(sheet: KeepoutSheet, console: Console | None = None) -> None:
+    """Print where people must not be."""
+    console = console or console_on_output()
+    say = _Speaker(console.width, is_plain(console))
+    put(console, Group(*say.keepout(sheet)))
 
 
 class _Speaker:
@@ -106,6 +114,26 @@ class _Speaker:
         """Return shape and word of a verdict."""
         said = f"[{verdict}]" if self.plain else f"{MARKS[verdict].shape} {verdict}"
         return Text(said.ljust(_SAID), style=MARKS[verdict].colour)
+
+    def keepout(self, sheet: KeepoutSheet) -> Iterator[RenderableType]:
+        """Yield the verdict on people, their places, and every distance."""
+        yield self.item(sheet.verdict, telling.people_headline(sheet), bold=True)
+        yield self.paragraph(telling.people_ceiling(sheet), indent=_SAID)
+        yield Text("")
+        yield self.paragraph(f"{sheet.design.name}, {sheet.date}, magsafe {sheet.magsafe}", "dim")
+        for finding in sheet.findings:
+            yield self.item(finding.verdict, f"{finding.id}: {finding.because}. Do: {finding.do}.")
+        for point in sheet.operating_points:
+            yield from self.heading(f"{point.name}, {words.frequency(point.frequency)}, {point.power:.4g} W PEP")
+            for finding in point.findings:
+                where = f"{finding.place} ({finding.id})" if finding.place else finding.id
+                do = "" if finding.verdict == "clear" else f" Do: {finding.do}."
+                yield self.item(finding.verdict, f"{where}: {finding.because}.{do}")
+            head = ("rule and tier", "direction", "m", "set by", "key-down, m")
+            yield Text("")
+            yield self.grid(head, people.keepout_rows(point))
+        yield from self.doubts(sheet.operating_points)
+        yield from self.list_of("Cautions", sheet.cautions)
 
     def top(self, sheet: Sheet) -> Iterator[RenderableType]:
         """Yield the verdict, what it means, and the highest power."""
@@ -138,11 +166,43 @@ class _Speaker:
 
     def clear(self, sheet: Sheet) -> Iterator[RenderableType]:
         """Yield what is clear, a paragraph each."""
-        told = list(telling.findings(sheet, "clear"))
+        told = [each for each in telling.findings(sheet, "clear") if each.finding.place is None]
         if told:
             yield from self.heading("What is clear")
         for each in told:
             yield self.item("clear", f"{_title(each)}: {each.finding.because}.")
+
+    def people(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
+        """Yield places with their verdicts, and the table of distances, for each transmission."""
+        if not any(point.exposure for point in points):
+            return
+        yield from self.heading("People: places")
+        for point in points:
+            yield self.paragraph(f"{point.name}, {words.frequency(point.frequency)}, {point.power:.4g} W PEP")
+            for exposure in point.exposure:
+                for place in exposure.places:
+                    yield self.item(place.verdict, f"{people.place_text(place, exposure)}.")
+        yield from self.heading("People: keep-out in metres from the loop's centre, averaged; last column key-down")
+        for point in points:
+            yield self.grid((point.name, *people.distance_columns(point)), people.distance_rows(point))
+        yield from self.doubts(points)
+
+    def doubts(self, points: Sequence[OperatingPointRecord | KeepoutPoint]) -> Iterator[RenderableType]:
+        """Yield why distances are not known, or do not hold."""
+        reasons = dict.fromkeys(each.why for point in points for each in point.exposure if each.why)
+        for reason in reasons:
+            yield self.paragraph(f"Not proven: {reason}.")
+
+    def grid(self, head: Sequence[str], rows: Iterable[Sequence[str]]) -> RenderableType:
+        """Return a table of short cells, the first column to the left."""
+        table = Table(box=None, pad_edge=False, padding=(0, 0, 0, 1), show_edge=False)
+        table.add_column(Text(self.letters(head[0])), width=_LABEL - 6)
+        for name in head[1:]:
+            words_in_it = name in ("direction", "set by")
+            table.add_column(Text(self.letters(name)), justify="left" if words_in_it else "right", min_width=6)
+        for row in rows:
+            table.add_row(*(self.letters(cell) for cell in row))
+        return Padding(table, (0, 0, 1, 0))
 
     def figures(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
         """Yield the table of figures, so many transmissions beside each other as the width holds."""
@@ -162,11 +222,11 @@ class _Speaker:
                 yield self.paragraph(reason)
 
     def _table(self, points: Sequence[OperatingPointRecord]) -> RenderableType:
-        table = Table(box=None, pad_edge=False, padding=(0, 1), show_edge=False)
+        table = Table(box=None, pad_edge=False, padding=(0, 0, 0, 1), show_edge=False)
         table.add_column("", width=_LABEL)
         for point in points:
             name = "\n".join(dict.fromkeys((point.name, words.frequency(point.frequency))))
-            table.add_column(Text(self.letters(name)), justify="right", width=11)
+            table.add_column(Text(self.letters(name)), justify="right", width=12)
         table.add_row("Power at the key, W PEP", *(f"{point.power:.4g}" for point in points))
         table.add_row("Clear up to, W PEP", *(self._clear_to(point) for point in points))
         for row in telling.ROWS:
@@ -185,7 +245,7 @@ class _Speaker:
         if not spread.known:
             return "not known"
         likely = "?" if spread.likely is None else words.number(spread.likely, row.si, row.unit)
-        ends = words.ends(spread, row.si, row.unit).strip("()")
+        ends = words.ends(spread, row.si, row.unit).strip("()").replace("at most", "up to").replace("at least", "from")
         return self.letters(f"{likely}\n{ends}" if ends else likely)
 
     def list_of(self, title: str, sentences: Sequence[str]) -> Iterator[RenderableType]:

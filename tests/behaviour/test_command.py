@@ -1,14 +1,13 @@
 """The commands as a person and a script meet them: output, errors, exit statuses."""
 
 import json
-import os
 import subprocess
 import sys
-from collections.abc import Mapping
 from pathlib import Path
 from typing import Any
 
 import pytest
+from commands import run
 from designs import file_of, plain_tree
 
 import magsafe
@@ -18,19 +17,6 @@ CLEAR = {
     "capacitor__rated_voltage": "30 kV",
     "site__rules": ["us-fcc"],
 }
-
-
-def run(*arguments: str, given: bytes = b"", env: Mapping[str, str] | None = None) -> subprocess.CompletedProcess[str]:
-    base = {k: v for k, v in os.environ.items() if k not in ("COLUMNS", "NO_COLOR", "FORCE_COLOR")}
-    return subprocess.run(
-        [sys.executable, "-m", "magsafe", *arguments],
-        input=given.decode(),
-        capture_output=True,
-        text=True,
-        encoding="utf-8",
-        env={**base, "PYTHONIOENCODING": "utf-8", **(env or {})},
-        check=False,
-    )
 
 
 def check(*arguments: str, **changes: Any) -> subprocess.CompletedProcess[str]:
@@ -43,9 +29,9 @@ def test_version_both_ways() -> None:
 
 def test_help_names_every_command() -> None:
     text = run("--help").stdout
-    for command in ("check", "materials", "bands", "schema"):
+    for command in ("check", "keepout", "rules", "materials", "bands", "schema"):
         assert command in text
-    for command in ("check", "materials", "bands", "schema"):
+    for command in ("check", "keepout", "rules", "materials", "bands", "schema"):
         assert run(command, "--help").returncode == 0
 
 
@@ -78,6 +64,19 @@ def capacitor_verdict(sample: str) -> str:
 )
 def test_the_samples_show_a_capacitor_of_each_verdict(sample: str, verdict: str) -> None:
     assert capacitor_verdict(sample) == verdict
+
+
+@pytest.mark.parametrize(
+    ("sample", "verdict"),
+    [
+        ("slipway_portable", "clear"),
+        ("quay_rail", "narrow"),
+        ("breakwater_mast", "stop"),
+        ("lighthouse_gallery", "unproven"),
+    ],
+)
+def test_each_sample_has_its_verdict_as_a_whole(sample: str, verdict: str) -> None:
+    assert magsafe.check(magsafe.read_design(SAMPLES / f"{sample}.toml")).verdict == verdict
 
 
 def test_json_is_alone_on_standard_output() -> None:
@@ -135,7 +134,7 @@ def test_a_fault_of_the_program_is_no_verdict(
 def test_ascii_streams_get_ascii() -> None:
     done = run("check", str(SAMPLES / "quay_rail.toml"), env={"PYTHONIOENCODING": "ascii"})
     assert done.stdout.isascii()
-    assert done.stdout.startswith("[unproven]")
+    assert done.stdout.startswith("[narrow]")
     assert "mohm" in done.stdout
     assert "?" not in done.stdout.split("Figures")[1].split("Not known")[0]
 

@@ -4,9 +4,11 @@ import ast
 import re
 import tomllib
 from collections.abc import Iterator
+from math import pi, sqrt
 from pathlib import Path
 
 import pytest
+from designs import plain_design
 from readme_commands import command_under
 
 import magsafe
@@ -72,10 +74,30 @@ def test_the_readme_has_its_two_commands() -> None:
 
 def test_the_readme_names_every_command_and_sample() -> None:
     text = (ROOT / "README.md").read_text(encoding="utf-8")
-    for command in ("check", "materials", "bands", "schema"):
+    for command in ("check", "keepout", "rules", "materials", "bands", "schema"):
         assert f"magsafe {command}" in text
     for sample in (ROOT / "sample_designs").glob("*.toml"):
         assert sample.name in text
+
+
+def test_the_readmes_distances_are_the_tools() -> None:
+    """Near field by the tool beside OET Bulletin 65's far-field formula, S = P G / 4 pi R^2 (as quoted, secondary)."""
+    design = plain_design(
+        site__rules=["us-fcc"],
+        margins={"exposure": "0 dB"},
+        capacitor__position="top",
+        loop__conductor={"form": "tube", "outer_diameter": "22 mm", "wall": "1 mm", "material": "copper tube"},
+    )
+    (point,) = magsafe.check(design).operating_points
+    keepout = point.exposure[1].keepout
+    assert keepout is not None
+    assert keepout.along_axis is not None
+    efficiency = point.figures["conductor_efficiency"].likely or 0.0
+    density = 1800.0 / 7.1**2  # W/m2, plane-wave equivalent of 47 CFR 1.1310 for the general population
+    far = sqrt(100.0 * 1.5 * efficiency / (4.0 * pi * density))
+    text = (ROOT / "README.md").read_text(encoding="utf-8")
+    assert f"from {keepout.along_axis.distance:.1f} m on its axis" in text
+    assert f"at {far:.2f} m ({2.0 * far:.2f} m with full ground reflection)" in text
 
 
 def test_the_output_in_the_readme_is_that_of_the_program() -> None:

@@ -100,12 +100,16 @@ GOOD = [
     ("loop__diameter", "3.25 ft", 0.9906),
     ("loop__conductor__temperature", "20 °C", 293.15),
     ("loop__conductor__temperature", "-20 degC", 253.15),
+    ("capacitor__stray", "0.000003 \u00b5F", 3e-12),
+    ("capacitor__stray", "0.000003 \u03bcF", 3e-12),
+    ("capacitor__series_resistance__likely", "5 m\u03a9", 5e-3),
+    ("capacitor__series_resistance__likely", "5 m\u2126", 5e-3),
 ]
 
 
 @pytest.mark.parametrize(("path", "text", "value"), GOOD)
 def test_good_quantities_become_si(design: MakeDesign, path: str, text: str, value: float) -> None:
-    found: Any = design(**{path: text})
+    found: Any = design(capacitor__series_resistance__high="9 mohm", **{path: text})
     for step in path.split("__"):
         found = getattr(found, step)
     assert found == pytest.approx(value)

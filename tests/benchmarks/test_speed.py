@@ -1,7 +1,7 @@
 """Whole commands and their parts, measured. Not in the default run: pytest tests/benchmarks --override-ini addopts="".
 
 Targets on an ordinary 2-core machine: `magsafe --help` under 0.3 s, `magsafe check` of the four-transmission sample
-under 1.0 s, each as a whole process.
+with one rule, two places and keep-out under 1.5 s, each as a whole process.
 """
 
 import subprocess
@@ -23,6 +23,19 @@ SAMPLE = Path(__file__).parents[2] / "sample_designs" / "slipway_portable.toml"
 def test_whole_process(benchmark: BenchmarkFixture, arguments: list[str]) -> None:
     def run() -> None:
         subprocess.run([sys.executable, "-m", "magsafe", *arguments], capture_output=True, check=False)
+
+    benchmark.pedantic(run, rounds=9, warmup_rounds=1)  # type: ignore[no-untyped-call]
+
+
+def test_whole_process_with_two_rules_and_three_places(benchmark: BenchmarkFixture, tmp_path: Path) -> None:
+    text = SAMPLE.read_text(encoding="utf-8").replace('rules = ["us-fcc"]', 'rules = ["us-fcc", "icnirp-2020"]')
+    text += '\n[[place]]\nname = "boat house"\nwho = "public"\nin_plane = "9 m"\nposture = "standing"\n'
+    design = tmp_path / "slipway.toml"
+    design.write_text(text, encoding="utf-8")
+
+    def run() -> None:
+        done = subprocess.run([sys.executable, "-m", "magsafe", "check", str(design)], capture_output=True, check=False)
+        assert done.returncode == 0
 
     benchmark.pedantic(run, rounds=9, warmup_rounds=1)  # type: ignore[no-untyped-call]
 

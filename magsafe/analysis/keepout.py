@@ -1,0 +1,248 @@
+"""Where people must not be: the distance beyond which no point exceeds a share of a limit, by direction.
+
+Fields are not monotonic near the conductor, so the outermost crossing is looked for, inwards from far away. For each
+direction and distance the strongest field over the heights or bearings that belong to it is kept; between distances
+the square of the field is interpolated as a power law, and 2 % of distance is added for what lies between the samples.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from math import ceil, inf, log, pi
+
+import numpy as np
+from scipy.constants import c
+
+from magsafe.analysis.exposure import Basis, Use, weights
+from magsafe.analysis.field_source import FieldSource, touch_distance
+from magsafe.physics.arrays import Array
+
+FARTHEST = 150.0  # m
+_PAD = 1.02
+_STEP = 0.1  # m, to which distances are rounded up
+_PEOPLE = (0.0, 0.5, 1.0, 1.5, 2.0)  # m above a floor
+_HEIGHTS = (0.0, 0.1, 0.2, 0.35, 0.5, 0.75, 1.0, 1.5, 2.5)  # of the distance, above and below the centre
+
+
+@dataclass(frozen=True, slots=True)
+class Distance:
+    """A distance from the loop's centre [m], rounded up; None where the search did not bound it.
+
+    `set_by` is `E`, `H` or `touch`; `basis` names the rule's basis, empty for touch.
+    """
+
+    distance: float | None
+    set_by: str
+    basis: str
+
+
+@dataclass(frozen=True, slots=True)
+class FloorDistances:
+    """Distances for people on one floor [m above ground]; None for a direction that the loop does not have."""
+
+    floor: float
+    along_axis: Distance | None
+    in_plane: Distance
+    across: Distance | None
+
+
+@dataclass(frozen=True, slots=True)
+class Distances:
+    """The distances of one rule and tier; `along_axis` is of an upright loop, `across` of a flat one."""
+
+    any_direction: Distance
+    along_axis: Distance | None
+    in_plane: Distance
+    across: Distance | None
+    above: Distance
+    below: Distance
+    on_floors: tuple[FloorDistances, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Shells:
+    """Strongest squares for each watt at the loop against distance [m], by direction, shape (distance,) each.
+
+    `to_ground` is how far the ground lies below the centre [m], infinite in free space: nobody is further down.
+    """
+
+    distances: Array
+    electric: dict[str, Array]
+    magnetic: dict[str, Array]
+    floors: tuple[float, ...]
+    bare_factor: float
+    to_ground: float
+
+
+def shells(source: FieldSource) -> Shells:
+    """Return the strongest fields about a source, from the touch distance to 150 m."""
+    nearest = touch_distance(source.line)
+    # Over a plane, direct and mirrored field make lobes whose number grows with the height in wavelengths.
+    lobes = 2.0 * pi * source.point.transmission.frequency / c * source.height if source.grounded else 0.0
+    count = min(14 + ceil(5.0 * max(0.0, lobes - 0.5)), 80)
+    distances = np.geomspace(nearest, FARTHEST, count)
+    floors = tuple(source.design.site.floors or [0.0])
+    families = _families(source, floors, lobes)
+    sets = [make(distances) for make in families.values()]
+    points = np.concatenate([each.reshape(-1, 3) for each in sets])
+    there = points[:, 2] >= 0.0 if source.grounded else np.ones(len(points), dtype=bool)
+    electric, magnetic = np.zeros(len(points)), np.zeros(len(points))
+    squares = source.strongest(points[there])
+    electric[there], magnetic[there] = squares.electric, squares.magnetic
+    edges = np.cumsum([each.shape[0] * each.shape[1] for each in sets])[:-1]
+    tops = [
+        {
+            name: part.reshape(count, -1).max(axis=1)
+            for name, part in zip(families, np.split(values, edges), strict=True)
+        }
+        for values in (electric, magnetic)
+    ]
+    to_ground = source.height if source.grounded else inf
+    return Shells(distances, tops[0], tops[1], floors, source.bare_factor, to_ground)
+
+
+Family = Callable[[Array], Array]
+
+
+def _families(source: FieldSource, floors: tuple[float, ...], lobes: float) -> dict[str, Family]:
+    """Return for each direction how its points follow from distances (d,): shape (d, point, 3)."""
+    height = source.height
+    vertical = source.design.loop.plane == "vertical"
+    if vertical:
+        bearings = {"along_axis": [0.0], "in_plane": [pi / 2.0] if source.mirrors else [pi / 2.0, -pi / 2.0]}
+    else:
+        bearings = {"in_plane": [0.0, pi], "across": [pi / 2.0]}
+    if source.design.loop.rotates:
+        every = list(np.radians(np.arange(0.0, 360.0, 10.0)))
+        bearings = dict.fromkeys(bearings, every)
+
+    def any_height(turns: list[float]) -> Family:
+        def points(distances: Array) -> Array:
+            up = np.concatenate([_HEIGHTS, -np.asarray(_HEIGHTS[1:])])
+            own = height + distances[:, None] * up
+            low = np.broadcast_to(np.linspace(0.0, height, 5), (len(distances), 5))
+            heights = np.concatenate([own, low], axis=1) if source.grounded else own
+            return _at(distances, heights, turns)
+
+        return points
+
+    def on_floor(floor: float, turns: list[float]) -> Family:
+        def points(distances: Array) -> Array:
+            heights = np.broadcast_to(floor + np.asarray(_PEOPLE), (len(distances), len(_PEOPLE)))
+            return _at(distances, heights, turns)
+
+        return points
+
+    def upright(sign: float) -> Family:
+        def points(distances: Array) -> Array:
+            zero = np.zeros_like(distances)
+            return np.stack([zero, zero, height + sign * distances], axis=1)[:, None, :]
+
+        return points
+
+    half = (0.0, pi / 2.0) if source.mirrors else (-pi / 2.0, pi / 2.0) if vertical else (0.0, pi)
+    families: dict[str, Family] = {"any_direction": lambda d: _sphere(d, height, lobes, half)}
+    families |= {name: any_height(turns) for name, turns in bearings.items()}
+    families |= {"above": upright(1.0), "below": upright(-1.0)}
+    for floor in floors:
+        families |= {f"{name} on {floor:.6f}": on_floor(floor, turns) for name, turns in bearings.items()}
+    return families
+
+
+def _at(distances: Array, heights: Array, turns: list[float]) -> Array:
+    """Return points at horizontal distances (d,), heights (d, z) and bearings: shape (d, bearing * z, 3)."""
+    made = []
+    for turn in turns:
+        x = np.broadcast_to((distances * np.cos(turn))[:, None], heights.shape)
+        y = np.broadcast_to((distances * np.sin(turn))[:, None], heights.shape)
+        made.append(np.stack([x, y, heights], axis=2))
+    return np.concatenate(made, axis=1)
+
+
+def _sphere(distances: Array, height: float, lobes: float, bearings: tuple[float, float]) -> Array:
+    """Return points all round the centre, over the bearings that the others mirror."""
+    step = 15.0 / (1.0 + lobes / 3.0)
+    up = np.radians(np.linspace(-90.0, 90.0, ceil(180.0 / step) + 1))
+    turn = np.linspace(*bearings, round((bearings[1] - bearings[0]) / np.radians(15.0)) + 1)
+    elevation, bearing = (each.ravel() for each in np.meshgrid(up, turn))
+    unit = np.stack(
+        [np.cos(elevation) * np.cos(bearing), np.cos(elevation) * np.sin(bearing), np.sin(elevation)], axis=1
+    )
+    return np.asarray(distances[:, None, None] * unit + [0.0, 0.0, height])
+
+
+def keep_out(
+    found: Shells, bases: tuple[Basis, ...], use: Use, at_loop: float, margin: float, vertical: bool
+) -> Distances:
+    """Return the distances beyond which no point exceeds the limits of `bases` less a margin.
+
+    Parameters
+    ----------
+    found : the fields about the loop
+    bases : the rule's bases for one tier
+    use : how the power fills time
+    at_loop : power at the loop for each watt at the transmitter, at its dangerous end
+    margin : ratio of fields, 1 or more
+    vertical : whether the loop is upright
+    """
+    # Without credit for typical losses, as every distance that people rely on.
+    weighed = list(weights(bases, use, at_loop * margin**2 * found.bare_factor))
+
+    def one(name: str) -> Distance:
+        return _outermost(found.distances, found.electric[name], found.magnetic[name], weighed)
+
+    sides = ("along_axis", "in_plane") if vertical else ("in_plane", "across")
+
+    def pick(name: str, suffix: str = "") -> Distance | None:
+        return one(f"{name}{suffix}") if name in sides else None
+
+    floors = tuple(
+        FloorDistances(
+            floor,
+            pick("along_axis", f" on {floor:.6f}"),
+            one(f"in_plane on {floor:.6f}"),
+            pick("across", f" on {floor:.6f}"),
+        )
+        for floor in found.floors
+    )
+    return Distances(
+        one("any_direction"),
+        pick("along_axis"),
+        one("in_plane"),
+        pick("across"),
+        one("above"),
+        _capped(one("below"), found.to_ground),
+        floors,
+    )
+
+
+def _outermost(
+    distances: Array, electric: Array, magnetic: Array, weighed: list[tuple[Basis, float, float]]
+) -> Distance:
+    """Return the outermost distance at which any basis is reached."""
+    touch = Distance(round_up(float(distances[0])), "touch", "")
+    found = [touch]
+    for basis, by_electric, by_magnetic in weighed:
+        for name, squares, weight in (("E", electric, by_electric), ("H", magnetic, by_magnetic)):
+            reached = np.flatnonzero(squares * weight >= 1.0)
+            if not len(reached):
+                continue
+            last = int(reached[-1])
+            if last == len(distances) - 1:
+                return Distance(None, name, basis.name)
+            here, there = float(squares[last] * weight), float(squares[last + 1] * weight)
+            share = log(here) / log(here / there) if there > 0.0 else 1.0
+            crossing = float(distances[last] * (distances[last + 1] / distances[last]) ** share)
+            found.append(Distance(round_up(crossing * _PAD), name, basis.name))
+    return max(found, key=lambda each: each.distance or 0.0)
+
+
+def _capped(found: Distance, most: float) -> Distance:
+    """Return a distance no longer than the way there is."""
+    if found.set_by == "touch" or most == inf:
+        return found
+    return Distance(min(found.distance or inf, round_up(most)), found.set_by, found.basis)
+
+
+def round_up(distance: float) -> float:
+    """Return a distance rounded up to 0.1 m."""
+    return ceil(distance / _STEP - 1e-9) / 10.0

@@ -1,0 +1,167 @@
+"""The strongest field where somebody can be: columns, points and fences."""
+
+from dataclasses import dataclass
+from math import ceil, hypot
+
+import numpy as np
+
+from magsafe.analysis.field_source import FieldSource, at_bearings
+from magsafe.design.model import Design, Place
+from magsafe.physics.arrays import Array
+
+HALF_WIDTH = 0.3  # m, of the column that a person takes up
+POSTURES = {"standing": 2.0, "sitting": 1.4, "lying": 0.6}
+ELECTRIC_NEAR_CONDUCTOR = 0.3  # m: nearer, the capacitor's and the conductor's own bodies rule the electric field
+ELECTRIC_NEAR_CAPACITOR = 0.5
+_ACROSS, _UP = 0.15, 0.2  # m, first steps of the search in a column
+_REFINEMENTS = 2
+_FENCE_STEPS = (1.0, 1.05, 1.12, 1.25, 1.5, 2.0, 3.0, 5.0)
+_FENCE_HEIGHTS = (0.0, 0.5, 1.0, 1.5, 2.0)
+
+
+@dataclass(frozen=True, slots=True)
+class Strongest:
+    """Squares of the strongest RMS fields at a place for each watt at the loop, and why one is not to be trusted."""
+
+    electric: float
+    magnetic: float
+    doubts: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class _Box:
+    """An upright box: its lower and upper corner [m], each (3,)."""
+
+    low: Array
+    high: Array
+
+
+def at_places(source: FieldSource, places: tuple[Place, ...]) -> tuple[Strongest, ...]:
+    """Return the strongest field at each place, in their order.
+
+    A column is searched on its surface, where a field without sources inside is strongest, first in steps of 0.15 m
+    across and 0.2 m up, then about its best points in steps a quarter of that.
+    """
+    boxes = [_boxes(source.design, place) for place in places]
+    grids = [_fence(source, place) if place.fence else _grid(own) for place, own in zip(places, boxes, strict=True)]
+    owners = np.repeat(np.arange(len(places)), [len(grid) for grid in grids])
+    found = _Search(source, len(places))
+    found.look(np.concatenate(grids), owners)
+    step = np.array([_ACROSS, _ACROSS, _UP])
+    for _ in range(_REFINEMENTS):
+        step = step / 2.0
+        found.look(*_about(found, boxes, step))
+    return tuple(found.result(index, place) for index, place in enumerate(places))
+
+
+class _Search:
+    """Keeps the best points so far, for the electric and the magnetic field of each place."""
+
+    def __init__(self, source: FieldSource, count: int) -> None:
+        self.source = source
+        self.best = np.zeros((2, count))
+        self.where = np.full((2, count, 3), np.nan)
+        self.axis = np.full(count, np.inf)
+        self.port = np.full(count, np.inf)
+        self.buried = np.zeros(count, dtype=bool)
+        self.radius = source.wires[0].radius
+
+    def look(self, points: Array, owners: np.ndarray[tuple[int], np.dtype[np.intp]]) -> None:
+        """Evaluate points, each for the place that owns it."""
+        axis, port = self.source.clearance(points)
+        np.minimum.at(self.axis, owners, axis)
+        np.minimum.at(self.port, owners, port)
+        below = points[:, 2] < 0.0 if self.source.grounded else np.zeros(len(points), dtype=bool)
+        np.logical_or.at(self.buried, owners, below)
+        sound = (axis >= self.radius) & ~below
+        points, owners, axis, port = points[sound], owners[sound], axis[sound], port[sound]
+        if not len(points):
+            return
+        squares = self.source.strongest(points)
+        trusted = (axis >= ELECTRIC_NEAR_CONDUCTOR) & (port >= ELECTRIC_NEAR_CAPACITOR)
+        for kind, values in enumerate((np.where(trusted, squares.electric, 0.0), squares.magnetic)):
+            for owner in np.unique(owners):
+                own = np.flatnonzero(owners == owner)
+                top = own[np.argmax(values[own])]
+                if values[top] > self.best[kind, owner]:
+                    self.best[kind, owner] = values[top]
+                    self.where[kind, owner] = points[top]
+
+    def result(self, index: int, place: Place) -> Strongest:
+        """Return what was found for a place."""
+        doubts = []
+        if self.axis[index] < ELECTRIC_NEAR_CONDUCTOR or self.port[index] < ELECTRIC_NEAR_CAPACITOR:
+            doubts.append(
+                f"it comes within {ELECTRIC_NEAR_CONDUCTOR:g} m of the conductor or {ELECTRIC_NEAR_CAPACITOR:g} m of "
+                "the capacitor, where the electric field is that of their bodies and is not computed"
+            )
+        if self.axis[index] < self.radius:
+            doubts.append("the conductor runs through it")
+        if self.buried[index]:
+            doubts.append("part of it is below the ground")
+        if place.fence and place.fence < self.source.line.reach:
+            doubts.append("the fence is inside the loop's outline")
+        return Strongest(float(self.best[0, index]), float(self.best[1, index]), tuple(doubts))
+
+
+def _boxes(design: Design, place: Place) -> list[_Box]:
+    """Return the box of a place, or one for each bearing of a loop that rotates; none for a fence."""
+    if place.fence:
+        return []
+    if design.loop.plane == "vertical":
+        x, y = place.along_axis or 0.0, place.in_plane or 0.0
+    else:
+        x, y = place.in_plane or 0.0, place.across or 0.0
+    if place.height is not None:
+        low, high, half = place.height, place.height, 0.0
+    else:
+        low, half = place.floor or 0.0, HALF_WIDTH
+        high = low + POSTURES[place.posture or "standing"]
+    centres = np.array([[x, y, 0.0]])
+    if design.loop.rotates:
+        centres = at_bearings(np.array([[hypot(x, y), 0.0, 0.0]]), np.radians(np.arange(0.0, 360.0, 7.5)))
+    wide = np.array([half, half, 0.0])
+    return [_Box(centre - wide + [0.0, 0.0, low], centre + wide + [0.0, 0.0, high]) for centre in centres]
+
+
+def _grid(boxes: list[_Box]) -> Array:
+    return np.concatenate([_surface(box) for box in boxes])
+
+
+def _surface(box: _Box) -> Array:
+    """Return points on the upright sides of a box, and its one upright line where it has no width."""
+    size = box.high - box.low
+    up = np.linspace(box.low[2], box.high[2], max(1, ceil(size[2] / _UP)) + 1) if size[2] > 0.0 else box.low[2:3]
+    if size[0] == 0.0:
+        across = box.low[None, :2]
+    else:
+        side = np.linspace(0.0, 1.0, round(size[0] / _ACROSS) + 1)
+        x, y = np.meshgrid(side, side)
+        rim = (x == 0.0) | (x == 1.0) | (y == 0.0) | (y == 1.0)
+        across = box.low[:2] + np.stack([x[rim], y[rim]], axis=1) * size[:2]
+    return np.concatenate([np.repeat(across, len(up), axis=0), np.tile(up, len(across))[:, None]], axis=1)
+
+
+def _about(
+    found: _Search, boxes: list[list[_Box]], step: Array
+) -> tuple[Array, np.ndarray[tuple[int], np.dtype[np.intp]]]:
+    """Return points a step about the best ones, kept in their boxes."""
+    offsets = np.stack(np.meshgrid(*[[-1.0, 0.0, 1.0]] * 3), axis=-1).reshape(-1, 3) * step
+    points, owners = [np.empty((0, 3))], [np.empty(0, dtype=np.intp)]
+    for owner, own in enumerate(boxes):
+        for best in found.where[:, owner]:
+            for box in own:
+                if np.all(best >= box.low - 1e-9) and np.all(best <= box.high + 1e-9):
+                    near = np.clip(best + offsets, box.low, box.high)
+                    points.append(near)
+                    owners.append(np.full(len(near), owner, dtype=np.intp))
+                    break
+    return np.concatenate(points), np.concatenate(owners)
+
+
+def _fence(source: FieldSource, place: Place) -> Array:
+    """Return points on and outside a fence, at every bearing, at the heights of people on each floor."""
+    floors = source.design.site.floors or [0.0]
+    heights = [floor + up for floor in floors for up in _FENCE_HEIGHTS]
+    ring = [[(place.fence or 0.0) * further, 0.0, z] for further in _FENCE_STEPS for z in heights]
+    return at_bearings(np.array(ring), np.radians(np.arange(0.0, 360.0, 10.0)))

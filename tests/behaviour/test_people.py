@@ -1,0 +1,240 @@
+"""What the sheet says of people: findings, places, ceilings, keep-out and rules as the contract has them."""
+
+import json
+from typing import Any
+
+import pytest
+from commands import run
+from designs import MakeDesign, file_of, plain_tree
+
+import magsafe
+from magsafe.checks.keepout import keepout
+from magsafe.checks.sheet import Finding, PlaceRecord, Sheet
+
+DESK = {"name": "operating desk", "who": "trained", "along_axis": "3 m", "posture": "sitting"}
+WALK = {"name": "Quay walk", "who": "public", "along_axis": "8 m"}
+SITE = {"site": {"ground": "average", "rules": ["us-fcc"]}, "loop__centre_height": "2 m", "capacitor__position": "top"}
+
+
+def sheet_of(design: MakeDesign, **changes: Any) -> Sheet:
+    return magsafe.check(design(**{**SITE, **changes}))
+
+
+def findings(sheet: Sheet) -> dict[str, Finding]:
+    return {f.id: f for f in sheet.all_findings() if f.id.startswith("exposure.")}
+
+
+def place_of(sheet: Sheet, name: str, rule: str = "us-fcc") -> PlaceRecord:
+    (point, *_) = sheet.operating_points
+    return next(p for e in point.exposure if e.rule == rule for p in e.places if p.name == name)
+
+
+def test_silence_is_never_clear(design: MakeDesign) -> None:
+    found = findings(sheet_of(design, place=[DESK]))
+    assert set(found) == {"exposure.us-fcc.trained.operating-desk", "exposure.us-fcc.public"}
+    assert found["exposure.us-fcc.public"].verdict == "unproven"
+    assert found["exposure.us-fcc.trained.operating-desk"].verdict == "clear"
+
+
+def test_the_finding_of_a_place_carries_its_name(design: MakeDesign) -> None:
+    found = findings(sheet_of(design, place=[DESK, WALK]))["exposure.us-fcc.public.quay-walk"]
+    assert found.place == "Quay walk"
+    assert found.margin_asked == pytest.approx(1.2589, abs=1e-4)
+    assert found.limit is not None
+    assert found.value is not None
+    assert found.margin_found == pytest.approx(found.limit.value / (found.value.high or 0.0))
+    assert found.provenance == "verified"
+
+
+def test_a_place_copies_its_binding_basis(design: MakeDesign) -> None:
+    site = {"ground": "average", "rules": ["icnirp-2020"]}
+    place = place_of(sheet_of(design, site=site, place=[WALK]), "Quay walk", "icnirp-2020")
+    binding = max(place.bases, key=lambda basis: basis.share_of_limit)
+    for name in type(binding).model_fields:
+        assert getattr(place, name) == getattr(binding, name)
+    for basis in place.bases:
+        assert basis.field_ratio == pytest.approx(basis.share_of_limit**0.5)
+        ratios = [
+            field / limit
+            for field, limit in ((basis.electric, basis.electric_limit), (basis.magnetic, basis.magnetic_limit))
+            if field is not None and limit is not None
+        ]
+        assert basis.field_ratio == pytest.approx(max(ratios))
+    powers = {basis.basis: basis.judged_power for basis in place.bases}
+    assert powers["electrostimulation"] == pytest.approx(100.0)
+
+
+def test_shares_scale_with_power_exactly(design: MakeDesign) -> None:
+    one = place_of(sheet_of(design, place=[WALK]), "Quay walk")
+    ten = place_of(sheet_of(design, place=[WALK], transmission__0__power="1000 W"), "Quay walk")
+    assert (ten.share_of_limit or 0.0) == pytest.approx(10.0 * (one.share_of_limit or 0.0), rel=1e-12)
+    assert ten.power_ceiling == pytest.approx(one.power_ceiling, rel=1e-9)
+
+
+def test_at_its_ceiling_a_place_is_clear_and_above_it_is_not(design: MakeDesign) -> None:
+    mode = {"frequency": "7.1 MHz", "power": "100 W", "mode": "SSB", "over": {"transmit": "4 min", "listen": "3 min"}}
+    near = {**WALK, "along_axis": "3 m"}
+    ceiling = place_of(sheet_of(design, place=[near], transmission__0=mode), "Quay walk").power_ceiling or 0.0
+
+    def verdict(watts: float) -> str:
+        made = sheet_of(design, place=[near], transmission__0={**mode, "power": f"{watts:.9f} W"})
+        return place_of(made, "Quay walk").verdict
+
+    assert verdict(ceiling * (1.0 - 1e-6)) == "clear"
+    assert verdict(ceiling * 1.01) == "narrow"
+
+
+def test_people_hold_the_power_ceiling(design: MakeDesign) -> None:
+    near = {**WALK, "along_axis": "2 m"}
+    sheet = sheet_of(design, place=[DESK, near], capacitor__rated_voltage="100 kV", capacitor__rated_current="1000 A")
+    assert sheet.power_ceiling.held_by == "exposure.us-fcc.public.quay-walk"
+    assert sheet.power_ceiling.complete
+    assert sheet.verdict == "stop"
+
+
+def test_memory_rows_give_at_best_narrow_and_name_the_number(design: MakeDesign) -> None:
+    site = {"ground": "average", "rules": ["icnirp-2020"]}
+    far = {**DESK, "along_axis": "20 m"}
+    sheet = sheet_of(design, site=site, place=[far, {**WALK, "along_axis": "20 m"}])
+    found = findings(sheet)["exposure.icnirp-2020.trained.operating-desk"]
+    assert found.verdict == "narrow"
+    assert "rests on memory" in found.because
+    assert "170" in found.because
+    assert found.id in sheet.power_ceiling.on_thin_evidence
+    assert (sheet.power_ceiling.value or 0.0) > 0.0
+
+
+def test_near_metal_nothing_is_proven_but_a_stop_stays(design: MakeDesign) -> None:
+    site = {**SITE["site"], "metal_within": "0.5 m"}  # type: ignore[dict-item]
+    sheet = sheet_of(design, site=site, place=[WALK, {**DESK, "along_axis": "0.8 m"}])
+    assert findings(sheet)["exposure.us-fcc.public.quay-walk"].verdict == "unproven"
+    assert "metal" in findings(sheet)["exposure.us-fcc.public.quay-walk"].because
+    assert findings(sheet)["exposure.us-fcc.trained.operating-desk"].verdict == "stop"
+
+
+def test_within_reach_of_the_bodies_the_electric_field_is_unproven(design: MakeDesign) -> None:
+    close = {**DESK, "along_axis": "0.5 m"}
+    found = findings(sheet_of(design, place=[close], transmission__0__power="0.01 W"))
+    assert found["exposure.us-fcc.trained.operating-desk"].verdict == "unproven"
+    assert "0.3 m" in found["exposure.us-fcc.trained.operating-desk"].because
+
+
+def test_a_missing_height_leaves_places_unproven(design: MakeDesign) -> None:
+    sheet = sheet_of(design, place=[WALK], loop__centre_height=None)
+    assert "centre_height" in findings(sheet)["exposure.us-fcc.public.quay-walk"].because
+    assert place_of(sheet, "Quay walk").share_of_limit is None
+    sheet = sheet_of(design, place=[WALK], loop__centre_height=None, site={"ground": "none", "rules": ["us-fcc"]})
+    assert findings(sheet)["exposure.us-fcc.public.quay-walk"].verdict == "unproven"
+
+
+def test_a_tuning_place_is_judged_at_the_tune_up_power(design: MakeDesign) -> None:
+    tuner = {**DESK, "when": "tuning", "along_axis": "1.5 m"}
+    use = {
+        "frequency": "7.1 MHz",
+        "power": "100 W",
+        "signal_bandwidth": "0.5 kHz",
+        "tune_up": {"power": "5 W", "time": "60 s"},
+    }
+    sheet = sheet_of(design, place=[tuner], transmission__0=use)
+    place = place_of(sheet, "operating desk")
+    assert place.judged_power == pytest.approx(5.0 / 6.0)
+    finding = findings(sheet)["exposure.us-fcc.trained.operating-desk"]
+    assert finding.power_at_margin is None  # the envelope power does not change it
+    always = place_of(sheet_of(design, place=[{**tuner, "when": "always"}], transmission__0=use), "operating desk")
+    assert (always.share_of_limit or 0.0) > 10.0 * (place.share_of_limit or 0.0)
+
+
+def test_a_tuning_place_without_a_tune_up_is_unproven_for_that_transmission(design: MakeDesign) -> None:
+    tuned = {"frequency": "7.1 MHz", "power": "100 W", "tune_up": {"power": "5 W", "time": "60 s"}}
+    plain = {"frequency": "14.2 MHz", "power": "100 W"}
+    sheet = sheet_of(design, place=[{**DESK, "when": "tuning"}], transmission=[tuned, plain])
+    verdicts = [
+        f.verdict for p in sheet.operating_points for f in p.findings if f.id.endswith("trained.operating-desk")
+    ]
+    assert verdicts == ["clear", "unproven"]
+
+
+def test_a_fence_is_held_against_the_field_outside_it(design: MakeDesign) -> None:
+    def verdict(metres: str) -> str:
+        sheet = sheet_of(design, place=[{"name": "fence", "who": "public", "fence": metres}])
+        return findings(sheet)["exposure.us-fcc.public.fence"].verdict
+
+    distance = sheet_of(design).operating_points[0].exposure[1].keepout
+    assert distance is not None
+    least = max(d.distance or 0.0 for f in distance.on_floors for d in (f.along_axis, f.in_plane) if d is not None)
+    assert verdict(f"{least + 0.3:.2f} m") == "clear"
+    assert verdict(f"{least * 0.7:.2f} m") == "stop"
+
+
+def test_distances_are_in_the_machine_form_as_the_contract_shows_them(design: MakeDesign) -> None:
+    made = json.loads(sheet_of(design, place=[WALK]).to_json())
+    exposure = made["operating_points"][0]["exposure"]
+    assert [(e["rule"], e["who"]) for e in exposure] == [("us-fcc", "trained"), ("us-fcc", "public")]
+    directions = {"any_direction", "along_axis", "in_plane", "across", "above", "below", "on_floors"}
+    out = exposure[1]["keepout"]
+    assert set(out) == {*directions, "key_down"}
+    assert set(out["key_down"]) == directions
+    assert set(out["any_direction"]) == {"distance", "set_by", "basis"}
+    assert out["across"] is None
+    assert set(out["on_floors"][0]) == {"floor", "along_axis", "in_plane", "across"}
+    (place,) = exposure[1]["places"]
+    assert set(place) >= {
+        "name", "electric", "magnetic", "electric_limit", "magnetic_limit", "share_of_limit", "field_ratio", "set_by",
+        "basis", "judged_power", "averaging_time", "provenance", "verdict", "power_ceiling", "at_limit", "bases",
+    }  # fmt: skip
+    assert place["averaging_time"] == 1800.0
+
+
+def test_a_flat_loop_has_across_and_no_axis(design: MakeDesign) -> None:
+    sheet = sheet_of(
+        design,
+        loop__plane="horizontal",
+        capacitor__position=None,
+        place=[{"name": "Quay walk", "who": "public", "across": "8 m"}],
+    )
+    out = sheet.operating_points[0].exposure[0].keepout
+    assert out is not None
+    assert out.along_axis is None
+    assert out.across is not None
+    assert findings(sheet)["exposure.us-fcc.public.quay-walk"].verdict == "clear"
+
+
+def test_beyond_the_closed_forms_people_are_unproven(design: MakeDesign) -> None:
+    sheet = sheet_of(design, place=[WALK], transmission__0__frequency="28 MHz")
+    assert findings(sheet)["exposure.us-fcc.public.quay-walk"].verdict == "unproven"
+    assert sheet.operating_points[0].exposure[0].keepout is None
+
+
+def test_keepout_leaves_by_its_own_findings(design: MakeDesign) -> None:
+    made = design(
+        **SITE, place=[{**DESK, "along_axis": "9 m"}, {**WALK, "along_axis": "12 m"}], capacitor__rated_voltage="1 kV"
+    )
+    sheet = magsafe.check(made)
+    assert sheet.verdict == "stop"
+    people = keepout(sheet)
+    assert people.verdict == "clear"
+    assert people.power_ceiling.held_by is not None
+    assert people.power_ceiling.held_by.startswith("exposure.")
+
+
+def test_the_keepout_command() -> None:
+    data = file_of(plain_tree(**SITE, place=[{**DESK, "along_axis": "9 m"}, {**WALK, "along_axis": "12 m"}]))
+    done = run("keepout", "-", given=data)
+    assert done.returncode == 0
+    assert done.stdout.startswith("● clear")
+    assert max(map(len, done.stdout.splitlines())) <= 80
+    for word in ("any direction", "along axis", "key-down", "us-fcc public", "Cautions"):
+        assert word in done.stdout
+    made = json.loads(run("keepout", "-", "--json", given=data).stdout)
+    assert made["schema"] == "magsafe.keepout/1"
+    assert made["operating_points"][0]["exposure"][0]["keepout"]["any_direction"]["distance"] > 1.0
+
+
+def test_the_rules_command() -> None:
+    assert "icnirp-2020" in run("rules").stdout
+    text = run("rules", "us-fcc").stdout
+    for word in ("2.19 / f A/m", "30 min", "verified", "sha256", "general population"):
+        assert word in text
+    wrong = run("rules", "us-fc")
+    assert wrong.returncode == 2
+    assert "did you mean us-fcc?" in wrong.stderr
