@@ -219,7 +219,8 @@ def _place(
         binding.limit,
         view.margin,
         bare_end=binding.field * sqrt(view.bare_factor),
-        powers=None if tuning else powers,
+        power=None if tuning else view.point.power,
+        powers=(None, None) if tuning else powers,
         thin=_thin(judged),
         provenance=binding.row.provenance_at(binding.basis.frequency) or "none",
         place=place.name,
@@ -315,7 +316,7 @@ def _thin(judged: Sequence[_Judged]) -> str:
         for each in judged
         if each.row.provenance_at(each.basis.frequency) == "memory"
     ]
-    return f"the limit {' and '.join(unread)} rests on memory: nobody has read it in the standard" if unread else ""
+    return f"from memory and read by nobody in the standard: {', '.join(unread)}" if unread else ""
 
 
 def _unknown_place(place: Place) -> PlaceRecord:

@@ -33,7 +33,7 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
     *,
     bare_end: float | None = None,
     power: float | None = None,
-    powers: tuple[float, float] | None = None,
+    powers: tuple[float | None, float | None] | None = None,
     thin: str = "",
     worst: Verdict = "stop",
     provenance: str = "verified",
@@ -49,8 +49,9 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
     margin : ratio between limit and dangerous end that is asked for, 1 or more
     bare_end : the dangerous end without any credit for typical values; only where that keeps the margin too is the
         verdict clear. None: the figure rests on no typical value
-    power : the envelope power [W] at which the figure was found, if it grows as the root of the power
-    powers : in place of that, the envelope powers [W] at which the margin and the limit are reached
+    power : the envelope power [W] at which the figure was found, if power changes it
+    powers : the envelope powers [W] at which the margin and the limit are reached; None: the figure grows as the root
+        of the power
     thin : why the evidence is too thin for `clear`; empty if it is not
     worst : the worst verdict that this check can give
     provenance : what the limit rests on
@@ -78,7 +79,7 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
         margin_found=None if found == inf else found,
         verdict=verdict,
         because=because,
-        do="nothing" if verdict == "clear" else _do(check, allowed),
+        do=_do(check, verdict, allowed, power, found >= margin),
         source=check.source,
         provenance=provenance,
         power_at_margin=allowed,
@@ -100,8 +101,15 @@ def _power(power: float | None, ratio: float) -> float | None:
     return power * ratio**2 * (1.0 - 1e-12)
 
 
-def _do(check: Check, allowed: float | None) -> str:
-    return check.do if allowed is None else f"lower the power to {words.power(allowed)}, or {check.do}"
+def _do(check: Check, verdict: Verdict, allowed: float | None, power: float | None, kept: bool) -> str:
+    """Return what to do: nothing, find better evidence, lower the power, or what the check says."""
+    if verdict == "clear":
+        return "nothing"
+    if kept:
+        return "have what it rests on measured or read at its source, or count it as not proven"
+    if allowed is None or power is None or allowed >= power:
+        return check.do
+    return f"lower the power to {words.power(allowed)}, or {check.do}"
 
 
 def _relation(found: float, bare: float, margin: float) -> str:

@@ -98,7 +98,7 @@ def test_memory_rows_give_at_best_narrow_and_name_the_number(design: MakeDesign)
     sheet = sheet_of(design, site=site, place=[far, {**WALK, "along_axis": "20 m"}])
     found = findings(sheet)["exposure.icnirp-2020.trained.operating-desk"]
     assert found.verdict == "narrow"
-    assert "rests on memory" in found.because
+    assert "from memory" in found.because
     assert "170" in found.because
     assert found.id in sheet.power_ceiling.on_thin_evidence
     assert (sheet.power_ceiling.value or 0.0) > 0.0
