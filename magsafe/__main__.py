@@ -3,16 +3,29 @@
 import gc
 import os
 import sys
+from contextlib import suppress
 
 from magsafe import __version__
 
 _FAULT = 70
 
 
+def say(text: str) -> None:
+    """Write to standard error what its encoding can hold, if there is one."""
+    if sys.stderr is None:
+        return
+    encoding = sys.stderr.encoding or "ascii"
+    with suppress(OSError):
+        sys.stderr.write(text.encode(encoding, "backslashreplace").decode(encoding))
+
+
 def main() -> None:
     """Run the command line; a fault of the program leaves with 70, never with the 1 that means stop."""
     if sys.argv[1:] == ["--version"]:
-        sys.stdout.write(f"magsafe {__version__}\n")
+        # A reader that has closed, or no standard output at all, is no fault.
+        with suppress(BrokenPipeError, AttributeError):
+            sys.stdout.write(f"magsafe {__version__}\n")
+            sys.stdout.flush()
         return
     # A command lives a second: collecting cycles while it imports costs a tenth of that and frees nothing. Plug-ins
     # of the validation library are other people's code, and looking for them takes time too.
@@ -23,15 +36,11 @@ def main() -> None:
     debug = "--debug" in sys.argv
     try:
         run([argument for argument in sys.argv[1:] if argument != "--debug"])
-    except BrokenPipeError:
-        # The reader closed early, as `head` does: nothing is wrong, and nothing more can be said.
-        sys.stderr.close()
-        sys.exit(0)
     except Exception as fault:
         if debug:
             raise
         kind = type(fault).__name__
-        sys.stderr.write(
+        say(
             f"magsafe: a fault of the program, not of the design ({kind}: {fault}).\n"
             "Nothing was proven. Run the same command with --debug and report what it prints.\n"
         )

@@ -134,7 +134,7 @@ def _distinct(units: tuple[str, ...]) -> list[str]:
 
 def _advice(text: str, kind: Kind) -> str:
     """Return what to write instead, for the slips that are known."""
-    reading = f'write it as "{kind.example}"'
+    reading = f'write it in the form of "{kind.example}"'
     if text.isascii() is False and any(c.isdigit() and not c.isascii() for c in text):
         return "write the digits 0 to 9"
     if re.search(r"nan|inf", text, re.IGNORECASE):
@@ -153,6 +153,7 @@ def _advice(text: str, kind: Kind) -> str:
         (r"^-?[0-9]+(\.[0-9]+)?$", "add the unit"),
         (r"^-?\.[0-9]", "write a digit before the decimal point"),
         (r"^-?[0-9]+\.([^0-9]|$)", "write a digit after the decimal point"),
+        (r"[0-9] ?[kmM]?V.*\b(DC|RF|RMS|peak|AC)\b", "write the volts alone, and their kind as rated_voltage_kind"),
         (r" {2,}", "leave at most one space between number and unit"),
     )
     for pattern, advice in rules:
@@ -165,6 +166,8 @@ def _unit_advice(number: str, unit: str, kind: Kind) -> str:
     if unit.upper() in ("AWG", "SWG"):
         return 'write the diameter instead of the gauge, such as "2.05 mm"'
     by_case = [u for u in kind.units if u.casefold() == unit.casefold()]
+    if unit[:1] == "M" and by_case and by_case[0][:1] == "m":
+        return "M is mega, a million: check the unit"
     aliases = {"ohms": "ohm", "watts": "W", "watt": "W", "volts": "V", "volt": "V", "amps": "A"}
     known = aliases.get(unit.casefold())
     near = by_case or ([known] if known in kind.units else [])

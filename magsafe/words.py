@@ -63,9 +63,14 @@ def against_limit(value: Spread, limit: float, si: str, dangerous: str, unit: st
     return f"{worst} at worst{likely}, {f'limit {bound}' if dangerous == 'high' else f'at least {bound} is needed'}"
 
 
-def power(watts: float) -> str:
+def watts(value: float) -> str:
+    """Return a planned power as it was given, to six digits: `100 W`."""
+    return f"{value:.6g} W"
+
+
+def power(value: float) -> str:
     """Return an allowed power, rounded down to two digits: `20 W`."""
-    return f"{floor_two_digits(watts)} W"
+    return f"{floor_two_digits(value)} W"
 
 
 def floor_two_digits(value: float) -> str:
@@ -77,6 +82,11 @@ def floor_two_digits(value: float) -> str:
     step = 10.0 ** (exponent - 1)
     floored = int(value * (1.0 + 1e-12) / step) * step
     return f"{floored:.{max(1 - exponent, 0)}f}"
+
+
+def short(text: str, most: int = 40) -> str:
+    """Return a name that is too long for a line cut, with a mark that it is."""
+    return text if len(text) <= most else f"{text[: most - 3]}..."
 
 
 def frequency(hertz: float) -> str:

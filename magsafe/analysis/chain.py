@@ -101,9 +101,15 @@ class Chain:
         grown = ratio * self.radiation * (1.0 + excess) ** 2
         return grown + sum(loss.at(end, excess) for loss in self.losses)
 
+    def reactance_at(self, end: str) -> float:
+        """Return the port reactance [ohm]: that of free space where losses are low, less the image's part elsewhere."""
+        share = self.around.image_share
+        taken = {"likely": share.likely, "high": share.high}.get(end)
+        return self.reactance * (1.0 - (taken or 0.0))
+
     def voltage(self, end: str, ratio: float, excess: float, power: float) -> float:
         """Return the crest of the voltage at the port, with the overshoot [V]."""
-        resistance, reactance = self.resistance(end, ratio, excess), self.reactance * (1.0 + excess)
+        resistance, reactance = self.resistance(end, ratio, excess), self.reactance_at(end) * (1.0 + excess)
         return float(tuned_circuit.peak_voltage(power, resistance, reactance)) * self.overshoot
 
     def current(self, end: str, ratio: float, excess: float, power: float) -> float:
@@ -118,7 +124,7 @@ class Chain:
     def quality(self, end: str, ratio: float, excess: float, power: float = 0.0) -> float:  # noqa: ARG002
         """Return the unloaded Q, which no power changes."""
         slope = float(small_loop.slope_taper(self.x)) * (1.0 + excess) ** 2
-        return float(tuned_circuit.unloaded_q(self.resistance(end, ratio, excess), self.reactance, slope))
+        return float(tuned_circuit.unloaded_q(self.resistance(end, ratio, excess), self.reactance_at(end), slope))
 
     def efficiency(self, end: str, excess: float) -> float:
         """Return radiation resistance over that and the losses, the ground left out."""
@@ -235,7 +241,7 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
     wavelength = c / frequency
     x = pi * line.perimeter / wavelength
     radius = (made_of.outer_diameter or 0.0) / 2.0
-    per_metre, internal = impedance_per_metre(made_of, frequency)
+    per_metre, internal = impedance_per_metre(made_of, frequency, design.site.air_temperature or made_of.temperature)
     omega = 2.0 * pi * frequency
     if loop.shape == "circle":
         external = float(inductance.circle_inductance(line.reach, radius))
@@ -244,8 +250,6 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
     own = external + internal * line.perimeter / omega
     reactance = omega * own * float(small_loop.reactance_taper(x))
     around = surroundings(design, line, frequency, own)
-    # Over a perfect plane the likely reactance already lacks the image's part.
-    reactance *= 1.0 - (around.image_share.likely or 0.0)
     radiation = small_loop.radiation_resistance(line.area, 1, wavelength)
     error = small_loop.closed_form_error(None if loop.shape == "circle" else loop.sides)
     capacitor = capacitor_loss(design.capacitor, reactance, frequency)

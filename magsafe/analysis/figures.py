@@ -57,6 +57,7 @@ _YAGHJIAN = "Yaghjian & Best 2005 (memory)"
 _SOIL = "the loss in the soil is not computed by this version"
 _NO_SOIL = f"{_SOIL}: it lowers this, so only the other end is known"
 _SOIL_ADDS = f"{_SOIL}: it adds to this"
+_NO_HEIGHT = "loop.centre_height is not given: how much of the inductance the ground's image takes away is open"
 _SOIL_WIDENS = f"{_SOIL}: it widens this"
 
 
@@ -198,23 +199,21 @@ def _total(chain: Chain, say: str) -> Figure:
 
 def _reactance_ends(chain: Chain) -> Spread:
     """Return the port reactance [ohm]; the image may lower it, the charge's capacitance raise it."""
-    share = chain.around.image_share
-    taken = (share.high or 0.0) if not share.likely else 0.0
-    found = Spread(
-        chain.reactance * (1.0 - taken) * (1.0 + min(chain.excesses)),
-        chain.reactance,
-        chain.reactance * (1.0 + max(chain.excesses)),
-    )
+    taken = chain.around.image_share.high
+    least = None if taken is None else chain.reactance * (1.0 - taken) * (1.0 + min(chain.excesses))
     error = REACTANCE_ERROR + chain.corner
+    found = Spread(least, chain.reactance_at("likely"), chain.reactance * (1.0 + max(chain.excesses)))
     return found.widened(error, error)
 
 
 def _reactance(chain: Chain) -> Figure:
+    found = _reactance_ends(chain)
     return Figure(
-        _reactance_ends(chain),
+        found,
         "ohm",
         "omega L tan(x)/x; its high end with a capacitance across the port, its low end with the ground's image",
         _LOOP_SOURCE,
+        _NO_HEIGHT if found.low is None else "",
     )
 
 
@@ -232,8 +231,9 @@ def _inductance(chain: Chain, design: Design) -> Figure:
 def _capacitance(chain: Chain) -> Figure:
     reactance, omega = _reactance_ends(chain), 2.0 * pi * chain.frequency
     falling = (reactance.high, reactance.likely, reactance.low)
-    ends = [1.0 / (omega * (end or 1.0)) for end in falling]
-    return Figure(Spread(*ends), "F", "cancels the port reactance; strays included", "resonance")
+    ends = [None if end is None else 1.0 / (omega * end) for end in falling]
+    why = _NO_HEIGHT if ends[2] is None else ""
+    return Figure(Spread(*ends), "F", "cancels the port reactance; strays included", "resonance", why)
 
 
 def _efficiency(chain: Chain) -> Figure:

@@ -10,6 +10,8 @@ from magsafe.design.quantities import Uncertain
 from magsafe.physics import conductor, small_loop
 from magsafe.spread import Spread
 
+COPPER_COEFFICIENT = 0.0039  # 1/K, of a conductivity that is stated without its metal (common practice)
+
 
 @dataclass(frozen=True, slots=True)
 class Loss:
@@ -32,29 +34,25 @@ class Loss:
         value: float = getattr(self, end)
         return value * (1.0 + excess) ** self.grows
 
-    def spread(self, excess: float) -> Spread:
-        """Return the spread up to the largest reactance excess."""
-        return Spread(self.low, self.likely, self.at("high", excess))
 
+def conductivity(made_of: Conductor, coldest: float) -> Spread:
+    """Return the conductivity [S/m]: likely at the conductor's temperature, its high end at the coldest [K].
 
-def conductivity(made_of: Conductor) -> Spread:
-    """Return the conductivity [S/m] at the conductor's temperature, with the scatter of its material."""
+    A stated conductivity is that at 20 degC and follows the temperature as copper does.
+    """
     if made_of.conductivity is not None:
-        return Spread.exact(made_of.conductivity)
-    row = tables.materials()[made_of.material or ""]
-    warm = float(
-        conductor.conductivity_at(
-            row.conductivity,
-            row.coefficient,
-            made_of.temperature,
-        )
-    )
-    return Spread.exact(warm).widened(row.scatter, row.scatter)
+        at_20, scatter, coefficient = made_of.conductivity, 0.0, COPPER_COEFFICIENT
+    else:
+        row = tables.materials()[made_of.material or ""]
+        at_20, scatter, coefficient = row.conductivity, row.scatter, row.coefficient
+    warm = float(conductor.conductivity_at(at_20, coefficient, made_of.temperature))
+    cold = float(conductor.conductivity_at(at_20, coefficient, min(coldest, made_of.temperature)))
+    return Spread(warm * (1.0 - scatter), warm, cold * (1.0 + scatter))
 
 
-def impedance_per_metre(made_of: Conductor, frequency: float) -> tuple[Spread, float]:
+def impedance_per_metre(made_of: Conductor, frequency: float, coldest: float) -> tuple[Spread, float]:
     """Return resistance [ohm/m] with its spread, and internal reactance [ohm/m], of a rod or tube."""
-    sigma = conductivity(made_of)
+    sigma = conductivity(made_of, coldest)
     low, likely, high = sigma.low or 0.0, sigma.likely or 0.0, sigma.high or 0.0
     # A thin wall's resistance does not fall steadily with conductivity: the ends are looked for between.
     tried = np.append(np.linspace(low, high, 9), likely)
@@ -121,8 +119,8 @@ def joint_losses(loop: Loop, x: float) -> tuple[Loss, ...]:
 def capacitor_loss(part: Capacitor, reactance: float, frequency: float) -> Loss:
     """Return the series resistance of the capacitor tuned to a loop of this reactance [ohm].
 
-    A Q stated at another frequency is widened to both sides by the square root of the ratio of the frequencies:
-    metal losses grow so (common practice).
+    A Q stated for another frequency is widened to both sides by the ratio of the frequencies to the power of 1.5, which
+    metal losses at one capacitance give (common practice), and no longer counts as stated for volts.
     """
     typical_q = capacitor_typical(part)
     if part.series_resistance is not None:
@@ -131,15 +129,19 @@ def capacitor_loss(part: Capacitor, reactance: float, frequency: float) -> Loss:
         rows = (f"capacitor, {part.kind}",) if part.series_resistance.single else ()
         return Loss(*ends, grows=0, typical=rows)
     typical = Spread(*(reactance / (q or 1.0) for q in (typical_q.high, typical_q.likely, typical_q.low)))
-    stated = None
+    rows, stated, moved = (f"capacitor, {part.kind}",), None, 1.0
     if part.quality_factor is not None:
-        q, away = part.quality_factor, 1.0
+        q = part.quality_factor
         if part.quality_factor_at is not None:
             ratio = frequency / part.quality_factor_at
-            away = max(ratio, 1.0 / ratio) ** 0.5
-        stated = Uncertain(reactance / (q.high * away), reactance / q.likely, reactance * away / q.low, q.single)
-    rows = () if stated is not None and not stated.single else (f"capacitor, {part.kind}",)
-    return Loss(*stated_ends(stated, typical), grows=1, typical=rows)
+            moved = max(ratio, 1.0 / ratio) ** 1.5
+        stated = Uncertain(reactance / (q.high * moved), reactance / q.likely, reactance * moved / q.low, q.single)
+        if moved > 1.0:
+            rows = ("capacitor, Q at another frequency",)
+        elif not q.single:
+            rows = ()
+    low, bare, likely, high = stated_ends(stated, typical)
+    return Loss(low, 0.0 if moved > 1.0 else bare, likely, high, grows=1, typical=rows)
 
 
 def capacitor_typical(part: Capacitor) -> Spread:

@@ -5,7 +5,8 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.constants import c
 
-from magsafe.design.model import Design
+from magsafe.design import tables
+from magsafe.design.model import Design, SoilConstants
 from magsafe.design.shape import Outline
 from magsafe.physics import ground, inductance
 from magsafe.spread import Spread
@@ -37,13 +38,14 @@ def surroundings(design: Design, line: Outline, frequency: float, own: float) ->
     vertical = design.loop.plane == "vertical"
     height = design.loop.centre_height
     image_ratio = ground.image_ratio_vertical if vertical else ground.image_ratio_horizontal
+    shortfall = ground.soil_shortfall(vertical, _least_permittivity(design))
     share = _image_share(vertical, height, line, own)
     holds = height is not None and height >= DIPOLE_HEIGHT * line.reach
     if height is None or (not holds and not vertical):
         # Any height, or a flat loop so low that only the sign of the image is known: radiation resistance and
         # what the ground adds are together never negative.
         everywhere = image_ratio(np.linspace(0.001, 30.0, 6000))
-        least = max(0.0, float(everywhere.min()) - ground.SOIL_SHORTFALL_VERTICAL) if vertical else 0.0
+        least = max(0.0, float(everywhere.min()) - shortfall) if vertical else 0.0
         return Surroundings(Spread(least, 1.0, None), True, None, least, share)
     ratio = float(image_ratio(np.float64(4.0 * np.pi * frequency / c * height)))
     if design.ground_name == "perfect":
@@ -52,9 +54,16 @@ def surroundings(design: Design, line: Outline, frequency: float, own: float) ->
             return Surroundings(Spread(low, ratio, high), False, ratio, ratio, Spread.exact(share.high or 0.0))
         least = min(1.0, ratio)
         return Surroundings(Spread(least, 1.0, None), True, None, least, share)
-    shortfall = ground.SOIL_SHORTFALL_VERTICAL if vertical else ground.SOIL_SHORTFALL_HORIZONTAL
     least = max(0.0, min(1.0, ratio) - shortfall)
     return Surroundings(Spread(least, 1.0, None), True, None, ratio if holds else min(1.0, ratio), share)
+
+
+def _least_permittivity(design: Design) -> float:
+    """Return the least permittivity that the ground may have; 1 where nothing is stated."""
+    stated = design.site.ground
+    if isinstance(stated, SoilConstants):
+        return stated.permittivity.low
+    return tables.soils()[stated].permittivity if stated in tables.soils() else 1.0
 
 
 def _image_share(vertical: bool, height: float | None, line: Outline, own: float) -> Spread:

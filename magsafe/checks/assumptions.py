@@ -48,8 +48,11 @@ def _losses(design: Design) -> Iterator[str]:
         )
     yield (
         f"The conductor is at {conductor.temperature - 273.15:.3g} degC, as at the start of an over; its heating is "
-        "not computed. Roughness and oxide may add 10 % to its resistance (common practice)."
+        "not computed. Each 10 K colder adds about 1 % to the volts"
+        f"{_cold(design)}. Roughness and oxide may add 10 % to its resistance (common practice)."
     )
+    if conductor.conductivity is not None:
+        yield "The stated conductivity is taken as that at 20 degC, and to follow the temperature as copper does."
     if part.kind == "none":
         return
     stated = part.quality_factor or part.series_resistance
@@ -62,8 +65,8 @@ def _losses(design: Design) -> Iterator[str]:
         )
     if part.quality_factor_at is not None:
         yield (
-            "The capacitor's Q at another frequency than stated may be off either way by the root of their ratio "
-            "(common practice)."
+            "The capacitor's Q at another frequency than stated may be off either way by their ratio to the power of "
+            "1.5 (common practice). No verdict is clear by that credit."
         )
     for joint in design.loop.joint:
         if joint.resistance is None and joint.kind is not None:
@@ -80,13 +83,23 @@ def _losses(design: Design) -> Iterator[str]:
         )
 
 
+def _cold(design: Design) -> str:
+    air = design.site.air_temperature
+    if air is None or air >= design.loop.conductor.temperature:
+        return ""
+    return f"; volts and amps at worst take the air's {air - 273.15:.3g} degC"
+
+
 def _feed(design: Design) -> Iterator[str]:
     loss = design.feed.line_loss
     if loss is None:
         yield "feed.line_loss is not given: all of the transmitter's power is taken to arrive at the loop."
     elif loss.single:
         yield "The line loss is a single value: for volts and amps the line is taken to lose nothing."
-    yield "The loop is matched at its resonance."
+    yield (
+        "The loop is matched at its resonance. The capacitor's terminals are at least three conductor radii apart; "
+        "a narrower gap's end faces belong to the capacitor."
+    )
     if design.feed.coupling == "small loop":
         yield "The coupling loop's own size is not computed by this version."
 
@@ -121,25 +134,28 @@ def _people(design: Design) -> Iterator[str]:
         yield "capacitor.position is not given: fields are the strongest of top, bottom and side."
     if design.site.floors is None:
         yield "site.floors is not given: people stand on the ground alone."
-    for transmission in design.transmission:
+    for title, transmission in zip(design.titles, design.transmission, strict=True):
         if transmission.over is None and transmission.on_air_share is None:
-            yield f"{transmission.title}: neither over nor on_air_share is given, so it is taken as always on the air."
+            yield f"{title}: neither over nor on_air_share is given, so it is taken as always on the air."
         elif transmission.over is not None:
             yield (
-                f"{transmission.title}: no over is longer than stated and no pause shorter. Shorter overs with shorter "
+                f"{title}: no over is longer than stated and no pause shorter. Shorter overs with shorter "
                 "pauses can fill more of a window."
             )
         if transmission.tune_up is not None:
             yield (
-                f"{transmission.title}: one tune-up in any averaging time, as part of an over; its carrier counts "
+                f"{title}: one tune-up in any averaging time, as part of an over; its carrier counts "
                 "where it is stronger than the mode's mean."
             )
 
 
 def _kept(design: Design) -> Iterator[str]:
-    kept = [key for key in ("altitude", "air_temperature") if getattr(design.site, key) is not None]
-    if kept:
-        yield f"site.{' and site.'.join(kept)}: kept for the air gap and the heat, which this version does not compute."
+    if design.site.altitude is not None:
+        yield "site.altitude: kept for the air gap and the heat, which this version does not compute."
+    if design.capacitor.wiper and design.capacitor.kind != "air variable":
+        yield "capacitor.wiper: its resistance counts only if it is stated as a joint."
+    if design.loop.turns == 1 and design.loop.turn_spacing is not None:
+        yield "loop.turn_spacing: one turn has none, so it changes nothing."
     if design.capacitor.weather == "open":
         yield "The capacitor stands in the open: rain, dew, salt and insects take away any voltage rating."
     if design.capacitor.stray > 0.0:

@@ -75,11 +75,12 @@ def current(design: Design, point: OperatingPoint) -> Finding:
     if missing:
         return unproven(_CURRENT, missing, value, _FIND if "given" in missing else None)
     limit, frequency = part.rated_current or 0.0, point.transmission.frequency
-    provenance = "stated in the design"
+    provenance, thin = "stated in the design", ""
     if part.rated_current_at is not None and frequency > part.rated_current_at:
         # Series resistance grows as the root of the frequency; the same heat then allows less current.
         limit *= (part.rated_current_at / frequency) ** 0.25
         provenance = "stated in the design, lowered above its frequency by common practice"
+        thin = f"above {words.frequency(part.rated_current_at)} the rating is lowered by common practice"
     return judge(
         _CURRENT,
         value,
@@ -87,6 +88,7 @@ def current(design: Design, point: OperatingPoint) -> Finding:
         design.margins.current,
         bare_end=point.bare_current,
         power=point.power,
+        thin=thin,
         provenance=provenance,
     )
 
@@ -97,6 +99,8 @@ def tuning_range(design: Design, point: OperatingPoint) -> Finding:
     missing = _not_reached(design, point)
     if part.capacitance is None and part.fixed is None:
         missing = "capacitor.capacitance is not given"
+    elif part.fixed is not None and part.tolerance is None:
+        missing = "capacitor.tolerance of the fixed capacitor is not given"
     if missing:
         return unproven(_RANGE, missing, value, _FIND if "given" in missing else None)
     if part.capacitance is not None:

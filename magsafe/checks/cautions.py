@@ -31,8 +31,8 @@ def _volts(points: tuple[OperatingPoint, ...]) -> str:
     volts, power = max(found)
     if volts == 0.0:
         return "The loop carries kilovolts even at a few watts."
-    at_five = volts * (5.0 / power) ** 0.5
+    at_five = max(each * (5.0 / watts) ** 0.5 for each, watts in found)
     return (
-        f"The loop carries up to {words.amount(volts, 'V', qualifier='peak')} at {power:.4g} W, and still "
+        f"The loop carries up to {words.amount(volts, 'V', qualifier='peak')} at {power:.6g} W, and still "
         f"{words.amount(at_five, 'V', qualifier='peak')} at 5 W."
     )

@@ -8,12 +8,17 @@ from magsafe.checks.sheet import Finding, PowerCeiling
 def ceiling(findings: Sequence[Finding], transmission: int) -> PowerCeiling:
     """Return the ceiling of one transmission from its findings and those of the whole sheet.
 
-    What is unproven cannot be counted: it is left out, and the ceiling is then told as "at most".
+    What is unproven cannot be counted: it is left out, and the ceiling is then told as "at most". What stops it at any
+    power makes it 0.
     """
     counted = [(f.power_at_margin, f.id) for f in findings if f.power_at_margin is not None]
     limits = [f.power_at_limit for f in findings if f.power_at_limit is not None]
     left_out = tuple(f.id for f in findings if f.verdict == "unproven")
     value, held_by = min(counted, default=(None, None))
+    at_limit = min(limits, default=None)
+    fatal = [f.id for f in findings if f.verdict == "stop" and f.power_at_margin is None]
+    if fatal:
+        value, at_limit, held_by = 0.0, 0.0, fatal[0]
     thin = tuple(
         f.id
         for f in findings
@@ -26,7 +31,7 @@ def ceiling(findings: Sequence[Finding], transmission: int) -> PowerCeiling:
     )
     return PowerCeiling(
         value=value,
-        at_limit=min(limits, default=None),
+        at_limit=at_limit,
         transmission=transmission,
         held_by=held_by,
         complete=not left_out,

@@ -117,6 +117,8 @@ def _relation(found: float, bare: float, margin: float) -> str:
         return "this exceeds the limit"
     if found < margin:
         return f"this is within, by {found:.3g} times where {margin:.3g} is asked"
+    if bare < 1.0:
+        return "this is within only by what is typical of its parts, which nobody measured; without that it exceeds"
     if bare < margin:
         return "this is within, but keeps the margin only by what is typical of its parts, which nobody measured"
     return "this is within, with the margin asked for"
@@ -157,22 +159,22 @@ def judge_between(check: Check, value: Spread, least: float, most: float, *, loo
     least, most : the ends it must lie between
     loose : the ends are a tolerance and not a reach: inside them the verdict is narrow
     """
-    low, high = value.low or 0.0, inf if value.high is None else value.high
-    inside = least <= low and high <= most
+    ends = [end for end in (value.low, value.likely, value.high) if end is not None]
+    inside = all(least <= end <= most for end in ends)
+    if inside and (value.low is None or value.high is None):
+        return unproven(check, "one end of what it needs is not known", value)
     verdict: Verdict = "stop" if not inside else "narrow" if loose else "clear"
     name = words.shown_unit(check.unit)
     likely = "" if value.likely is None else f"{words.amount(value.likely, check.unit)} likely, "
-    top = "an unknown end" if value.high is None else words.number(value.high, check.unit, name)
     text = (
-        f"{likely}{words.number(low, check.unit, name)} to {top} at worst; it reaches "
-        f"{words.number(least, check.unit, name)} to {words.amount(most, check.unit)}"
+        f"{likely}{words.number(min(ends), check.unit, name)} to {words.number(max(ends), check.unit, name)} at worst; "
+        f"it reaches {words.number(least, check.unit, name)} to {words.amount(most, check.unit)}"
     )
-    bound = most if high > most else least
     return Finding(
         id=check.id,
         question=check.question,
         value=_value(value, check.unit),
-        limit=Limit(value=bound, unit=check.unit),
+        limit=Limit(value=most if max(ends) > most else least, unit=check.unit),
         margin_asked=None,
         margin_found=None,
         verdict=verdict,
@@ -200,7 +202,7 @@ def holds(check: Check, value: Spread, limit: float, because: str) -> Finding:
     )
 
 
-def undecided(check: Check, value: Spread, because: str) -> Finding:
+def undecided(check: Check, value: Spread, because: str, do: str) -> Finding:
     """Return the narrow finding of a question that harms nobody and lacks what it would be held against."""
     return Finding(
         id=check.id,
@@ -211,7 +213,7 @@ def undecided(check: Check, value: Spread, because: str) -> Finding:
         margin_found=None,
         verdict="narrow",
         because=because,
-        do=check.do,
+        do=do,
         source=check.source,
         provenance="none",
     )

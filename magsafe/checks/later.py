@@ -7,6 +7,8 @@ from magsafe.checks.judge import Check, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Block, Design
 
+_JUDGE = "judge it by other means"
+
 
 def later(design: Design) -> Iterator[Finding]:
     """Yield a finding for each concern whose keys are in the file and whose physics is not in this version."""
@@ -49,9 +51,27 @@ def later(design: Design) -> Iterator[Finding]:
         stated = [key for key in keys if _is_stated(block, key)]
         if stated:
             yield unproven(
-                Check(name, question, "judge it by other means", "none", "1"),
+                Check(name, question, _JUDGE, "none", "1"),
                 f"{' and '.join(stated)}: kept from the design, but not computed by this version",
             )
+
+    if design.feed.coupling in ("capacitors", "direct"):
+        yield unproven(
+            Check("feed.coupling", "Do the parts of the match stand their volts?", _JUDGE, "none", "1"),
+            f'coupling = "{design.feed.coupling}" is not computed by this version; a small series capacitor can carry '
+            "the loop's full voltage",
+        )
+    if design.tuning.by == "hand at the loop" and not any(place.when == "tuning" for place in design.place):
+        yield unproven(
+            Check(
+                "exposure.tuning",
+                "What reaches the hand that tunes?",
+                'add a [[place]] with when = "tuning" where that person stands, or tune from a distance',
+                "the design",
+                "1",
+            ),
+            'tuning.by = "hand at the loop" puts somebody there, and no place says where',
+        )
 
 
 def _is_stated(block: Block, key: str) -> bool:

@@ -48,7 +48,8 @@ def size(point: OperatingPoint) -> Finding:
 
 
 def _off(ratio: float) -> str:
-    return f"{100.0 * (ratio - 1.0):+.1f} %"
+    percent = round(100.0 * (ratio - 1.0), 1)
+    return f"{percent:+.1f} %" if percent else "no change"
 
 
 def bandwidth(point: OperatingPoint) -> Finding:
@@ -60,7 +61,7 @@ def bandwidth(point: OperatingPoint) -> Finding:
     if not value.known:
         return unproven(_BANDWIDTH, "; ".join(point.out_of_range))
     if signal is None:
-        return undecided(_BANDWIDTH, value, _NO_WIDTH)
+        return undecided(_BANDWIDTH, value, _NO_WIDTH, "state transmission.signal_bandwidth")
     return judge(_BANDWIDTH, value, signal, 1.0, worst="narrow", provenance=evidence)
 
 
@@ -71,4 +72,4 @@ def q_bound(point: OperatingPoint) -> Finding:
     """Is Q at least the efficiency times the lower bound for an antenna of this size?"""
     if not point.bound_ratio.known:
         return unproven(_Q_BOUND, "; ".join(point.out_of_range))
-    return judge(_Q_BOUND, point.bound_ratio, 1.0, 1.0, provenance="memory")
+    return judge(_Q_BOUND, point.bound_ratio, 1.0, 1.0, provenance="computed")

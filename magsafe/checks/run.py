@@ -63,7 +63,7 @@ def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Fin
     )
     transmission = point.transmission
     return OperatingPointRecord(
-        name=transmission.title,
+        name=design.titles[index],
         frequency=transmission.frequency,
         power=point.power,
         power_at_loop=point.power_at_loop.likely or 0.0,

@@ -37,11 +37,11 @@ def _common(
 
 def run(arguments: Sequence[str]) -> None:
     """Run one command; what the user can put right is told on standard error and leaves with 2."""
-    from magsafe.errors import MagsafeError  # noqa: PLC0415  (kept beside the commands' own lazy imports)
+    from magsafe.__main__ import say  # noqa: PLC0415  (kept beside the commands' own lazy imports)
+    from magsafe.errors import MagsafeError  # noqa: PLC0415
 
     try:
         app(args=list(arguments), prog_name="magsafe")
     except MagsafeError as error:
-        sys.stderr.reconfigure(errors="backslashreplace")  # type: ignore[union-attr]
-        sys.stderr.write(f"{error}\n")
+        say(f"{error}\n")
         sys.exit(2)

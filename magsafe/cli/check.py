@@ -2,7 +2,7 @@
 
 import typer
 
-from magsafe.cli.common import AsJson, DesignPath, Strict, exit_status, load, write
+from magsafe.cli.common import AsJson, DesignPath, Strict, exit_status, load, reader_may_leave, write
 
 
 def check(design: DesignPath, as_json: AsJson = False, strict: Strict = False) -> None:
@@ -19,5 +19,6 @@ def check(design: DesignPath, as_json: AsJson = False, strict: Strict = False) -
     else:
         from magsafe.reports.terminal import show_sheet  # noqa: PLC0415
 
-        show_sheet(sheet)
+        with reader_may_leave():
+            show_sheet(sheet)
     raise typer.Exit(exit_status(sheet.verdict, strict))

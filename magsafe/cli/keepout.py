@@ -2,7 +2,7 @@
 
 import typer
 
-from magsafe.cli.common import AsJson, DesignPath, exit_status, load, write
+from magsafe.cli.common import AsJson, DesignPath, exit_status, load, reader_may_leave, write
 
 
 def keepout(design: DesignPath, as_json: AsJson = False) -> None:
@@ -19,5 +19,6 @@ def keepout(design: DesignPath, as_json: AsJson = False) -> None:
     else:
         from magsafe.reports.terminal import show_keepout  # noqa: PLC0415
 
-        show_keepout(sheet)
+        with reader_may_leave():
+            show_keepout(sheet)
     raise typer.Exit(exit_status(sheet.verdict))

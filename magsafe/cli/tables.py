@@ -4,6 +4,8 @@ from typing import Annotated
 
 import typer
 
+from magsafe.cli.common import reader_may_leave
+
 
 def rules(
     rule: Annotated[str | None, typer.Argument(metavar="[RULE]", help="Show one rule with all its limits.")] = None,
@@ -12,20 +14,24 @@ def rules(
     from magsafe.reports.rules import show_rule, show_rules  # noqa: PLC0415  (keeps --help quick)
 
     if rule is None:
-        show_rules()
+        with reader_may_leave():
+            show_rules()
     else:
-        show_rule(rule)
+        with reader_may_leave():
+            show_rule(rule)
 
 
 def materials() -> None:
     """List the conductor materials, with conductivity and source."""
     from magsafe.reports.tables import show_materials  # noqa: PLC0415  (keeps --help quick)
 
-    show_materials()
+    with reader_may_leave():
+        show_materials()
 
 
 def bands() -> None:
     """List the amateur bands by ITU region, with source."""
     from magsafe.reports.tables import show_bands  # noqa: PLC0415  (keeps --help quick)
 
-    show_bands()
+    with reader_may_leave():
+        show_bands()

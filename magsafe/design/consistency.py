@@ -10,11 +10,10 @@ from typing import Any
 from pydantic import ValidationError
 
 from magsafe.design import shape
-from magsafe.design.model import Loop
+from magsafe.design.model import AM_CREST, KINDS, Loop
 from magsafe.design.quantities import show
 from magsafe.units import (
     CAPACITANCE,
-    FREQUENCY,
     LENGTH,
     POWER,
     Kind,
@@ -43,7 +42,6 @@ _FORMS = {
 }
 _ALL_FORM_KEYS = ("outer_diameter", "wall", "width", "thickness", "strip_lies")
 _AIR_KINDS = ("air variable", "split-stator air", "butterfly air")
-_SLEEVE_KINDS = ("coaxial stub", "trombone", "dielectric plate")
 
 
 def complaints(tree: Tree) -> Iterator[Complaint]:
@@ -59,10 +57,10 @@ def complaints(tree: Tree) -> Iterator[Complaint]:
         _capacitor_value,
         _capacitor_ratings,
         _capacitor_kind,
-        _padding,
         _transmissions,
         _plane,
         _places,
+        _names,
         _rules,
     )
     for rule in rules:
@@ -334,7 +332,7 @@ def _capacitor_kind(tree: Tree) -> Iterator[Complaint]:
                     "remove it, or name the kind",
                 )
         return
-    if not kind:
+    if kind not in KINDS:
         return
     for key in ("gap", "plate_thickness", "plate_edge", "sections_in_series"):
         if key in capacitor and kind not in (*_AIR_KINDS, "dielectric plate"):
@@ -343,40 +341,14 @@ def _capacitor_kind(tree: Tree) -> Iterator[Complaint]:
                 capacitor,
                 key,
                 f"an air kind ({', '.join(_AIR_KINDS)})",
-                f"remove it from a {kind}",
+                "remove it, or name the kind",
             )
-    for key in ("dielectric", "inner_diameter", "outer_diameter", "length"):
-        if key in capacitor and kind not in _SLEEVE_KINDS:
-            yield _not_here(
-                path,
-                capacitor,
-                key,
-                f"one of {', '.join(_SLEEVE_KINDS)}",
-                f"remove it from a {kind}",
-            )
-
-
-def _padding(tree: Tree) -> Iterator[Complaint]:
-    used = {_size(t, "frequency", FREQUENCY) for _, t in _blocks(tree, "transmission")} - {None}
-    for index, part in _blocks(_block(tree, "capacitor"), "with"):
-        listed = part.get("on")
-        for n, text in enumerate(listed if isinstance(listed, list) else []):
-            frequency = _size({"on": text}, "on", FREQUENCY)
-            if used and frequency is not None and frequency not in used:
-                known = ", ".join(sorted(plain(f, FREQUENCY) for f in used if f is not None))
-                yield (
-                    ("capacitor", "with", index, "on", n),
-                    show(text),
-                    f"the frequency of a transmission ({known})",
-                    "write one of these",
-                )
 
 
 # Use -------------------------------------------------------------------------------------------------------
 
 
 def _transmissions(tree: Tree) -> Iterator[Complaint]:
-    titles: dict[str, int] = {}
     for index, block in _blocks(tree, "transmission"):
         path = ("transmission", index)
         if "power" not in block and "carrier_power" not in block:
@@ -392,7 +364,10 @@ def _transmissions(tree: Tree) -> Iterator[Complaint]:
             )
         yield from _either(path, block, ("mode", "duty"), "a mode has its duty")
         yield from _either(path, block, ("over", "on_air_share"), "both say how long it is on the air")
-        power, tune = _size(block, "power", POWER), _size(_block(block, "tune_up"), "power", POWER)
+        power, carrier = _size(block, "power", POWER), _size(block, "carrier_power", POWER)
+        if power is None and carrier is not None:
+            power = AM_CREST * carrier
+        tune = _size(_block(block, "tune_up"), "power", POWER)
         if power is not None and tune is not None and tune > power:
             yield (
                 (*path, "tune_up", "power"),
@@ -400,10 +375,6 @@ def _transmissions(tree: Tree) -> Iterator[Complaint]:
                 f"at most the envelope power ({plain(power, POWER)}), which the ratings are held against",
                 "tune with less, or state the larger as power",
             )
-        title = slug(_word(block, "name"))
-        if title and title in titles:
-            yield _not_here(path, block, "name", "a name of its own for each transmission", "change one")
-        titles.setdefault(title, index)
 
 
 def slug(name: str) -> str:
@@ -430,7 +401,6 @@ def _plane(tree: Tree) -> Iterator[Complaint]:
 
 
 def _places(tree: Tree) -> Iterator[Complaint]:
-    seen: set[str] = set()
     for index, place in _blocks(tree, "place"):
         path = ("place", index)
         where = [key for key in ("along_axis", "in_plane", "across") if key in place]
@@ -456,10 +426,6 @@ def _places(tree: Tree) -> Iterator[Complaint]:
                 "a floor for a posture only: height is above ground",
                 "remove it",
             )
-        name = slug(_word(place, "name"))
-        if name and name in seen:
-            yield _not_here(path, place, "name", "a name of its own for each place", "change one")
-        seen.add(name)
         if _word(place, "when") == "tuning" and not _tunes(tree):
             yield _not_here(
                 path,
@@ -470,6 +436,20 @@ def _places(tree: Tree) -> Iterator[Complaint]:
             )
 
 
+def _names(tree: Tree) -> Iterator[Complaint]:
+    """Ids of findings are made of names, so a name needs letters, and a slug of its own."""
+    for key in ("place", "transmission"):
+        seen: set[str] = set()
+        for index, block in _blocks(tree, key):
+            text = _word(block, "name")
+            name = slug(text)
+            if text.strip() and not name:
+                yield _not_here((key, index), block, "name", "a name with a letter or a digit in it", "change it")
+            if name and name in seen:
+                yield _not_here((key, index), block, "name", f"a name of its own for each {key}", "change one")
+            seen.add(name)
+
+
 def _tunes(tree: Tree) -> bool:
     return any("tune_up" in block for _, block in _blocks(tree, "transmission"))
 
@@ -477,6 +457,8 @@ def _tunes(tree: Tree) -> bool:
 def _rules(tree: Tree) -> Iterator[Complaint]:
     rules = _block(tree, "site").get("rules")
     listed = rules if isinstance(rules, list) else []
+    seen = set()
     for index, rule in enumerate(listed):
-        if rule in listed[:index]:
+        if isinstance(rule, str) and rule in seen:
             yield (("site", "rules", index), show(rule), "each rule once", "remove it")
+        seen.add(rule if isinstance(rule, str) else "")

@@ -5,7 +5,7 @@ Keys that only make sense together (a size for each shape, a wall for a tube) ar
 """
 
 from dataclasses import dataclass
-from typing import Annotated, Any, Literal
+from typing import Annotated, Any, Literal, get_args
 
 from pydantic import (
     AfterValidator,
@@ -37,6 +37,7 @@ from magsafe.units import (
 )
 
 SCHEMA = "magsafe.design/1"
+AM_CREST = 4.0  # envelope power of a fully modulated AM signal over its carrier
 
 
 def _named(table: str, *also: str) -> AfterValidator:
@@ -101,6 +102,21 @@ Loss = Annotated[
     UncertainQuantity(DECIBEL, 0.0, 20.0, '{ low = "0.1 dB", likely = "0.3 dB", high = "0.5 dB" }'),
 ]
 QualityFactor = Annotated[Uncertain, UncertainQuantity(None, 5.0, 1e5, "{ low = 500, likely = 1000, high = 3000 }")]
+
+
+CapacitorKind = Literal[
+    "vacuum variable",
+    "air variable",
+    "split-stator air",
+    "butterfly air",
+    "mica",
+    "ceramic",
+    "coaxial stub",
+    "trombone",
+    "dielectric plate",
+    "none",
+]
+KINDS: tuple[str, ...] = get_args(CapacitorKind)
 
 
 class Block(BaseModel):
@@ -200,18 +216,7 @@ class Padding(Block):
 class Capacitor(Block):
     """All of the capacitor between the two terminals that the loop is joined to, as connected."""
 
-    kind: Literal[
-        "vacuum variable",
-        "air variable",
-        "split-stator air",
-        "butterfly air",
-        "mica",
-        "ceramic",
-        "coaxial stub",
-        "trombone",
-        "dielectric plate",
-        "none",
-    ]
+    kind: CapacitorKind
     capacitance: CapacitanceRange | None = None
     fixed: Capacitance | None = None
     tolerance: Annotated[float, Quantity(SHARE, 0.0, 0.5)] | None = None
@@ -285,12 +290,7 @@ class Transmission(Block):
         """Peak envelope power at the transmitter [W]; of full AM, four times the carrier."""
         if self.power is not None:
             return self.power
-        return 4.0 * (self.carrier_power or 0.0)
-
-    @property
-    def title(self) -> str:
-        """The name, or the frequency where there is none."""
-        return self.name or f"{self.frequency / 1e6:.6g} MHz"
+        return AM_CREST * (self.carrier_power or 0.0)
 
 
 class SoilConstants(Block):
@@ -321,7 +321,7 @@ class Site(Block):
     altitude: Annotated[float, Quantity(POSITION, -500.0, 6000.0)] | None = None
     air_temperature: Temperature | None = None
     metal_within: Annotated[float, Quantity(LENGTH, 0.0, 1000.0)] | None = None
-    rules: list[RuleName] = []
+    rules: Annotated[list[RuleName], Field(max_length=20)] = []
 
 
 class Place(Block):
@@ -362,9 +362,9 @@ class Margins(Block):
 class Measured(Block):
     """What an instrument said of the loop as built, at one frequency."""
 
-    frequency: Frequency
-    unloaded_q: QualityFactor
-    date: Name
+    frequency: Frequency | None = None
+    unloaded_q: QualityFactor | None = None
+    date: Name | None = None
     centre_height: Annotated[float, Quantity(LENGTH, 0.0, 500.0)] | None = None
     ground: Name | None = None
 
@@ -402,6 +402,12 @@ class Design(DesignFile):
     """A design that was read and found consistent, with where it is from."""
 
     origin: Origin
+
+    @property
+    def titles(self) -> tuple[str, ...]:
+        """What each transmission is called: its name, or its frequency; numbered where that is not its own."""
+        plain = [each.name or f"{each.frequency / 1e6:.6g} MHz" for each in self.transmission]
+        return tuple(title if plain.count(title) == 1 else f"{title} ({index})" for index, title in enumerate(plain, 1))
 
     @property
     def ground_name(self) -> str | None:

@@ -1,7 +1,6 @@
 """Field types of the design file: a text with a unit comes in, an SI float or an `Uncertain` goes on."""
 
 from dataclasses import dataclass
-from math import isnan
 from typing import Any
 
 from pydantic import GetCoreSchemaHandler, GetJsonSchemaHandler
@@ -122,23 +121,35 @@ class UncertainQuantity:
             except QuantityError as error:
                 raise field_error((path, show(value), error.expected, error.do)) from None
         expected = "a number without a unit"
-        if isinstance(value, bool) or not isinstance(value, int | float) or isnan(value):
+        if isinstance(value, bool) or not isinstance(value, int | float):
             raise field_error((path, show(value), expected, "write a plain number, such as 1000"))
-        least, most = self.least, self.most
-        if (least is not None and value < least) or (most is not None and value > most):
+        # Compared before it is made a float, which a number of hundreds of digits cannot be; NaN fails here too.
+        least, most = self.least or 0.0, self.most or 0.0
+        if not least <= value <= most:
             raise field_error((path, show(value), f"{expected} from {least:g} to {most:g}", "check it"))
         return float(value)
+
+
+def printable(text: str) -> str:
+    """Return a text with nothing in it that moves a terminal or that UTF-8 cannot hold."""
+    return "".join(c if c.isprintable() else repr(c)[1:-1] for c in text)
 
 
 def show(value: object) -> str:
     """Return what was found, short enough for a message and with nothing in it that moves a terminal."""
     if isinstance(value, str):
-        text = '"' + "".join(c if c.isprintable() else repr(c)[1:-1] for c in value[:60]) + '"'
+        text = f'"{printable(value[:60])}"'
         return text if len(value) <= 60 else f'{text[:-1]}..." ({len(value)} characters)'
     if isinstance(value, bool):
         return "true" if value else "false"
+    if isinstance(value, int) and value.bit_length() > 200:
+        return f"a number of about {value.bit_length() * 3 // 10} digits"
     if isinstance(value, dict):
-        return f"a table of {', '.join(show(str(k)[:20])[1:-1] for k in list(value)[:4])}"
+        return (
+            "an empty table"
+            if not value
+            else f"a table of {', '.join(show(str(k)[:20])[1:-1] for k in list(value)[:4])}"
+        )
     if isinstance(value, list):
         return f"a list of {len(value)}"
     text = str(value)

@@ -2,11 +2,13 @@
 
 import hashlib
 import os
+import re
 import stat
 import tomllib
 from collections.abc import Iterator
 from contextlib import suppress
 from functools import lru_cache
+from itertools import islice
 from pathlib import Path
 from typing import Any
 
@@ -15,11 +17,16 @@ from pydantic_core import ErrorDetails
 
 from magsafe.design.consistency import complaints
 from magsafe.design.model import SCHEMA, Block, Design, DesignFile, Origin, nearest
-from magsafe.design.quantities import show
+from magsafe.design.quantities import printable, show
 from magsafe.errors import DesignError, Problem
 
 LARGEST_FILE = 1_000_000
 _LINES_SEARCHED = 800
+_MOST_PROBLEMS = 200
+_LONGEST_LINE = 20_000
+_MOST_DOTS = 200
+
+_QUOTED = re.compile(r"\"[^\"]*\"|'[^']*'")
 
 Path_ = tuple[str | int, ...]
 
@@ -57,7 +64,7 @@ def _bytes_of(file: Path) -> bytes:
 
 
 def _refused(name: str, found: str, expected: str, do: str, line: int | None = None) -> DesignError:
-    return DesignError(name, [Problem("", found, expected, do, line)])
+    return DesignError(printable(name), [Problem("", found, expected, do, line)])
 
 
 def parse_design(data: bytes, name: str = "<stdin>") -> Design:
@@ -72,6 +79,7 @@ def parse_design(data: bytes, name: str = "<stdin>") -> Design:
     ------
     DesignError : as `read_design`
     """
+    name = printable(name)
     text = _text_of(data, name)
     tree = _tree_of(text, name)
     problems = list(_problems(tree, text))
@@ -102,6 +110,12 @@ def _text_of(data: bytes, name: str) -> str:
 
 
 def _tree_of(text: str, name: str) -> dict[str, Any]:
+    for count, row in enumerate(text.split("\n"), 1):
+        if len(row) > _LONGEST_LINE:
+            raise _refused(name, f"a line of {len(row)} characters", "lines of a design file", "break it up", count)
+        # The parser's time grows as the square of the parts of a dotted key.
+        if row.count(".") > _MOST_DOTS and _QUOTED.sub("", row).partition("#")[0].count(".") > _MOST_DOTS:
+            raise _refused(name, "a key of too many parts", "a plain design file", "check which file it is", count)
     try:
         return tomllib.loads(text)
     except tomllib.TOMLDecodeError as error:
@@ -130,18 +144,21 @@ def _syntax(message: str, text: str) -> tuple[str, int | None]:
 
 
 def _problems(tree: dict[str, Any], text: str) -> Iterator[Problem]:
-    found: list[tuple[Path_, str, str, str]] = []
+    """Yield the problems, the first 200 of them: a file with more is not a design file with mistakes."""
+    seen: set[tuple[Path_, str]] = set()
+    for path, what, expected, do in islice(_found(tree), _MOST_PROBLEMS):
+        if (path, expected) not in seen:
+            seen.add((path, expected))
+            yield Problem(written(path), what, expected, do, line_of(text, path))
+
+
+def _found(tree: dict[str, Any]) -> Iterator[tuple[Path_, str, str, str]]:
     try:
         DesignFile.model_validate(tree)
     except ValidationError as error:
         for detail in error.errors(include_url=False):
-            found.extend(_said(detail))
-    found.extend(complaints(tree))
-    seen: set[tuple[Path_, str]] = set()
-    for path, what, expected, do in found:
-        if (path, expected) not in seen:
-            seen.add((path, expected))
-            yield Problem(written(path), what, expected, do, line_of(text, path))
+            yield from _said(detail)
+    yield from complaints(tree)
 
 
 def _said(detail: ErrorDetails) -> Iterator[tuple[Path_, str, str, str]]:
@@ -166,6 +183,13 @@ def _said(detail: ErrorDetails) -> Iterator[tuple[Path_, str, str, str]]:
             expected = f"one of {', '.join(known)}" if len(known) > 1 else f'"{known[0]}"'
             advice = nearest(value, known) if isinstance(value, str) else "write one of them in quotes"
             yield path, show(value), expected, advice
+        case "list_type" if isinstance(value, dict):
+            yield (
+                path,
+                "one table",
+                f"a list of tables, [[{path[-1]}]]",
+                f"write [[{written(path)}]], with two brackets",
+            )
         case kind:
             expected, do = _plain_words(kind, context)
             yield path, show(value), expected, do
@@ -185,7 +209,7 @@ def _plain_words(kind: str, context: dict[str, Any]) -> tuple[str, str]:
         "greater_than_equal": (f"{context.get('ge')} or more", "check the number"),
         "less_than_equal": (f"{context.get('le')} or less", "check the number"),
         "finite_number": ("a finite number", "check the number"),
-        "model_type": ("a table", "write it as [name] with its keys below"),
+        "model_type": ("a table of keys", "write its keys and values as a table"),
     }
     return words.get(kind, ("another value", f"see the schema ({kind})"))
 
@@ -233,9 +257,9 @@ def line_of(text: str, path: Path_) -> int | None:
     The parser tells no positions, so growing pieces of the file are read until the path appears. Longer files
     than that is quick for get no line.
     """
-    lines = text.replace("\r\n", "\n").split("\n")
-    if len(lines) > _LINES_SEARCHED:
+    if text.count("\n") > _LINES_SEARCHED:
         return None
+    lines = text.replace("\r\n", "\n").split("\n")
     pieces = _pieces(text)
     while path:
         start = 0

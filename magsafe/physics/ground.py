@@ -4,12 +4,28 @@ import numpy as np
 
 from magsafe.physics.arrays import Array, Values
 
-# Over soil the radiation resistance can fall below the lesser of free space and perfect image, because the two
-# cross 1 at different heights. Largest shortfall under that lesser one, as a share of the free-space value, of the
-# dipole's half-space integral for 0.1-5000 mS/m, permittivity 3-81, 1.8-30 MHz and heights of 0.02-2 wavelengths
-# (computed: 0.089 and 0.020; rounded up).
-SOIL_SHORTFALL_VERTICAL = 0.09
-SOIL_SHORTFALL_HORIZONTAL = 0.025
+
+def soil_shortfall(vertical: bool, permittivity: float) -> float:
+    """Return how far soil may take the radiation resistance below the lesser of free space and perfect image.
+
+    The two cross 1 at different heights, so neither bounds what lies between them.
+
+    Parameters
+    ----------
+    vertical : whether the loop is upright [1]
+    permittivity : least relative permittivity of the soil [1]
+
+    Returns
+    -------
+    largest shortfall as a share of the free-space radiation resistance [1]
+
+    Valid     any conductivity, heights of 0.02 wavelengths and more.
+    Source    the dipole's half-space integral over conductivity, permittivity and height (computed: 0.140 for any
+              permittivity and 0.089 from 3 upwards for an upright loop, 0.021 for a flat one; rounded up).
+    """
+    if not vertical:
+        return 0.025
+    return 0.095 if permittivity >= 3.0 else 0.145
 
 
 def image_ratio_horizontal(height: Values) -> Array:

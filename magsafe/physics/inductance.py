@@ -31,26 +31,6 @@ def circle_inductance(radius: Values, conductor_radius: Values) -> Array:
     return np.asarray(mu_0 * radius * (np.log(8.0 * radius / conductor_radius) - 2.0))
 
 
-def circle_inductance_direct_current(radius: Values, conductor_radius: Values) -> Array:
-    """Return the inductance of a circular turn with its current uniform over the section.
-
-    Parameters
-    ----------
-    radius : loop radius to the conductor's axis [m], shape (...)
-    conductor_radius : radius of the round conductor [m], broadcast
-
-    Returns
-    -------
-    inductance with its internal part [H], broadcast shape
-
-    Valid     conductor radius below a tenth of the loop radius, direct current.
-    Source    Rosa & Grover, NBS Scientific Paper 169 (1912) (memory).
-    """
-    thickness = (conductor_radius / radius) ** 2
-    logarithm = np.log(8.0 * radius / conductor_radius)
-    return np.asarray(mu_0 * radius * ((1.0 + thickness / 8.0) * logarithm + thickness / 24.0 - 1.75))
-
-
 def polygon_constant(sides: int) -> float:
     """Return the shape constant of a regular polygon in `polygon_inductance`.
 

@@ -200,8 +200,8 @@ def largest_shunt(thickness: float) -> float:
     -------
     capacitance for `shunt_excess`, in units of x tan x [1]
 
-    Valid     `TAPERED_CURRENT` and `TAPERED_THICKNESS`; ports no narrower than 0.02 loop radii and the conductor's
-              radius: a narrower gap's end faces belong to the capacitor.
+    Valid     `TAPERED_CURRENT` and `TAPERED_THICKNESS`; a port in the middle of a side, no narrower than 0.02 loop
+              radii and three conductor radii: a narrower gap's end faces belong to the capacitor.
     Source    full-wave study over port widths and thicknesses (computed).
     """
     return 0.035 + 0.75 * float(np.sqrt(thickness))

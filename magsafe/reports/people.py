@@ -66,14 +66,15 @@ def distance_rows(point: OperatingPointRecord) -> Iterator[tuple[str, ...]]:
 def place_text(place: PlaceRecord, exposure: ExposureRecord) -> str:
     """Return what one rule says of one place, in a sentence."""
     if place.share_of_limit is None or place.set_by is None:
-        return f"{place.name}, {exposure.rule} {exposure.who}: not known"
+        return f"{words.short(place.name)}, {exposure.rule} {exposure.who}: not known"
     electric = place.set_by == "E"
     field = place.electric if electric else place.magnetic
     limit = place.electric_limit if electric else place.magnetic_limit
     unit = FIELD_UNITS[place.set_by]
     what = "a tune-up of " if place.when == "tuning" else ""
+    who = f"{words.short(place.name)}, {exposure.rule} {exposure.who}"
     return (
-        f"{place.name}, {exposure.rule} {exposure.who}: {place.set_by} {words.amount(field or 0.0, unit)} RMS "
+        f"{who}: {place.set_by} {words.amount(field or 0.0, unit)} RMS "
         f"of {words.amount(limit or 0.0, unit)}, {significant(100.0 * place.share_of_limit, 2)} % of the power at the "
         f"limit; could bear {what}{words.power(place.power_ceiling or 0.0)}"
     )

@@ -72,5 +72,5 @@ def _power_law(row: Limit, coefficient: float, exponent: float) -> str:
 def _table(*columns: str) -> Table:
     table = Table(box=None, pad_edge=False, padding=(0, 1), show_edge=False)
     for column in columns:
-        table.add_column(column)
+        table.add_column(column, overflow="fold")
     return table

@@ -41,5 +41,5 @@ def show_bands(console: Console | None = None) -> None:
 def _table(*columns: str) -> Table:
     table = Table(box=None, pad_edge=False, padding=(0, 1), show_edge=False)
     for column in columns:
-        table.add_column(column)
+        table.add_column(column, overflow="fold")
     return table

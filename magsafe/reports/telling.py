@@ -22,7 +22,7 @@ def headline(sheet: Sheet) -> str:
         stopped = [p for p in points if any(f.verdict == "stop" for f in p.findings)] or list(points)
         if len(points) == 1:
             return f"Do not key this loop at {_watts(points[0])}."
-        planned = "; ".join(f"{p.name} at {_watts(p)}" for p in stopped)
+        planned = "; ".join(f"{words.short(p.name)} at {_watts(p)}" for p in stopped)
         return f"Do not key this loop as planned: {planned}."
     if sheet.verdict == "unproven":
         return f"Do not key this loop at {_powers(sheet)} before what is unproven is known."
@@ -32,7 +32,7 @@ def headline(sheet: Sheet) -> str:
 
 
 def _watts(point: OperatingPointRecord) -> str:
-    return f"{point.power:.4g} W"
+    return words.watts(point.power)
 
 
 def _powers(sheet: Sheet) -> str:
@@ -45,11 +45,15 @@ def ceiling(sheet: Sheet, made: PowerCeiling) -> str:
     if made.value is None or made.at_limit is None:
         return "No highest power can be named: nothing that depends on power could be counted."
     first = f"first limit reached at {words.power(made.at_limit)}."
+    several = ""
+    if len(sheet.operating_points) > 1:
+        several = f" in {words.short(sheet.operating_points[made.transmission].name)}"
+    if made.value == 0.0:
+        return f"No power is clear: {made.held_by}{several} stops it at any power."
     if made.complete:
         text = f"Clear up to {words.power(made.value)}; {first}"
     else:
-        text = f"Clear up to at most {words.power(made.value)}, by what could be computed; {first}"
-    several = f" in {sheet.operating_points[made.transmission].name}" if len(sheet.operating_points) > 1 else ""
+        text = f"At most {words.power(made.value)}, and not before what is unproven is known; {first}"
     return f"{text} {made.held_by} holds it there{several}."
 
 
@@ -68,6 +72,8 @@ def people_ceiling(sheet: KeepoutSheet) -> str:
     made = sheet.power_ceiling
     if made.value is None or made.at_limit is None:
         return "No highest power can be named for people: no place could be counted."
+    if made.value == 0.0:
+        return f"No power is clear for people: {made.held_by} stops it at any power."
     most = "" if made.complete else "at most "
     where = sheet.operating_points[made.transmission].name
     return (
@@ -93,7 +99,7 @@ def findings(sheet: Sheet, verdict: Verdict) -> Iterator[Told]:
         for finding in point.findings:
             if finding.verdict == verdict:
                 key = (finding.id, finding.place, finding.because)
-                groups.setdefault(key, (finding, []))[1].append(point.name)
+                groups.setdefault(key, (finding, []))[1].append(words.short(point.name))
     for finding, names in groups.values():
         everywhere = len(names) == len(sheet.operating_points)
         yield Told(finding, () if everywhere else tuple(names))

@@ -17,6 +17,7 @@ from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
 
 WIDEST = 100
+NARROWEST = 40
 _SAID = 13  # columns for shape and verdict word
 _LABEL = 27
 _ASIDE = 4  # transmissions beside each other in one table
@@ -40,7 +41,7 @@ def console_on_output() -> Console:
     if isinstance(sys.stdout, TextIOWrapper):
         sys.stdout.reconfigure(errors="replace")
     console = Console(highlight=False, markup=False, emoji=False)
-    console.width = min(console.width, WIDEST)
+    console.width = min(max(console.width, NARROWEST), WIDEST)
     return console
 
 
@@ -124,9 +125,9 @@ class _Speaker:
         for finding in sheet.findings:
             yield self.item(finding.verdict, f"{finding.id}: {finding.because}. Do: {finding.do}.")
         for point in sheet.operating_points:
-            yield from self.heading(f"{point.name}, {words.frequency(point.frequency)}, {point.power:.4g} W PEP")
+            yield from self.heading(_use(point))
             for finding in point.findings:
-                where = f"{finding.place} ({finding.id})" if finding.place else finding.id
+                where = f"{words.short(finding.place)} ({words.short(finding.id, 60)})" if finding.place else finding.id
                 do = "" if finding.verdict == "clear" else f" Do: {finding.do}."
                 yield self.item(finding.verdict, f"{where}: {finding.because}.{do}")
             head = ("rule and tier", "direction", "m", "set by", "key-down, m")
@@ -178,13 +179,13 @@ class _Speaker:
             return
         yield from self.heading("People: places")
         for point in points:
-            yield self.paragraph(f"{point.name}, {words.frequency(point.frequency)}, {point.power:.4g} W PEP")
+            yield self.paragraph(_use(point))
             for exposure in point.exposure:
                 for place in exposure.places:
                     yield self.item(place.verdict, f"{people.place_text(place, exposure)}.")
         yield from self.heading("People: keep-out in metres from the loop's centre, averaged; last column key-down")
         for point in points:
-            yield self.grid((point.name, *people.distance_columns(point)), people.distance_rows(point))
+            yield self.grid((words.short(point.name), *people.distance_columns(point)), people.distance_rows(point))
         yield from self.doubts(points)
 
     def doubts(self, points: Sequence[OperatingPointRecord | KeepoutPoint]) -> Iterator[RenderableType]:
@@ -225,9 +226,9 @@ class _Speaker:
         table = Table(box=None, pad_edge=False, padding=(0, 0, 0, 1), show_edge=False)
         table.add_column("", width=_LABEL)
         for point in points:
-            name = "\n".join(dict.fromkeys((point.name, words.frequency(point.frequency))))
+            name = "\n".join(dict.fromkeys((words.short(point.name), words.frequency(point.frequency))))
             table.add_column(Text(self.letters(name)), justify="right", width=12)
-        table.add_row("Power at the key, W PEP", *(f"{point.power:.4g}" for point in points))
+        table.add_row("Power at the key, W PEP", *(f"{point.power:.6g}" for point in points))
         table.add_row("Clear up to, W PEP", *(self._clear_to(point) for point in points))
         for row in telling.ROWS:
             cells = [self._cell(point.figures[row.figure], row) for point in points]
@@ -258,4 +259,8 @@ class _Speaker:
 
 def _title(told: telling.Told) -> str:
     where = f" ({', '.join(told.transmissions)})" if told.transmissions else ""
-    return f"{told.finding.id}{where}"
+    return f"{words.short(told.finding.id, 60)}{where}"
+
+
+def _use(point: OperatingPointRecord | KeepoutPoint) -> str:
+    return f"{words.short(point.name)}, {words.frequency(point.frequency)}, {words.watts(point.power)} PEP"

@@ -1,6 +1,7 @@
 """The commands as a person and a script meet them: output, errors, exit statuses."""
 
 import json
+import os
 import subprocess
 import sys
 from pathlib import Path
@@ -168,11 +169,63 @@ def test_tables_and_schemas() -> None:
     assert run("schema", "nothing").returncode == 2
 
 
-def test_a_reader_that_closes_early_is_no_fault() -> None:
-    command = f"{sys.executable} -m magsafe check {SAMPLES / 'quay_rail.toml'} | head -1"
-    done = subprocess.run(command, shell=True, capture_output=True, text=True, check=False)
-    assert "fault" not in done.stderr
-    assert "Traceback" not in done.stderr
+@pytest.mark.parametrize(
+    ("arguments", "status"),
+    [
+        (["check", "breakwater_mast"], 1),
+        (["keepout", "lighthouse_gallery", "--json"], 3),
+        (["bands"], 0),
+        (["--version"], 0),
+    ],
+)
+def test_a_reader_that_closes_early_changes_no_exit_status(arguments: list[str], status: int) -> None:
+    named = [str(SAMPLES / f"{a}.toml") if (SAMPLES / f"{a}.toml").exists() else a for a in arguments]
+    reading, writing = os.pipe()
+    os.close(reading)
+    done = subprocess.run(
+        [sys.executable, "-m", "magsafe", *named], stdout=writing, stderr=subprocess.PIPE, text=True, check=False
+    )
+    os.close(writing)
+    assert done.stderr == ""
+    assert done.returncode == status
+
+
+@pytest.mark.parametrize("encoding", ["ascii", "cp1252", "latin-1"])
+def test_the_machine_form_is_utf_8_on_any_terminal(encoding: str) -> None:
+    done = run("check", str(SAMPLES / "breakwater_mast.toml"), "--json", env={"PYTHONIOENCODING": encoding})
+    assert json.loads(done.stdout)["verdict"] == "stop"
+    assert done.stderr == ""
+
+
+@pytest.mark.parametrize("columns", ["1", "10", "40", "200"])
+def test_any_width_is_printed(columns: str) -> None:
+    for command in (["check", str(SAMPLES / "quay_rail.toml")], ["bands"], ["rules", "us-fcc"]):
+        done = run(*command, env={"COLUMNS": columns})
+        assert done.returncode == 0
+        assert "…-" not in done.stdout
+
+
+def test_closed_streams_are_no_fault() -> None:
+    sample = SAMPLES / "breakwater_mast.toml"
+    for redirect, status in (("<&-", 2), (">&-", 1), ("2>&-", 1)):
+        design = "-" if redirect == "<&-" else str(sample)
+        command = f"'{sys.executable}' -m magsafe check {design} {redirect}"
+        done = subprocess.run(["bash", "-c", command], capture_output=True, text=True, check=False)
+        assert done.returncode == status, redirect
+    command = f"'{sys.executable}' -m magsafe check missing.toml 2>&-"
+    assert subprocess.run(["bash", "-c", command], capture_output=True, check=False).returncode == 2
+
+
+def test_a_long_name_does_not_push_the_findings_off_the_screen() -> None:
+    done = check(transmission__0__name="q" * 5000, capacitor__rated_voltage="2 kV")
+    assert "capacitor.voltage" in "\n".join(done.stdout.splitlines()[:20])
+    assert done.stdout.count("q" * 30) < 10
+
+
+def test_large_powers_are_written_out() -> None:
+    done = check(transmission__0__power="10 kW")
+    assert "10000 W" in done.stdout
+    assert "e+04" not in done.stdout
 
 
 @pytest.mark.parametrize("arguments", [["check", ""], ["check", "/"], ["check", "/dev/null"]])

@@ -137,8 +137,8 @@ def _sheet() -> Sheet:
 
 TOP_60 = """\
 ■ stop       Do not key this loop at 100 W.
-             Clear up to at most 20 W, by what could be
-             computed; first limit reached at 32 W.
+             At most 20 W, and not before what is unproven
+             is known; first limit reached at 32 W.
              check.stop holds it there.
              Not counted, because unproven: check.unproven.
 
@@ -178,7 +178,7 @@ def test_the_order_of_telling() -> None:
     text = _shown(100, colour=False)
     order = [
         "Do not key",
-        "Clear up to",
+        "At most 20 W",
         "What stands in the way",
         "Figures",
         "What is clear",

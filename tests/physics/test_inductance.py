@@ -42,10 +42,3 @@ def test_a_polygon_of_many_sides_is_nearly_a_circle() -> None:
 def test_inductance_scales_with_size() -> None:
     one = float(inductance.circle_inductance(0.5, 0.011))
     assert float(inductance.circle_inductance(1.0, 0.022)) == pytest.approx(2.0 * one, rel=1e-12)
-
-
-def test_direct_current_adds_the_internal_inductance() -> None:
-    """Uniform current has mu0/8pi per metre inside (any textbook): mu0 R/4 round the ring."""
-    outside = float(inductance.circle_inductance(0.5, 1e-4))
-    whole = float(inductance.circle_inductance_direct_current(0.5, 1e-4))
-    assert whole - outside == pytest.approx(mu_0 * 0.5 / 4.0, rel=1e-3)
