@@ -12,6 +12,7 @@ from math import pi, sqrt
 from scipy.constants import c, mu_0
 
 from magsafe.analysis.losses import (
+    Bend,
     Loss,
     capacitor_loss,
     conductor_loss,
@@ -24,7 +25,7 @@ from magsafe.design.shape import Outline
 from magsafe.physics import inductance, small_loop, tuned_circuit
 from magsafe.spread import Spread
 
-Question = Callable[[str, float, float, float], float]
+Question = Callable[[str, float, Bend, float], float]
 
 # Curvature of the conductor and the last digits of the closed forms, at any size.
 RESISTANCE_ERROR = 0.005
@@ -60,8 +61,8 @@ class GroundCase:
 class Chain:
     """The resonant loop at one frequency, ready to be asked at any corner.
 
-    Questions are asked with (end, ratio, excess, power): which end of every loss, radiation plus ground resistance
-    over that of free space, excess of the reactance, power at the loop [W].
+    Questions are asked with (end, ratio, bend, power): which end of every loss, radiation plus ground resistance over
+    that of free space, bend of the reactance, power at the loop [W].
     """
 
     frequency: float
@@ -82,6 +83,17 @@ class Chain:
     capacitor: Loss
 
     @property
+    def bends(self) -> tuple[Bend, ...]:
+        """Every bend of the reactance that may be."""
+        most = self.around.image_share.high or 0.0
+        return tuple(Bend(excess, taken) for excess in self.excesses for taken in dict.fromkeys((0.0, most)))
+
+    @property
+    def likely_bend(self) -> Bend:
+        """The likely bend: a perfect plane's image is there, soil's is left out."""
+        return Bend(0.0, self.around.image_share.likely or 0.0)
+
+    @property
     def losses(self) -> tuple[Loss, ...]:
         """The losses of all parts."""
         return (self.conductor, *self.joints, self.capacitor)
@@ -96,61 +108,55 @@ class Chain:
         """How much of the shape's error at 0.25 wavelengths applies at this size."""
         return (self.x / (0.25 * pi)) ** 2
 
-    def resistance(self, end: str, ratio: float, excess: float) -> float:
+    def resistance(self, end: str, ratio: float, bend: Bend) -> float:
         """Return the total resistance with every loss at one end [ohm]."""
-        grown = ratio * self.radiation * (1.0 + excess) ** 2
-        return grown + sum(loss.at(end, excess) for loss in self.losses)
+        grown = ratio * self.radiation * (1.0 + bend.excess) ** 2
+        return grown + sum(loss.at(end, bend) for loss in self.losses)
 
-    def reactance_at(self, end: str) -> float:
-        """Return the port reactance [ohm]: that of free space where losses are low, less the image's part elsewhere."""
-        share = self.around.image_share
-        taken = {"likely": share.likely, "high": share.high}.get(end)
-        return self.reactance * (1.0 - (taken or 0.0))
-
-    def voltage(self, end: str, ratio: float, excess: float, power: float) -> float:
+    def voltage(self, end: str, ratio: float, bend: Bend, power: float) -> float:
         """Return the crest of the voltage at the port, with the overshoot [V]."""
-        resistance, reactance = self.resistance(end, ratio, excess), self.reactance_at(end) * (1.0 + excess)
+        resistance, reactance = self.resistance(end, ratio, bend), self.reactance * bend.factor
         return float(tuned_circuit.peak_voltage(power, resistance, reactance)) * self.overshoot
 
-    def current(self, end: str, ratio: float, excess: float, power: float) -> float:
+    def current(self, end: str, ratio: float, bend: Bend, power: float) -> float:
         """Return the RMS current at the port [A]."""
-        return float(tuned_circuit.port_current(power, self.resistance(end, ratio, excess)))
+        return float(tuned_circuit.port_current(power, self.resistance(end, ratio, bend)))
 
-    def largest_current(self, end: str, ratio: float, excess: float, power: float) -> float:
+    def largest_current(self, end: str, ratio: float, bend: Bend, power: float) -> float:
         """Return the RMS current opposite the port [A]."""
         taper = float(small_loop.opposite_taper(self.x))
-        return self.current(end, ratio, excess, power) * (1.0 + excess) * taper
+        return self.current(end, ratio, bend, power) * (1.0 + bend.excess) * taper
 
-    def quality(self, end: str, ratio: float, excess: float, power: float = 0.0) -> float:  # noqa: ARG002
+    def quality(self, end: str, ratio: float, bend: Bend, power: float = 0.0) -> float:  # noqa: ARG002
         """Return the unloaded Q, which no power changes."""
-        slope = float(small_loop.slope_taper(self.x)) * (1.0 + excess) ** 2
-        return float(tuned_circuit.unloaded_q(self.resistance(end, ratio, excess), self.reactance_at(end), slope))
+        slope = float(small_loop.slope_taper(self.x)) * (1.0 + bend.excess) ** 2 * (1.0 - bend.taken)
+        return float(tuned_circuit.unloaded_q(self.resistance(end, ratio, bend), self.reactance, slope))
 
-    def efficiency(self, end: str, excess: float) -> float:
+    def efficiency(self, end: str, bend: Bend) -> float:
         """Return radiation resistance over that and the losses, the ground left out."""
-        return self.radiation * (1.0 + excess) ** 2 / self.resistance(end, 1.0, excess)
+        return self.radiation * (1.0 + bend.excess) ** 2 / self.resistance(end, 1.0, bend)
 
     def capacitor_heat(self, own: str, others: str, ratio: float, power: float) -> Spread:
         """Return the least and most heat in the capacitor [W], its own loss at one end, all others at another."""
         found = []
-        for excess in self.excesses:
-            rest = self.resistance(others, ratio, excess) - self.capacitor.at(others, excess)
-            mine = self.capacitor.at(own, excess)
+        for bend in self.bends:
+            rest = self.resistance(others, ratio, bend) - self.capacitor.at(others, bend)
+            mine = self.capacitor.at(own, bend)
             found.append(power * mine / (rest + mine))
         return Spread(min(found), None, max(found))
 
     def dangerous(self, ask: Question, end: str) -> float:
         """Return the high end of a question: losses at `end`, least resistance of any ground, most power."""
         least, most = self.around.ratio.low or 0.0, self.power.high or 0.0
-        return max(ask(end, least, excess, most) for excess in self.excesses)
+        return max(ask(end, least, bend, most) for bend in self.bends)
 
     def spread(self, ask: Question) -> Spread:
         """Return the spread of a question whose answer rises as the resistance falls."""
         ratio, power = self.around.ratio, self.power
         low = None
         if ratio.high is not None:
-            low = min(ask("high", ratio.high, excess, power.low or 0.0) for excess in self.excesses)
-        likely = ask("likely", ratio.likely or 0.0, 0.0, power.likely or 0.0)
+            low = min(ask("high", ratio.high, bend, power.low or 0.0) for bend in self.bends)
+        likely = ask("likely", ratio.likely or 0.0, self.likely_bend, power.likely or 0.0)
         return Spread(low, likely, self.dangerous(ask, "low"))
 
     def voltage_error(self) -> tuple[float, float]:
@@ -192,13 +198,13 @@ class Chain:
                 image,
                 self._square("low", ratio),
                 self._square("bare", ratio),
-                1.0 / self.resistance("likely", self.around.ratio.likely or 0.0, 0.0),
+                1.0 / self.resistance("likely", self.around.ratio.likely or 0.0, self.likely_bend),
             )
             for image, ratio in cases
         )
 
     def _square(self, end: str, ratio: float) -> float:
-        return max((1.0 + e) ** 2 / self.resistance(end, ratio, e) for e in self.excesses)
+        return max((1.0 + bend.excess) ** 2 / self.resistance(end, ratio, bend) for bend in self.bends)
 
     def field_error(self) -> float:
         """Return how far fields may lie above those of the tapered current: charge that it leaves out radiates."""
@@ -206,9 +212,9 @@ class Chain:
 
     def efficiency_spread(self) -> Spread:
         """Return the spread of the efficiency with the ground left out."""
-        likely = self.efficiency("likely", 0.0)
-        least = min(self.efficiency("high", excess) for excess in self.excesses)
-        most = max(self.efficiency("low", excess) for excess in self.excesses)
+        likely = self.efficiency("likely", self.likely_bend)
+        least = min(self.efficiency("high", bend) for bend in self.bends)
+        most = max(self.efficiency("low", bend) for bend in self.bends)
         below, above = self.resistance_error()
         return Spread(min(likely, least) * (1.0 - below), likely, min(1.0, max(likely, most) * (1.0 + above)))
 
@@ -216,7 +222,8 @@ class Chain:
         """Return Q over efficiency times the lower bound on Q, in free space."""
         reach = self.line.reach + self.conductor_radius
         bound = float(tuned_circuit.chu_bound(2.0 * pi * self.frequency / c * reach))
-        likely = self.quality("likely", 1.0, 0.0) / (self.efficiency("likely", 0.0) * bound)
+        free = Bend(0.0, 0.0)
+        likely = self.quality("likely", 1.0, free) / (self.efficiency("likely", free) * bound)
         below, above = self.quality_error()
         return Spread.exact(likely).widened(below + self.resistance_error()[1], above)
 
@@ -227,11 +234,12 @@ class Chain:
         loss = self.conductor.likely / float(small_loop.loss_taper(self.x))
         joints = sum(joint.likely for joint in self.joints)
         resistance = radiation + loss + joints + self.capacitor.likely * reactance / self.reactance
-        tapered = self.resistance("likely", 1.0, 0.0)
+        free = Bend(0.0, 0.0)
+        tapered = self.resistance("likely", 1.0, free)
         return WithoutTaper(
             voltage=reactance / self.reactance * sqrt(tapered / resistance),
-            quality=reactance / resistance / self.quality("likely", 1.0, 0.0),
-            efficiency=radiation / resistance / self.efficiency("likely", 0.0),
+            quality=reactance / resistance / self.quality("likely", 1.0, free),
+            efficiency=radiation / resistance / self.efficiency("likely", free),
         )
 
 

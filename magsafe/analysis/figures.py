@@ -156,11 +156,10 @@ def _conductor(chain: Chain) -> Figure:
 
 
 def _joints(chain: Chain) -> Figure:
-    most = max(chain.excesses)
     found = Spread(
-        sum(joint.low for joint in chain.joints),
+        sum(min(joint.at("low", bend) for bend in chain.bends) for joint in chain.joints),
         sum(joint.likely for joint in chain.joints),
-        sum(joint.at("high", most) for joint in chain.joints),
+        sum(max(joint.at("high", bend) for bend in chain.bends) for joint in chain.joints),
     )
     method = "as stated or typical of the kind, weighted by the square of the current where each joint sits"
     return Figure(found, "ohm", method, "the design; common practice")
@@ -168,7 +167,11 @@ def _joints(chain: Chain) -> Figure:
 
 def _capacitor(chain: Chain) -> Figure:
     part = chain.capacitor
-    found = Spread(part.at("low", min(chain.excesses)), part.likely, part.at("high", max(chain.excesses)))
+    found = Spread(
+        min(part.at("low", bend) for bend in chain.bends),
+        part.at("likely", chain.likely_bend),
+        max(part.at("high", bend) for bend in chain.bends),
+    )
     method = "as stated, or reactance over Q; typical of the kind where not stated"
     return Figure(found, "ohm", method, "the design; common practice")
 
@@ -186,11 +189,12 @@ def _ground(chain: Chain) -> Figure:
 
 
 def _total(chain: Chain, say: str) -> Figure:
-    ratio, least, most = chain.around.ratio, min(chain.excesses), max(chain.excesses)
-    highest = None if ratio.high is None else chain.resistance("high", ratio.high, most)
+    ratio, highest = chain.around.ratio, None
+    if ratio.high is not None:
+        highest = max(chain.resistance("high", ratio.high, bend) for bend in chain.bends)
     found = Spread(
-        chain.resistance("low", ratio.low or 0.0, least),
-        chain.resistance("likely", ratio.likely or 0.0, 0.0),
+        min(chain.resistance("low", ratio.low or 0.0, bend) for bend in chain.bends),
+        chain.resistance("likely", ratio.likely or 0.0, chain.likely_bend),
         highest,
     ).widened(*chain.resistance_error())
     method = f"sum of all, its low end with the least of free space, perfect image and any soil{say}"
@@ -199,10 +203,10 @@ def _total(chain: Chain, say: str) -> Figure:
 
 def _reactance_ends(chain: Chain) -> Spread:
     """Return the port reactance [ohm]; the image may lower it, the charge's capacitance raise it."""
-    taken = chain.around.image_share.high
-    least = None if taken is None else chain.reactance * (1.0 - taken) * (1.0 + min(chain.excesses))
+    factors = [bend.factor for bend in chain.bends]
+    least = None if chain.around.image_share.high is None else chain.reactance * min(factors)
     error = REACTANCE_ERROR + chain.corner
-    found = Spread(least, chain.reactance_at("likely"), chain.reactance * (1.0 + max(chain.excesses)))
+    found = Spread(least, chain.reactance * chain.likely_bend.factor, chain.reactance * max(factors))
     return found.widened(error, error)
 
 
@@ -253,7 +257,8 @@ def _dissipation(chain: Chain, lowers: str, say: str) -> Figure:
     low = None
     if ratio.high is not None:
         low = chain.capacitor_heat("low", "high", ratio.high, power.low or 0.0).low
-    part = chain.capacitor.likely / chain.resistance("likely", ratio.likely or 0.0, 0.0)
+    bend = chain.likely_bend
+    part = chain.capacitor.at("likely", bend) / chain.resistance("likely", ratio.likely or 0.0, bend)
     likely = part * (power.likely or 0.0)
     high = chain.capacitor_heat("high", "low", ratio.low or 0.0, power.high or 0.0).high
     error = [2.0 * end for end in chain.current_error()]

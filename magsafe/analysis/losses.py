@@ -14,12 +14,29 @@ COPPER_COEFFICIENT = 0.0039  # 1/K, of a conductivity that is stated without its
 
 
 @dataclass(frozen=True, slots=True)
+class Bend:
+    """How the port reactance differs from the closed form in free space.
+
+    `excess` is raised by a capacitance across the port, `taken` is the share that the ground's image takes away.
+    """
+
+    excess: float
+    taken: float
+
+    @property
+    def factor(self) -> float:
+        """The reactance over that of the closed form in free space."""
+        return (1.0 + self.excess) * (1.0 - self.taken)
+
+
+@dataclass(frozen=True, slots=True)
 class Loss:
     """The resistance of one part, referred to the port current [ohm].
 
     `low` may rest on what is typical of a kind; `bare` is the low end that rests on stated values alone, zero
-    where nothing is stated. `grows` is the power of (1 + reactance excess) by which the port sees it grow: 2 along
-    the conductor, 1 for a capacitor of given Q, 0 at the port. `typical` names the rows of common practice used.
+    where nothing is stated. `grows` tells how it follows the reactance's bend: 2, by the square of the excess, along
+    the conductor; 1, as the reactance, for a capacitor of given Q; 0, not at all, at the port. `typical` names the rows
+    of common practice used.
     """
 
     low: float
@@ -29,10 +46,10 @@ class Loss:
     grows: int
     typical: tuple[str, ...] = ()
 
-    def at(self, end: str, excess: float) -> float:
-        """Return the resistance at one end, with a share of the reactance excess."""
+    def at(self, end: str, bend: Bend) -> float:
+        """Return the resistance at one end, as the port sees it with a bend of the reactance."""
         value: float = getattr(self, end)
-        return value * (1.0 + excess) ** self.grows
+        return value * (1.0, bend.factor, (1.0 + bend.excess) ** 2)[self.grows]
 
 
 def conductivity(made_of: Conductor, coldest: float) -> Spread:
@@ -53,22 +70,19 @@ def conductivity(made_of: Conductor, coldest: float) -> Spread:
 def impedance_per_metre(made_of: Conductor, frequency: float, coldest: float) -> tuple[Spread, float]:
     """Return resistance [ohm/m] with its spread, and internal reactance [ohm/m], of a rod or tube."""
     sigma = conductivity(made_of, coldest)
-    low, likely, high = sigma.low or 0.0, sigma.likely or 0.0, sigma.high or 0.0
-    # A thin wall's resistance does not fall steadily with conductivity: the ends are looked for between.
-    tried = np.append(np.linspace(low, high, 9), likely)
-    radius = np.float64((made_of.outer_diameter or 0.0) / 2.0)
-    at = frequency
+    # Resistance falls steadily with conductivity, also where the wall is thin.
+    tried = np.array([sigma.high, sigma.likely, sigma.low], dtype=np.float64)
+    radius = (made_of.outer_diameter or 0.0) / 2.0
     if made_of.form == "rod":
-        impedance = conductor.rod_impedance(at, tried, radius)
+        impedance = conductor.rod_impedance(frequency, tried, radius)
     else:
-        impedance = conductor.tube_impedance(at, tried, radius, made_of.wall or 0.0)
+        impedance = conductor.tube_impedance(frequency, tried, radius, made_of.wall or 0.0)
     rough = tables.roughness_share()
+    low, likely, high = (float(each) for each in impedance.real)
     resistance = Spread(
-        float(impedance.real.min()) * (1.0 + (rough.low or 0.0)),
-        float(impedance.real[-1]) * (1.0 + (rough.likely or 0.0)),
-        float(impedance.real.max()) * (1.0 + (rough.high or 0.0)),
+        low * (1.0 + (rough.low or 0.0)), likely * (1.0 + (rough.likely or 0.0)), high * (1.0 + (rough.high or 0.0))
     )
-    return resistance, float(impedance.imag[-1])
+    return resistance, float(impedance.imag[1])
 
 
 def conductor_loss(per_metre: Spread, perimeter: float, x: float) -> Loss:

@@ -105,11 +105,10 @@ def _do(check: Check, verdict: Verdict, allowed: float | None, power: float | No
     """Return what to do: nothing, find better evidence, lower the power, or what the check says."""
     if verdict == "clear":
         return "nothing"
-    if kept:
-        return "have what it rests on measured or read at its source, or count it as not proven"
+    do = "have what it rests on measured or read at its source, or count it as not proven" if kept else check.do
     if allowed is None or power is None or allowed >= power:
-        return check.do
-    return f"lower the power to {words.power(allowed)}, or {check.do}"
+        return do
+    return f"lower the power to {words.power(allowed)}, or {do}"
 
 
 def _relation(found: float, bare: float, margin: float) -> str:

@@ -12,8 +12,9 @@ from hypothesis import strategies as st
 
 import magsafe
 from magsafe import words
+from magsafe.checks.ceiling import ceiling, least
 from magsafe.checks.judge import Check, judge, judge_between, unproven
-from magsafe.checks.sheet import Finding, Sheet, worst
+from magsafe.checks.sheet import Finding, Sheet, Verdict, worst
 from magsafe.reports import telling
 from magsafe.spread import Spread
 
@@ -396,7 +397,7 @@ def test_the_machine_form_follows_its_definitions(design: MakeDesign) -> None:
     assert figures["half_power_bandwidth"] == pytest.approx(frequency / figures["loaded_q"])
     assert figures["swr2_bandwidth"] == pytest.approx(frequency / (2.0**0.5 * quality))
     omega = 2.0 * 3.141592653589793 * frequency
-    assert figures["tuning_capacitance"] == pytest.approx(1.0 / (omega * figures["port_reactance"]))
+    assert figures["tuning_capacitance"] == pytest.approx(1.0 / (omega * figures["port_reactance"]), rel=1e-9, abs=0.0)
     parts = ("radiation", "conductor", "joint", "capacitor", "ground")
     total = sum(figures[f"{part}_resistance"] for part in parts)
     assert figures["total_resistance"] == pytest.approx(total)
@@ -437,3 +438,205 @@ def test_every_sheet_carries_the_cautions_and_promises_nothing(design: MakeDesig
     assert "7.98 kV" in said  # the computed kilovolts
     text = sheet.to_json()
     assert not re.search(r"\b(is safe|are safe|compliant|approved|passes|passed)\b", text)
+
+
+# Ends and evidence -----------------------------------------------------------------------------------------
+
+
+def test_the_worse_of_figure_and_proof_holds_the_power_and_the_figure_tells_the_margin() -> None:
+    """Neither a figure nor the proof behind it may lift the other."""
+    lenient = judge(VOLTS, Spread(1.0, 2.0, 5000.0), 6000.0, 1.5, bare_end=100.0, power=100.0)
+    assert lenient.verdict == "narrow"
+    assert lenient.power_at_margin == pytest.approx(100.0 * (1.2 / 1.5) ** 2)
+    assert lenient.power_at_limit == pytest.approx(100.0 * 1.2**2)
+    credited = judge(VOLTS, Spread(1.0, 2.0, 3000.0), 6000.0, 1.5, bare_end=5000.0, power=100.0)
+    assert credited.verdict == "narrow"
+    assert credited.margin_found == pytest.approx(2.0)
+    assert credited.power_at_limit == pytest.approx(100.0 * 1.2**2)
+    assert credited.do.startswith("lower the power to 64 W, or ")
+
+
+def test_a_limit_that_only_the_proof_exceeds_is_narrow_and_not_stop() -> None:
+    found = judge(VOLTS, Spread(1.0, 2.0, 3000.0), 6000.0, 1.5, bare_end=7000.0, power=100.0)
+    assert found.verdict == "narrow"
+    assert found.power_at_limit == pytest.approx(100.0 * (6.0 / 7.0) ** 2)
+
+
+def test_a_figure_of_nothing_is_clear_at_any_power() -> None:
+    found = judge(VOLTS, Spread(0.0, 0.0, 0.0), 6000.0, 1.5, power=100.0)
+    assert found.verdict == "clear"
+    assert found.margin_found is None
+    assert found.power_at_margin is None
+    assert found.power_at_limit is None
+
+
+def test_a_margin_that_is_just_kept_is_told_as_kept() -> None:
+    assert "with the margin asked for" in judge(VOLTS, Spread(1.0, 2.0, 4000.0), 6000.0, 1.5).because
+
+
+@given(high=st.floats(1.0, 1e5), margin=st.floats(1.0, 10.0), power=st.floats(1e-3, 1e4))
+def test_at_the_power_told_the_margin_is_kept_to_the_last_digit(high: float, margin: float, power: float) -> None:
+    found = judge(VOLTS, Spread(None, None, high), 6000.0, margin, power=power)
+    assert found.power_at_margin is not None
+    assert found.power_at_limit is not None
+    kept = high * (found.power_at_margin / power) ** 0.5
+    assert judge(VOLTS, Spread(None, None, kept), 6000.0, margin).verdict == "clear"
+    reached = high * (found.power_at_limit / power) ** 0.5
+    assert judge(VOLTS, Spread(None, None, reached), 6000.0, margin).verdict != "stop"
+
+
+def test_a_range_that_just_reaches_is_enough_and_the_end_in_the_way_is_named() -> None:
+    check = Check("capacitor.range", "Can it tune?", "another", "the design", "F")
+    need = Spread(90e-12, 100e-12, 110e-12)
+    assert judge_between(check, need, 90e-12, 110e-12, loose=False).verdict == "clear"
+    for bottom, top, bound in ((10e-12, 105e-12, 105e-12), (95e-12, 200e-12, 95e-12)):
+        limit = judge_between(check, need, bottom, top, loose=False).limit
+        assert limit is not None
+        assert limit.value == bound
+
+
+def test_margins_and_powers_of_the_capacitor_are_its_own(design: MakeDesign) -> None:
+    """Volts and amps each have a margin, and both grow with power."""
+    asked = {"margins": {"voltage": 1.7, "current": 1.3}}
+    volts = finding(sheet_of(design, **asked), "capacitor.voltage")
+    amps = finding(sheet_of(design, **asked), "capacitor.current")
+    assert (volts.margin_asked, amps.margin_asked) == (1.7, 1.3)
+    for each in (volts, amps):
+        assert each.margin_found is not None
+        assert each.margin_asked is not None
+        assert each.power_at_margin == pytest.approx(100.0 * (each.margin_found / each.margin_asked) ** 2)
+    assert volts.limit is not None
+    assert volts.limit.value == pytest.approx(15e3)  # a peak rating is held as it is
+
+
+def test_credit_for_a_typical_joint_makes_neither_volts_nor_amps_clear(design: MakeDesign) -> None:
+    """A sliding contact lowers both by what nobody measured: within the margin only by that."""
+    joint = [{"name": "wiper", "kind": "sliding contact", "at": "capacitor"}]
+    bare, eased = sheet_of(design), sheet_of(design, loop__joint=joint)
+    for name, rating in (("voltage", "rated_voltage"), ("current", "rated_current")):
+        without, with_joint = (finding(sheet, f"capacitor.{name}").value for sheet in (bare, eased))
+        assert without is not None
+        assert with_joint is not None
+        between = ((without.high or 0.0) * (with_joint.high or 0.0)) ** 0.5
+        unit, margin = ("V", 1.5) if name == "voltage" else ("A", 1.25)
+        stated = {f"capacitor__{rating}": f"{between * margin:.3f} {unit}"}
+        found = finding(sheet_of(design, loop__joint=joint, **stated), f"capacitor.{name}")
+        assert found.verdict == "narrow"
+        assert "typical" in found.because
+
+
+@pytest.mark.parametrize("kind", ["DC working", "DC test"])
+def test_no_direct_voltage_rating_is_held_against_rf(design: MakeDesign, kind: str) -> None:
+    assert finding(sheet_of(design, capacitor__rated_voltage_kind=kind), "capacitor.voltage").verdict == "unproven"
+
+
+def test_stray_capacitance_lifts_the_least_as_well_as_the_most(design: MakeDesign) -> None:
+    """What is always across the plates cannot be tuned away."""
+    ends = {"min": "199 pF", "max": "500 pF"}
+    assert finding(sheet_of(design, capacitor__capacitance=ends), "capacitor.range").verdict == "clear"
+    lifted = finding(sheet_of(design, capacitor__capacitance=ends, capacitor__stray="10 pF"), "capacitor.range")
+    assert lifted.verdict == "stop"
+    assert lifted.limit is not None
+    assert lifted.limit.value == pytest.approx(209e-12, rel=1e-9, abs=0.0)
+
+
+def test_padding_counts_on_its_own_frequencies(design: MakeDesign) -> None:
+    sheet = sheet_of(
+        design,
+        capacitor__with=[{"connection": "series", "capacitance": "1 nF", "on": ["3.6 MHz"]}],
+        transmission=[{"frequency": "3.6 MHz", "power": "10 W"}, {"frequency": "7.1 MHz", "power": "10 W"}],
+    )
+    padded, free = (next(f for f in p.findings if f.id == "capacitor.voltage") for p in sheet.operating_points)
+    assert padded.verdict == "unproven"
+    assert "padding" in padded.because
+    assert free.verdict == "clear"
+
+
+def test_the_signal_is_held_against_the_swr_2_bandwidth(design: MakeDesign) -> None:
+    """The stated width goes before the mode's; 2700 Hz of SSB and 500 Hz of CW are common practice."""
+    for changes, hertz in (
+        ({"transmission__0__signal_bandwidth": "1.2 kHz", "transmission__0__mode": "SSB"}, 1200.0),
+        ({"transmission__0__signal_bandwidth": None, "transmission__0__mode": "SSB"}, 2700.0),
+        ({"transmission__0__signal_bandwidth": None, "transmission__0__mode": "CW"}, 500.0),
+    ):
+        sheet = sheet_of(design, **changes)
+        found = finding(sheet, "loop.bandwidth")
+        assert found.limit is not None
+        assert found.value is not None
+        assert found.limit.value == hertz
+        width = sheet.operating_points[0].figures["swr2_bandwidth"]
+        assert (found.value.low, found.value.high) == (width.low, width.high)
+
+
+def test_q_is_held_against_the_bound_itself(design: MakeDesign) -> None:
+    found = finding(sheet_of(design), "loop.q_bound")
+    assert found.limit is not None
+    assert found.limit.value == 1.0
+
+
+def test_the_caution_tells_the_volts_at_five_watts(design: MakeDesign) -> None:
+    """Volts go with the root of the power: a twentieth of the power leaves 22 % of the volts."""
+    sheet = sheet_of(design)
+    high = sheet.operating_points[0].figures["capacitor_peak_voltage"].high or 0.0
+    told = f"still {high * 0.05**0.5 / 1e3:.2f} kV peak at 5 W"
+    assert told in sheet.cautions[0]
+
+
+def test_duty_and_power_at_the_loop_are_those_of_the_design(design: MakeDesign) -> None:
+    sheet = sheet_of(design, transmission__0__duty="35 %", feed={"line_loss": "3 dB"})
+    (point,) = sheet.operating_points
+    assert point.duty == pytest.approx(0.35)
+    assert point.power == 100.0
+    assert point.power_at_loop == pytest.approx(100.0 * 10.0**-0.3)
+
+
+def counted(name: str, verdict: Verdict, at_margin: float | None, at_limit: float | None, **more: Any) -> Finding:
+    keys: dict[str, Any] = {
+        "question": "Does it hold?", "value": None, "limit": None, "margin_asked": 1.5, "margin_found": 2.0,
+        "because": "so", "do": "nothing", "source": "the design", "provenance": "verified",
+    }  # fmt: skip
+    return Finding(id=name, verdict=verdict, power_at_margin=at_margin, power_at_limit=at_limit, **{**keys, **more})
+
+
+def test_the_ceiling_is_the_least_of_each_and_the_margin_decides_who_holds_it() -> None:
+    made = ceiling(
+        [counted("a", "clear", 50.0, 90.0), counted("b", "clear", 40.0, 95.0), counted("c", "clear", None, None)], 3
+    )
+    assert (made.value, made.held_by, made.at_limit, made.transmission) == (40.0, "b", 90.0, 3)
+    assert made.complete
+    assert made.left_out == ()
+    short = ceiling([counted("a", "clear", 50.0, 90.0), counted("d", "unproven", None, None)], 0)
+    assert not short.complete
+    assert short.left_out == ("d",)
+
+
+def test_thin_evidence_is_named_only_where_nothing_else_makes_it_narrow() -> None:
+    """A limit from memory that keeps its margin; not one that lacks the margin, nor one that was read."""
+    made = ceiling(
+        [
+            counted("thin", "narrow", 50.0, 90.0, provenance="memory"),
+            counted("short", "narrow", 50.0, 90.0, provenance="memory", margin_found=1.2),
+            counted("read", "narrow", 50.0, 90.0, provenance="verified"),
+            counted("fine", "clear", 50.0, 90.0, provenance="memory"),
+        ],
+        0,
+    )
+    assert made.on_thin_evidence == ("thin",)
+
+
+def test_the_least_ceiling_keeps_what_any_transmission_leaves_out() -> None:
+    low = ceiling([counted("a", "narrow", 10.0, 90.0, provenance="memory")], 0)
+    high = ceiling(
+        [
+            counted("a", "clear", 30.0, 50.0),
+            counted("b", "narrow", 40.0, 60.0, provenance="memory"),
+            counted("d", "unproven", None, None),
+        ],
+        1,
+    )
+    made = least([low, high])
+    assert (made.value, made.transmission, made.held_by) == (10.0, 0, "a")
+    assert made.at_limit == 50.0
+    assert made.left_out == ("d",)
+    assert not made.complete
+    assert made.on_thin_evidence == ("a", "b")

@@ -610,3 +610,107 @@ def test_hopeless_files_are_answered_at_once() -> None:
     problems_of(b"[" + b"a." * 300_000 + b"a]")
     problems_of(b"\n".join([b"[" + b"a." * 9_000 + b"a]"] * 50))
     assert time.monotonic() - begin < 10.0
+
+
+BOUNDARIES = [
+    # the first value that is refused: turns that just touch, a tube without a bore, an empty range, a loop on the soil
+    ({"loop__turns": 2, "loop__turn_spacing": "22 mm"}, "loop.turn_spacing"),
+    ({"loop__conductor__form": "tube", "loop__conductor__wall": "11 mm"}, "loop.conductor.wall"),
+    ({"capacitor__capacitance": {"min": "100 pF", "max": "100 pF"}}, "capacitor.capacitance"),
+    ({"loop__centre_height": "0.511 m", "site__ground": "average"}, "loop.centre_height"),
+    ({"loop__centre_height": "0.505 m", "site__ground": "perfect"}, "loop.centre_height"),
+    ({"loop__centre_height": "0.011 m", "site__ground": "average", "loop__plane": "horizontal"}, "loop.centre_height"),
+    ({"transmission__0__tune_up": {"power": "100.1 W", "time": "5 s"}}, "transmission[0].tune_up.power"),
+    (
+        {
+            "loop__conductor": {
+                "form": "strip",
+                "width": "10 mm",
+                "thickness": "11 mm",
+                "conductivity": "58 MS/m",
+            }
+        },
+        "loop.conductor.thickness",
+    ),
+    (
+        {
+            "loop": {
+                "shape": "rectangle",
+                "width": "60 mm",
+                "height": "2 m",
+                "conductor": {"form": "rod", "outer_diameter": "40 mm", "conductivity": "58 MS/m"},
+            }
+        },
+        "loop.conductor.outer_diameter",
+    ),
+    ({"capacitor__rated_current": None, "capacitor__rated_current_at": "7 MHz"}, "capacitor.rated_current_at"),
+    ({"capacitor__quality_factor_at": "7 MHz"}, "capacitor.quality_factor_at"),
+    ({"capacitor__kind": "air variable", "capacitor__plate_edge": "round"}, "capacitor.plate_edge"),
+    (
+        {"transmission__0": {"frequency": "7.1 MHz", "carrier_power": "25 W", "mode": "FM"}},
+        "transmission[0].carrier_power",
+    ),
+    (
+        {
+            "transmission": [
+                {"name": "40 m Voice", "frequency": "7.1 MHz", "power": "10 W"},
+                {"name": "40-m voice", "frequency": "7.1 MHz", "power": "20 W"},
+            ]
+        },
+        "transmission[1].name",
+    ),
+    (
+        {"place": [{"name": "a", "who": "public", "in_plane": "2 m", "height": "1 m", "floor": "3 m"}]},
+        "place[0].floor",
+    ),
+    ({"place": [{"name": "a", "who": "public", "fence": "4 m", "posture": "standing"}]}, "place[0].posture"),
+    ({"place": [{"name": "a", "who": "public", "fence": "4 m", "height": "1 m"}]}, "place[0].height"),
+    ({"place": [{"name": "a", "who": "public", "fence": "4 m", "floor": "1 m"}]}, "place[0].floor"),
+]
+
+
+@pytest.mark.parametrize(("changes", "key"), BOUNDARIES, ids=[k for _, k in BOUNDARIES])
+def test_what_only_just_does_not_fit_is_refused_by_its_key(changes: dict[str, Any], key: str) -> None:
+    assert [p.key for p in problems(**changes)] == [key]
+
+
+JUST_FITTING: list[dict[str, Any]] = [
+    {"loop__turns": 2, "loop__turn_spacing": "22.1 mm"},
+    {"loop__conductor__form": "tube", "loop__conductor__wall": "10.9 mm"},
+    {"capacitor__capacitance": {"min": "100 pF", "max": "100.1 pF"}},
+    {"loop__centre_height": "0.512 m", "site__ground": "average"},
+    {"loop__centre_height": "0.1 m", "site__ground": "none"},
+    {"loop__centre_height": "0.1 m", "site__ground": "average", "loop__plane": "horizontal"},
+    {"transmission__0__tune_up": {"power": "100 W", "time": "5 s"}},
+    {"transmission__0__power": "10 kW"},
+    {"transmission__0__power": "1 mW"},
+    {"capacitor__position": "top"},
+    {"capacitor__kind": "dielectric plate", "capacitor__gap": "2 mm", "capacitor__plate_thickness": "1 mm"},
+    {"loop__conductor": {"form": "strip", "width": "10 mm", "thickness": "10 mm", "conductivity": "58 MS/m"}},
+    {
+        "loop": {
+            "shape": "rectangle",
+            "width": "90 mm",
+            "height": "2 m",
+            "conductor": {"form": "rod", "outer_diameter": "40 mm", "conductivity": "58 MS/m"},
+        }
+    },
+    {"place": [{"name": "a", "who": "public", "in_plane": "2 m", "posture": "standing", "floor": "3 m"}]},
+]
+
+
+@pytest.mark.parametrize("changes", JUST_FITTING, ids=[" ".join(each) for each in JUST_FITTING])
+def test_what_only_just_fits_is_read(design: MakeDesign, changes: dict[str, Any]) -> None:
+    assert design(**changes).transmission
+
+
+def test_padding_is_held_against_no_frequency_that_could_not_be_read() -> None:
+    """The bad frequency has its own message: a second one about the padding would send to the wrong line."""
+    padding = {"connection": "parallel", "capacitance": "1 nF", "on": ["3.6 MHz"]}
+    found = problems(transmission__0__frequency="7,1 MHz", capacitor__with=[padding])
+    assert [p.key for p in found] == ["transmission[0].frequency"]
+
+
+def test_a_temperature_out_of_range_is_answered_in_degrees() -> None:
+    (problem,) = problems(loop__conductor__temperature="95 degC")
+    assert "between -60 degC and 90 degC" in problem.expected

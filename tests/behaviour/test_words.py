@@ -200,3 +200,29 @@ def test_colour_changes_no_word() -> None:
 def test_no_line_is_wider_than_the_terminal() -> None:
     for width in (50, 60, 80, 100):
         assert max(map(len, _shown(width, colour=False).splitlines())) <= width
+
+
+def test_a_digit_gained_by_rounding_is_no_fourth_one() -> None:
+    assert significant(9.996) == "10.0"
+    assert significant(0.09996) == "0.100"
+    assert significant(99.96) == "100"
+
+
+@pytest.mark.parametrize(("value", "text"), [(0.29, "0.29"), (0.57, "0.57"), (1.1, "1.1"), (29.0, "29"), (8.2, "8.2")])
+def test_a_power_of_two_digits_stays_what_it_is(value: float, text: str) -> None:
+    """0.29 / 0.01 is 28.999999999999996 in binary: nobody loses a step to that."""
+    assert words.floor_two_digits(value) == text
+
+
+def test_a_frequency_keeps_all_its_digits() -> None:
+    assert words.frequency(10.1365e6) == "10.1365 MHz"
+    assert words.frequency(14_074_000.0) == "14.074 MHz"
+
+
+def test_a_figure_that_must_reach_its_limit_is_told_by_its_low_end() -> None:
+    told = words.against_limit(Spread(2270.0, 3120.0, 3900.0), 2700.0, "Hz", "low", None)
+    assert told == "2.27 kHz at worst, 3.12 likely, at least 2.70 kHz is needed"
+
+
+def test_ends_that_are_equal_are_told_where_there_is_no_likely_value() -> None:
+    assert words.ends(Spread(1.0, None, 1.0), "A", "A") == "(1.00 … 1.00)"

@@ -27,8 +27,8 @@ def test_far_circles_couple_as_dipoles() -> None:
     dipole = mu_0 * moment**2 / (4.0 * np.pi * 20.0**3)
     axial = float(inductance.coaxial_mutual_inductance(0.1, 0.1, 20.0))
     beside = inductance.coplanar_mutual_inductance(0.1, 0.1, 20.0)
-    assert axial == pytest.approx(2.0 * dipole, rel=1e-3)
-    assert beside == pytest.approx(-dipole, rel=1e-3)
+    assert axial == pytest.approx(2.0 * dipole, rel=1e-3, abs=0.0)
+    assert beside == pytest.approx(-dipole, rel=1e-3, abs=0.0)
 
 
 def test_a_polygon_of_many_sides_is_nearly_a_circle() -> None:

@@ -2,12 +2,16 @@
 
 from typing import Any
 
+import numpy as np
 import pytest
 from designs import MakeDesign, plain_design
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from scipy.constants import c, mu_0
 
+from magsafe.analysis.chain import QUALITY_ERROR, REACTANCE_ERROR, RESISTANCE_ERROR, VOLTAGE_ERROR
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
+from magsafe.physics import conductor, inductance, small_loop
 
 
 def point(**changes: Any) -> OperatingPoint:
@@ -272,6 +276,164 @@ def test_am_reaches_four_times_its_carrier() -> None:
     found = point(transmission__0={"frequency": "7.1 MHz", "carrier_power": "25 W", "mode": "AM"})
     assert found.power == pytest.approx(100.0)
     assert likely(found, "capacitor_peak_voltage") == pytest.approx(likely(point(), "capacitor_peak_voltage"))
+
+
+def polygon(sides: int, perimeter: float, conductor: float) -> dict[str, Any]:
+    return {
+        "shape": "polygon",
+        "sides": sides,
+        "perimeter": f"{perimeter} m",
+        "conductor": {"form": "rod", "outer_diameter": f"{1e3 * conductor} mm", "conductivity": "58 MS/m"},
+    }
+
+
+FORMS_OUT_OF_RANGE = [
+    (
+        {
+            "loop": {
+                "shape": "rectangle",
+                "width": "1 m",
+                "height": "1 m",
+                "conductor": {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"},
+            }
+        },
+        "not for a rectangle",
+    ),
+    (
+        {
+            "loop": {
+                "shape": "outline",
+                "points": [["0 m", "0 m"], ["1 m", "0 m"], ["0.5 m", "1 m"]],
+                "conductor": {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"},
+            }
+        },
+        "not for an outline",
+    ),
+    (
+        {"loop__conductor": {"form": "strip", "width": "40 mm", "thickness": "1 mm", "conductivity": "58 MS/m"}},
+        "a strip",
+    ),
+    ({"loop__conductor__form": "braid"}, "a braid"),
+    ({"loop__conductor__form": "corrugated"}, "a corrugated"),
+    # 0.04 of the mean radius, but 0.0764 of a side
+    ({"loop": polygon(12, 3.1416, 0.040)}, "of a side"),
+    # 0.0509 of a side, 0.0533 of the mean radius: only just too thick for its side
+    ({"loop": polygon(6, 3.1416, 0.0533)}, "of a side"),
+]
+
+
+@pytest.mark.parametrize(("changes", "word"), FORMS_OUT_OF_RANGE, ids=[w for _, w in FORMS_OUT_OF_RANGE])
+def test_a_shape_or_conductor_without_a_method_is_named_and_nothing_is_guessed(
+    changes: dict[str, Any], word: str
+) -> None:
+    found = point(**changes)
+    assert len(found.out_of_range) == 1
+    assert word in found.out_of_range[0]
+    assert not found.figures.unloaded_q.spread.known
+    assert found.bare_voltage is None
+
+
+def test_a_polygon_just_slender_enough_is_computed() -> None:
+    assert not point(loop=polygon(6, 3.1416, 0.0520)).out_of_range
+
+
+@pytest.mark.parametrize("sides", [3, 4, 8])
+def test_corners_of_a_polygon_widen_what_the_inductance_moves(sides: int) -> None:
+    """At a hundredth of a wavelength and less only the constant errors are left: volts and Q go with L, amps do not.
+
+    What grows with the size is below 2e-4 here, hence the tolerance.
+    """
+    perimeter, thick = 3.1416, 0.022
+    found = point(loop=polygon(sides, perimeter, thick), transmission__0__frequency="0.5 MHz")
+    outside = float(inductance.polygon_inductance(perimeter, sides, thick / 2.0))
+    share = small_loop.closed_form_error(sides).corner * mu_0 * thick / 2.0 / outside
+    assert share > 0.002
+
+    def above(name: str) -> float:
+        return (getattr(found.figures, name).spread.high or 0.0) / likely(found, name) - 1.0
+
+    assert above("inductance") == pytest.approx(REACTANCE_ERROR + share, rel=1e-9)
+    assert 1.0 - (found.figures.inductance.spread.low or 0.0) / likely(found, "inductance") == pytest.approx(
+        REACTANCE_ERROR + share, rel=1e-9
+    )
+    assert above("port_reactance") == pytest.approx(REACTANCE_ERROR + share, abs=2e-4)
+    assert above("capacitor_peak_voltage") == pytest.approx(VOLTAGE_ERROR + share, abs=2e-4)
+    assert above("capacitor_rms_current") == pytest.approx(VOLTAGE_ERROR, abs=2e-4)
+    assert above("unloaded_q") == pytest.approx(QUALITY_ERROR + share, abs=2e-4)
+
+
+def test_the_shape_decides_how_far_its_closed_forms_are_off() -> None:
+    """A triangle's volts may lie further below its closed form than a square's, and that further than a circle's."""
+
+    def below(loop: dict[str, Any]) -> float:
+        found = point(loop=loop, transmission__0__frequency="20 MHz")
+        spread = found.figures.largest_current.spread
+        return (spread.low or 0.0) / (spread.likely or 1.0)
+
+    shares = [below(polygon(sides, 3.1416, 0.022)) for sides in (3, 4, 8)]
+    assert shares == sorted(shares)
+    assert shares[-1] - shares[0] > 0.02
+
+
+def test_the_stated_error_of_the_reactance_covers_the_next_term_of_the_ring() -> None:
+    """Rosa & Grover's terms in the square of the thickness (memory), at the thickest loop in range."""
+    radius, thick = 0.5, 0.5 * small_loop.TAPERED_THICKNESS.high
+    thin = float(inductance.circle_inductance(radius, thick))
+    more = mu_0 * radius * (thick / radius) ** 2 / 4.0 * np.log(8.0 * radius / thick)
+    assert 0.0 < more / thin < REACTANCE_ERROR
+
+
+def test_no_efficiency_is_more_than_all() -> None:
+    found = point(
+        loop__conductor={"form": "rod", "outer_diameter": "53 mm", "conductivity": "63 MS/m"},
+        transmission__0__frequency="23.8 MHz",
+    )
+    spread = found.figures.conductor_efficiency.spread
+    assert spread.likely is not None
+    assert 0.975 < spread.likely < 1.0
+    assert spread.high == 1.0
+
+
+def test_q_is_held_against_the_bound_of_the_sphere_that_holds_the_conductor() -> None:
+    """McLean 1996 (memory): Q at least the efficiency times 1/(kr)^3 + 1/(kr), r to the conductor's outside."""
+    found = point(capacitor__series_resistance="20 mohm", transmission__0__frequency="14.2 MHz")
+    kr = 2.0 * np.pi * 14.2e6 / c * (0.5 + 0.011)
+    bound = likely(found, "conductor_efficiency") * (1.0 / kr**3 + 1.0 / kr)
+    ratio = likely(found, "unloaded_q") / bound
+    assert found.bound_ratio.likely == pytest.approx(ratio)
+    growth = (np.pi * 14.2e6 / c / 0.25) ** 2
+    error = small_loop.closed_form_error(None)
+    below = QUALITY_ERROR + RESISTANCE_ERROR + (error.quality_below + error.efficiency_above) * growth
+    assert found.bound_ratio.low == pytest.approx(ratio * (1.0 - below))
+    assert found.bound_ratio.high == pytest.approx(ratio * (1.0 + QUALITY_ERROR + error.quality_above * growth))
+
+
+def test_the_plain_small_loop_chain_beside_the_tapered_one() -> None:
+    """Uniform current: omega L, the plain radiation and conductor resistance, a capacitor's loss with its reactance."""
+    found = point(
+        capacitor__series_resistance=None,
+        capacitor__quality_factor={"low": 500, "likely": 800, "high": 2000},
+        loop__joint=[{"name": "lugs", "resistance": "2 mohm", "at": "capacitor"}],
+        transmission__0__frequency="21 MHz",
+    )
+    frequency = 21e6
+    radiation = float(small_loop.radiation_resistance(np.pi * 0.25, 1, c / frequency))
+    inside = complex(conductor.rod_impedance(frequency, 58e6, 0.011)) * np.pi
+    reactance = 2.0 * np.pi * frequency * float(inductance.circle_inductance(0.5, 0.011)) + inside.imag
+    total = radiation + inside.real + 2e-3 + reactance / 800.0
+    volts, quality, efficiency = (200.0 / total) ** 0.5 * reactance, reactance / total, radiation / total
+    plain = found.without_taper
+    assert plain is not None
+    assert plain.voltage == pytest.approx(volts / likely(found, "capacitor_peak_voltage"))
+    assert plain.quality == pytest.approx(quality / likely(found, "unloaded_q"))
+    assert plain.efficiency == pytest.approx(efficiency / likely(found, "conductor_efficiency"))
+
+
+def test_soil_says_why_an_end_is_open() -> None:
+    soil = point(site__ground="average", loop__centre_height="2 m").figures
+    for name in ("capacitor_peak_voltage", "capacitor_rms_current", "largest_current", "unloaded_q", "loaded_q"):
+        assert "soil" in getattr(soil, name).why, name
+    assert not point().figures.capacitor_peak_voltage.why
 
 
 def worst_volts(found: OperatingPoint) -> float:

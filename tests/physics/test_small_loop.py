@@ -134,3 +134,59 @@ def test_the_power_goes_into_the_resistance(power: float, resistance: float, rea
     assert current**2 * resistance == pytest.approx(power, rel=1e-12)
     crest = float(tuned_circuit.peak_voltage(power, resistance, reactance))
     assert crest == pytest.approx(2.0**0.5 * current * reactance, rel=1e-12)
+
+
+@given(size=st.floats(0.001, 0.25), shunt=st.floats(-0.07, 0.21))
+def test_the_excess_is_that_of_the_capacitance_named(size: float, shunt: float) -> None:
+    """A susceptance of `shunt` times x beside a reactance of tan x, in units of the line's impedance."""
+    x = np.pi * size
+    seen = 1.0 / (1.0 / (1j * np.tan(x)) + 1j * shunt * x)
+    excess = small_loop.shunt_excess(x, shunt)
+    assert seen.imag == pytest.approx(float(np.tan(x)) * (1.0 + excess), rel=1e-9)
+
+
+def test_the_errors_stated_for_a_circle_cover_the_full_wave_comparison() -> None:
+    """Reference notes, section 3, to 0.25 wavelengths: volts within 0.4 %, Q 0.7 %, efficiency up to 2 % too low."""
+    circle = small_loop.closed_form_error(None)
+    assert min(circle.voltage_below, circle.voltage_above) >= 0.004
+    assert min(circle.quality_below, circle.quality_above) >= 0.007
+    assert circle.efficiency_above >= 0.02
+    assert circle.least_shunt < 0.0
+    assert circle.corner == 0.0  # it has none
+
+
+def test_sharper_corners_leave_more_open() -> None:
+    """Fewer sides gather more charge at each corner: every error grows from the circle to the triangle."""
+    shapes = [small_loop.closed_form_error(sides) for sides in (None, 12, 4, 3)]
+    assert small_loop.closed_form_error(5) == small_loop.closed_form_error(24)
+    for name in ("voltage_below", "quality_below", "efficiency_above", "largest_current_below", "corner"):
+        values = [getattr(shape, name) for shape in shapes]
+        assert values == sorted(values), name
+        assert len(set(values)) == len(values), name
+    shunts = [shape.least_shunt for shape in shapes]
+    assert shunts == sorted(shunts, reverse=True)
+    assert len(set(shunts)) == len(shunts)
+
+
+def test_the_corner_of_a_square_covers_the_next_published_term() -> None:
+    """Rosa & Grover, NBS Scientific Paper 169 (memory): L = 8 s (ln(s/a) + a/s - 0.524) in their units.
+
+    The term in a/s, which the thin-wire form leaves out, is 2/pi in units of mu0 times the conductor radius.
+    """
+    assert small_loop.closed_form_error(4).corner >= 2.0 / np.pi
+
+
+def test_a_capacitive_reactance_has_volts_and_q_like_an_inductive_one() -> None:
+    assert float(tuned_circuit.peak_voltage(100.0, 0.04, -110.0)) == float(
+        tuned_circuit.peak_voltage(100.0, 0.04, 110.0)
+    )
+    assert float(tuned_circuit.unloaded_q(0.04, -110.0, 1.0)) == pytest.approx(2750.0)
+
+
+def test_a_range_has_two_ends_and_holds_no_missing_number() -> None:
+    held = small_loop.TAPERED_CURRENT.holds
+    assert held(0.0)
+    assert held(0.25)
+    assert not held(-1e-9)
+    assert not held(0.2500001)
+    assert not held(float("nan"))
