@@ -5,7 +5,8 @@ from math import ceil, hypot
 
 import numpy as np
 
-from magsafe.analysis.field_source import FieldSource, at_bearings
+from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, FieldSource, at_bearings, field_source
+from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.design.model import Design, Place
 from magsafe.physics.arrays import Array
 
@@ -15,6 +16,7 @@ ELECTRIC_NEAR_CONDUCTOR = 0.3  # m: nearer, the capacitor's and the conductor's 
 ELECTRIC_NEAR_CAPACITOR = 0.5
 _ACROSS, _UP = 0.15, 0.2  # m, first steps of the search in a column
 _REFINEMENTS = 2
+_COARSE_FROM = 1.0  # m
 _FENCE_STEPS = (1.0, 1.05, 1.12, 1.25, 1.5, 2.0, 3.0, 5.0)
 _FENCE_HEIGHTS = (0.0, 0.5, 1.0, 1.5, 2.0)
 
@@ -36,8 +38,29 @@ class _Box:
     high: Array
 
 
-def at_places(source: FieldSource, places: tuple[Place, ...]) -> tuple[Strongest, ...]:
-    """Return the strongest field at each place, in their order.
+def at_places(design: Design, point: OperatingPoint, places: tuple[Place, ...]) -> tuple[Strongest, ...]:
+    """Return the strongest field at each place, in their order; fine pieces of the loop only for places near it."""
+    coarse = field_source(design, point, FAR_PIECE)
+    far = {place.name for place in places if _is_far(coarse, place)}
+    found: dict[str, Strongest] = {}
+    for source, names in ((coarse, far), (None, {place.name for place in places} - far)):
+        own = tuple(place for place in places if place.name in names)
+        if own:
+            used = source or field_source(design, point, NEAR_PIECE)
+            found |= dict(zip((place.name for place in own), search(used, own), strict=True))
+    return tuple(found[place.name] for place in places)
+
+
+def _is_far(source: FieldSource, place: Place) -> bool:
+    """Return whether a place keeps so far from the loop that coarse pieces serve: a metre, as keep-out does."""
+    if place.fence:
+        return place.fence >= source.line.reach + _COARSE_FROM
+    axis, _ = source.clearance(_grid(_boxes(source.design, place)))
+    return bool(axis.min() >= _COARSE_FROM)
+
+
+def search(source: FieldSource, places: tuple[Place, ...]) -> tuple[Strongest, ...]:
+    """Return the strongest field of one source at each place, in their order.
 
     A column is searched on its surface, where a field without sources inside is strongest, first in steps of 0.15 m
     across and 0.2 m up, then about its best points in steps a quarter of that.

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 from math import sqrt
 
 from magsafe.analysis.exposure import Basis, Use, bases, key_down, use_of
-from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, field_source
+from magsafe.analysis.field_source import FAR_PIECE, field_source
 from magsafe.analysis.keepout import Distances, Shells, keep_out, shells
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.people import Strongest, at_places
@@ -84,10 +84,10 @@ def _view(design: Design, point: OperatingPoint) -> _View:
     doubt, use = _metal(design), use_of(point.transmission)
     if unknown or not design.site.rules:
         return _View(design, point, use, unknown, doubt, {}, None, 1.0, 1.0)
-    near, far = field_source(design, point, NEAR_PIECE), field_source(design, point, FAR_PIECE)
-    found = at_places(near, tuple(design.place)) if design.place else ()
+    far = field_source(design, point, FAR_PIECE)
+    found = at_places(design, point, tuple(design.place))
     strongest = {place.name: each for place, each in zip(design.place, found, strict=True)}
-    return _View(design, point, use, unknown, doubt, strongest, shells(far), near.bare_factor, near.likely_factor)
+    return _View(design, point, use, unknown, doubt, strongest, shells(far), far.bare_factor, far.likely_factor)
 
 
 def _unknown(design: Design, point: OperatingPoint) -> str:

@@ -104,7 +104,7 @@ class _Speaker:
     def paragraph(self, text: str, style: str = "", indent: int = 0) -> RenderableType:
         """Return a text wrapped to the width, indented as a whole."""
         lines = wrap(self.letters(text), self.width - indent, break_on_hyphens=False) or [""]
-        return Text("\n".join(" " * indent + line for line in lines), style=style)
+        return Text("\n".join(" " * indent + line for line in lines), style=style, no_wrap=True)
 
     def heading(self, text: str) -> Iterator[RenderableType]:
         """Yield an empty line and a heading."""
@@ -153,7 +153,7 @@ class _Speaker:
         if bold:
             mark.stylize("bold")
         body = f"\n{' ' * _SAID}".join(lines)
-        return Text.assemble(mark, (body, "bold" if bold else ""))
+        return Text.assemble(mark, (body, "bold" if bold else ""), no_wrap=True)
 
     def in_the_way(self, sheet: Sheet) -> Iterator[RenderableType]:
         """Yield what is not clear, the worst first."""
@@ -254,7 +254,7 @@ class _Speaker:
         yield from self.heading(title)
         for sentence in sentences:
             lines = wrap(self.letters(sentence), self.width - 2, break_on_hyphens=False)
-            yield Text("\n".join(f"{'- ' if i == 0 else '  '}{line}" for i, line in enumerate(lines)))
+            yield Text("\n".join(f"{'- ' if i == 0 else '  '}{line}" for i, line in enumerate(lines)), no_wrap=True)
 
 
 def _title(told: telling.Told) -> str:

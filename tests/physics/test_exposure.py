@@ -15,7 +15,7 @@ from magsafe.analysis.exposure import Use, bases, key_down, use_of
 from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, FieldSource, field_source, touch_distance
 from magsafe.analysis.keepout import Distances, keep_out, round_up, shells
 from magsafe.analysis.operating_point import operating_point
-from magsafe.analysis.people import at_places
+from magsafe.analysis.people import at_places, search
 from magsafe.design.model import Design, Place
 from magsafe.rules.duty import OnAirShare, Over, Pattern
 from magsafe.rules.limit import WHO, load_rule
@@ -146,7 +146,7 @@ def place(**keys: Any) -> Place:
 )
 def test_the_worst_point_of_a_column_by_brute_force(where: dict[str, Any]) -> None:
     source = source_of(loop__centre_height="1.6 m", site__ground="average", capacitor__position="top")
-    (found,) = at_places(source, (place(**where),))
+    (found,) = search(source, (place(**where),))
     made = place(**where)
     high = {"standing": 2.0, "sitting": 1.4, "lying": 0.6}[where["posture"]]
     low_corner = np.array([(made.along_axis or 0.0) - 0.3, (made.in_plane or 0.0) - 0.3, 0.0])
@@ -162,15 +162,15 @@ def test_a_rotating_loop_is_judged_at_its_worst_bearing() -> None:
     where = {"along_axis": "0 m", "in_plane": "2.5 m"}
     fixed = source_of(loop__centre_height="1.6 m", site__ground="average")
     turning = source_of(loop__centre_height="1.6 m", site__ground="average", loop__rotates=True)
-    (still,), (turned,) = at_places(fixed, (place(**where),)), at_places(turning, (place(**where),))
-    (on_axis,) = at_places(fixed, (place(along_axis="2.5 m", in_plane="0 m"),))
+    (still,), (turned,) = search(fixed, (place(**where),)), search(turning, (place(**where),))
+    (on_axis,) = search(fixed, (place(along_axis="2.5 m", in_plane="0 m"),))
     assert turned.magnetic > 1.5 * still.magnetic
     assert sqrt(turned.magnetic) >= sqrt(on_axis.magnetic) * 0.999
 
 
 def test_a_fence_is_the_worst_of_what_lies_outside_it() -> None:
     source = source_of(loop__centre_height="1.6 m", site__ground="average", capacitor__position="side")
-    (found,) = at_places(source, (place(fence="3 m"),))
+    (found,) = search(source, (place(fence="3 m"),))
     rng = np.random.default_rng(5)
     turn, far, up = rng.uniform(0, 2 * pi, 5000), 3.0 + rng.exponential(2.0, 5000), rng.uniform(0.0, 2.0, 5000)
     squares = source.strongest(np.stack([far * np.cos(turn), far * np.sin(turn), up], axis=1))
@@ -178,9 +178,19 @@ def test_a_fence_is_the_worst_of_what_lies_outside_it() -> None:
     assert sqrt(found.electric) >= sqrt(float(squares.electric.max())) * 0.99
 
 
+def test_far_places_in_coarse_pieces_say_the_same() -> None:
+    source = source_of(loop__centre_height="1.6 m", site__ground="average", capacitor__position="side")
+    spots = {"a": "1.9 m", "b": "0.9 m", "c": "6 m"}
+    places = tuple(place(along_axis=away).model_copy(update={"name": name}) for name, away in spots.items())
+    together = at_places(source.design, source.point, places)
+    for one, other in zip(together, search(source, places), strict=True):
+        assert sqrt(one.magnetic) == pytest.approx(sqrt(other.magnetic), rel=3e-3)
+        assert sqrt(one.electric) == pytest.approx(sqrt(other.electric), rel=6e-3)
+
+
 def test_near_the_bodies_the_electric_field_is_not_trusted() -> None:
     source = source_of(loop__centre_height="1.6 m", site__ground="average", capacitor__position="top")
-    far, near, inside = at_places(source, (place(along_axis="2 m"), place(along_axis="0.5 m"), place(in_plane="0.5 m")))
+    far, near, inside = search(source, (place(along_axis="2 m"), place(along_axis="0.5 m"), place(in_plane="0.5 m")))
     assert far.doubts == ()
     assert "0.3 m of the conductor" in near.doubts[0]
     assert any("runs through" in doubt for doubt in inside.doubts)
