@@ -199,7 +199,8 @@ def _place(
     if tuning and view.use.tune_up_time == 0.0:
         unknown = unknown or "this transmission has no tune_up, and the place is judged while tuning"
     if unknown or place.name not in view.strongest:
-        return _unknown_place(place), unproven(check, unknown, place=place.name)
+        record = PlaceRecord(name=place.name, verdict="unproven", when=place.when)
+        return record, unproven(check, unknown, place=place.name)
     strongest = view.strongest[place.name]
     judged = _judged(view, found, strongest, tuning)
     binding = max(judged, key=lambda each: each.share)
@@ -317,25 +318,3 @@ def _thin(judged: Sequence[_Judged]) -> str:
         if each.row.provenance_at(each.basis.frequency) == "memory"
     ]
     return f"from memory and read by nobody in the standard: {', '.join(unread)}" if unread else ""
-
-
-def _unknown_place(place: Place) -> PlaceRecord:
-    return PlaceRecord(
-        name=place.name,
-        electric=None,
-        magnetic=None,
-        electric_limit=None,
-        magnetic_limit=None,
-        share_of_limit=None,
-        field_ratio=None,
-        set_by=None,
-        basis=None,
-        judged_power=None,
-        averaging_time=None,
-        provenance=None,
-        verdict="unproven",
-        power_ceiling=None,
-        at_limit=None,
-        when=place.when,
-        bases=(),
-    )

@@ -63,27 +63,40 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
     found = _margin(check.dangerous, end, limit)
     bare = found if bare_end is None else min(found, _margin(check.dangerous, bare_end, limit))
     verdict: Verdict = "stop" if found < 1.0 else "narrow" if bare < margin or thin else "clear"
-    if verdict == "stop" and worst != "stop":
+    if verdict == "stop":
         verdict = worst
     allowed, reached = powers or (_power(power, bare / margin), _power(power, bare))
     text = words.against_limit(value, limit, check.unit, check.dangerous, check.shown, check.qualifier)
     relation = "this is too little" if found < 1.0 and check.dangerous == "low" else _relation(found, bare, margin)
-    because = f"{text}: {relation}{f'; {thin}' if thin else ''}"
+    made = _finding(check, value, verdict, f"{text}: {relation}{f'; {thin}' if thin else ''}", limit)
+    return made.model_copy(
+        update={
+            "place": place,
+            "margin_asked": margin,
+            "margin_found": None if found == inf else found,
+            "do": _do(check, verdict, allowed, power, found >= margin),
+            "provenance": provenance,
+            "power_at_margin": allowed,
+            "power_at_limit": reached,
+        }
+    )
+
+
+def _finding(check: Check, value: Spread | None, verdict: Verdict, because: str, limit: float | None) -> Finding:
+    """Return a finding that no margin and no power belongs to yet."""
+    known = value is not None and value.known
     return Finding(
         id=check.id,
-        place=place,
         question=check.question,
-        value=_value(value, check.unit),
-        limit=Limit(value=limit, unit=check.unit),
-        margin_asked=margin,
-        margin_found=None if found == inf else found,
+        value=_value(value, check.unit) if value is not None and known else None,
+        limit=None if limit is None else Limit(value=limit, unit=check.unit),
+        margin_asked=None,
+        margin_found=None,
         verdict=verdict,
         because=because,
-        do=_do(check, verdict, allowed, power, found >= margin),
+        do="nothing" if verdict == "clear" else check.do,
         source=check.source,
-        provenance=provenance,
-        power_at_margin=allowed,
-        power_at_limit=reached,
+        provenance="none",
     )
 
 
@@ -132,20 +145,8 @@ def unproven(
     place: str | None = None,
 ) -> Finding:
     """Return the finding of a check that lacks something, or lies outside every method's range."""
-    return Finding(
-        id=check.id,
-        place=place,
-        question=check.question,
-        value=_value(value, check.unit) if value is not None and value.known else None,
-        limit=None if limit is None else Limit(value=limit, unit=check.unit),
-        margin_asked=None,
-        margin_found=None,
-        verdict="unproven",
-        because=because,
-        do=do or check.do,
-        source=check.source,
-        provenance="none",
-    )
+    made = _finding(check, value, "unproven", because, limit)
+    return made.model_copy(update={"do": do or check.do, "place": place})
 
 
 def judge_between(check: Check, value: Spread, least: float, most: float, *, loose: bool) -> Finding:
@@ -169,53 +170,18 @@ def judge_between(check: Check, value: Spread, least: float, most: float, *, loo
         f"{likely}{words.number(min(ends), check.unit, name)} to {words.number(max(ends), check.unit, name)} at worst; "
         f"it reaches {words.number(least, check.unit, name)} to {words.amount(most, check.unit)}"
     )
-    return Finding(
-        id=check.id,
-        question=check.question,
-        value=_value(value, check.unit),
-        limit=Limit(value=most if max(ends) > most else least, unit=check.unit),
-        margin_asked=None,
-        margin_found=None,
-        verdict=verdict,
-        because=text,
-        do="nothing" if verdict == "clear" else check.do,
-        source=check.source,
-        provenance="stated in the design",
-    )
+    made = _finding(check, value, verdict, text, most if max(ends) > most else least)
+    return made.model_copy(update={"provenance": "stated in the design"})
 
 
 def holds(check: Check, value: Spread, limit: float, because: str) -> Finding:
     """Return the clear finding of a question that is answered by a range and not by a margin."""
-    return Finding(
-        id=check.id,
-        question=check.question,
-        value=_value(value, check.unit),
-        limit=Limit(value=limit, unit=check.unit),
-        margin_asked=None,
-        margin_found=None,
-        verdict="clear",
-        because=because,
-        do="nothing",
-        source=check.source,
-        provenance="computed",
-    )
+    return _finding(check, value, "clear", because, limit).model_copy(update={"provenance": "computed"})
 
 
 def undecided(check: Check, value: Spread, because: str, do: str) -> Finding:
     """Return the narrow finding of a question that harms nobody and lacks what it would be held against."""
-    return Finding(
-        id=check.id,
-        question=check.question,
-        value=_value(value, check.unit),
-        limit=None,
-        margin_asked=None,
-        margin_found=None,
-        verdict="narrow",
-        because=because,
-        do=do,
-        source=check.source,
-        provenance="none",
-    )
+    return _finding(check, value, "narrow", because, None).model_copy(update={"do": do})
 
 
 def _value(spread: Spread, unit: str) -> Value:

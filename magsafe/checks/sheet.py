@@ -114,26 +114,27 @@ class BasisRecord(Record):
 class PlaceRecord(Record):
     """A place under one rule: its binding basis, its verdict, and the power it could bear [W].
 
-    That is the envelope power; of a place that is judged while tuning, the tune-up carrier's.
+    That is the envelope power; of a place that is judged while tuning, the tune-up carrier's. Null where the field is
+    not known.
     """
 
     name: str
-    electric: float | None
-    magnetic: float | None
-    electric_limit: float | None
-    magnetic_limit: float | None
-    share_of_limit: float | None
-    field_ratio: float | None
-    set_by: str | None
-    basis: str | None
-    judged_power: float | None
-    averaging_time: float | None
-    provenance: str | None
+    electric: float | None = None
+    magnetic: float | None = None
+    electric_limit: float | None = None
+    magnetic_limit: float | None = None
+    share_of_limit: float | None = None
+    field_ratio: float | None = None
+    set_by: str | None = None
+    basis: str | None = None
+    judged_power: float | None = None
+    averaging_time: float | None = None
+    provenance: str | None = None
     verdict: Verdict
-    power_ceiling: float | None
-    at_limit: float | None
+    power_ceiling: float | None = None
+    at_limit: float | None = None
     when: str
-    bases: tuple[BasisRecord, ...]
+    bases: tuple[BasisRecord, ...] = ()
 
 
 class DistanceRecord(Record):

@@ -132,7 +132,7 @@ ROWS = (
     Row("port_reactance", "Port reactance, Ω", "ohm", "Ω"),
     Row("inductance", "Inductance, µH", "H", "µH"),
     Row("tuning_capacitance", "Tuning capacitance, pF", "F", "pF"),
-    Row("conductor_efficiency", "Efficiency without ground, %", "1", "%"),
+    Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),
     Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
     Row("unloaded_q", "Unloaded Q", "1", ""),
     Row("loaded_q", "Loaded Q, matched", "1", ""),
