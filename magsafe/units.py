@@ -21,7 +21,7 @@ _OWN_FACTORS = {"%": 0.01, "dB": 1.0}
 
 
 @cache
-def registry() -> pint.UnitRegistry[float]:
+def registry() -> "pint.UnitRegistry[float]":
     """Return the one registry, made when it is first asked for from a short unit file of our own."""
     made: pint.UnitRegistry[float] = pint.UnitRegistry(None)
     made.load_definitions(Path(__file__).with_name("units.txt"))
