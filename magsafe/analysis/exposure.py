@@ -49,8 +49,8 @@ def bases(rule: Rule, who: Who, frequency: float) -> tuple[Basis, ...]:
 class Use:
     """How a transmission fills time: envelope power [W], duty while keyed, pattern of overs, tune-up carrier.
 
-    The tune-up is counted as part of an over: for its time the carrier's power stands in place of the mode's mean,
-    where that is more.
+    A tune-up comes before an over: its carrier adds to the mean of the window, once, and the sum is never more than the
+    stronger of the two lasting all the time.
     """
 
     envelope: float
@@ -69,26 +69,20 @@ class Use:
     def _always(self, envelope: float, averaging_time: float) -> float:
         if averaging_time == 0.0:
             return envelope
-        share = window_share(self.pattern, averaging_time)
-        mean = averaged_power(envelope, self.duty, share)
-        return mean + self._tuning_share(averaging_time) * max(0.0, self.tune_up_power - envelope * self.duty)
+        mean = averaged_power(envelope, self.duty, window_share(self.pattern, averaging_time))
+        return min(mean + self._tuning(averaging_time), max(envelope * self.duty, self.tune_up_power))
 
-    def _tuning_share(self, averaging_time: float) -> float:
-        """Return the share of the window that a tune-up takes of the time that is keyed anyway."""
-        return min(self.tune_up_time / averaging_time, window_share(self.pattern, averaging_time))
+    def _tuning(self, averaging_time: float) -> float:
+        """Return what a tune-up adds to the mean of a window [W]."""
+        return self.tune_up_power * min(1.0, self.tune_up_time / averaging_time)
 
     def envelope_for(self, allowed: float, averaging_time: float) -> float:
         """Return the envelope power [W] at which a basis looks at no more than `allowed` [W]; 0 if none does."""
         if averaging_time == 0.0:
             return allowed
-        share, tuning = window_share(self.pattern, averaging_time), self._tuning_share(averaging_time)
-        if allowed >= self.tune_up_power * share:
-            return allowed / (self.duty * share)
-        rest = allowed - tuning * self.tune_up_power
-        if rest < 0.0:
-            return 0.0
-        steeper = self.duty * (share - tuning)
-        return self.tune_up_power / self.duty if steeper <= 0.0 else min(rest / steeper, self.tune_up_power / self.duty)
+        share = window_share(self.pattern, averaging_time)
+        beside = max(0.0, allowed - self._tuning(averaging_time)) / (self.duty * share)
+        return max(beside, allowed / self.duty) if allowed >= self.tune_up_power else beside
 
 
 def use_of(transmission: Transmission) -> Use:

@@ -40,6 +40,7 @@ class FloorDistances:
     """Distances for people on one floor [m above ground]; None for a direction that the loop does not have."""
 
     floor: float
+    any_bearing: Distance
     along_axis: Distance | None
     in_plane: Distance
     across: Distance | None
@@ -78,8 +79,12 @@ def shells(source: FieldSource) -> Shells:
     nearest = touch_distance(source.line)
     # Over a plane, direct and mirrored field make lobes whose number grows with the height in wavelengths.
     lobes = 2.0 * pi * source.point.transmission.frequency / c * source.height if source.grounded else 0.0
-    count = min(14 + ceil(5.0 * max(0.0, lobes - 0.5)), 80)
+    count = min(20 + ceil(5.0 * max(0.0, lobes - 0.5)), 80)
     distances = np.geomspace(nearest, FARTHEST, count)
+    if source.grounded and nearest < source.height < FARTHEST:
+        # Straight down the ground is a sample of its own: what lies further is not there.
+        distances = np.sort(np.append(distances, source.height))
+    count = len(distances)
     floors = tuple(source.design.site.floors or [0.0])
     families = _families(source, floors, lobes)
     sets = [make(distances) for make in families.values()]
@@ -117,7 +122,9 @@ def _families(source: FieldSource, floors: tuple[float, ...], lobes: float) -> d
 
     def any_height(turns: list[float]) -> Family:
         def points(distances: Array) -> Array:
-            up = np.concatenate([_HEIGHTS, -np.asarray(_HEIGHTS[1:])])
+            between = np.linspace(0.0, _HEIGHTS[-1], ceil(6.0 * lobes) + 1)
+            steps = np.union1d(_HEIGHTS, between)
+            up = np.concatenate([steps, -steps[1:]])
             own = height + distances[:, None] * up
             low = np.broadcast_to(np.linspace(0.0, height, 5), (len(distances), 5))
             heights = np.concatenate([own, low], axis=1) if source.grounded else own
@@ -143,7 +150,9 @@ def _families(source: FieldSource, floors: tuple[float, ...], lobes: float) -> d
     families: dict[str, Family] = {"any_direction": lambda d: _sphere(d, height, lobes, half)}
     families |= {name: any_height(turns) for name, turns in bearings.items()}
     families |= {"above": upright(1.0), "below": upright(-1.0)}
+    round_about = list(np.arange(half[0], half[1] + 1e-9, np.radians(15.0)))
     for floor in floors:
+        families[f"any_bearing on {floor:.6f}"] = on_floor(floor, round_about)
         families |= {f"{name} on {floor:.6f}": on_floor(floor, turns) for name, turns in bearings.items()}
     return families
 
@@ -167,7 +176,13 @@ def _sphere(distances: Array, height: float, lobes: float, bearings: tuple[float
     unit = np.stack(
         [np.cos(elevation) * np.cos(bearing), np.cos(elevation) * np.sin(bearing), np.sin(elevation)], axis=1
     )
-    return np.asarray(distances[:, None, None] * unit + [0.0, 0.0, height])
+    made = distances[:, None, None] * unit
+    # Where the sphere meets the ground its strongest points may lie: a ring just above it, or the point straight down.
+    down = np.minimum(height * (1.0 - 1e-9), distances)
+    flat = np.sqrt(np.maximum(distances**2 - down**2, 0.0))[:, None]
+    drop = np.broadcast_to(-down[:, None], (len(distances), len(turn)))
+    ring = np.stack([flat * np.cos(turn), flat * np.sin(turn), drop], axis=2)
+    return np.asarray(np.concatenate([made, ring], axis=1) + np.array([0.0, 0.0, height]))
 
 
 def keep_out(
@@ -198,6 +213,7 @@ def keep_out(
     floors = tuple(
         FloorDistances(
             floor,
+            one(f"any_bearing on {floor:.6f}"),
             pick("along_axis", f" on {floor:.6f}"),
             one(f"in_plane on {floor:.6f}"),
             pick("across", f" on {floor:.6f}"),

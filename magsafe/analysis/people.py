@@ -17,8 +17,9 @@ ELECTRIC_NEAR_CAPACITOR = 0.5
 _ACROSS, _UP = 0.15, 0.2  # m, first steps of the search in a column
 _REFINEMENTS = 2
 _COARSE_FROM = 1.0  # m
+_NEARBY = 2.0  # m: nearer, a rotating loop is tried at twice as many bearings
 _FENCE_STEPS = (1.0, 1.05, 1.12, 1.25, 1.5, 2.0, 3.0, 5.0)
-_FENCE_HEIGHTS = (0.0, 0.5, 1.0, 1.5, 2.0)
+_FENCE_PAD = 1.02**2  # on squares, for what lies between the points on a fence
 
 
 @dataclass(frozen=True, slots=True)
@@ -124,7 +125,8 @@ class _Search:
             doubts.append("part of it is below the ground")
         if place.fence and place.fence < self.source.line.reach:
             doubts.append("the fence is inside the loop's outline")
-        return Strongest(float(self.best[0, index]), float(self.best[1, index]), tuple(doubts))
+        pad = _FENCE_PAD if place.fence else 1.0
+        return Strongest(float(self.best[0, index]) * pad, float(self.best[1, index]) * pad, tuple(doubts))
 
 
 def _boxes(design: Design, place: Place) -> list[_Box]:
@@ -142,7 +144,10 @@ def _boxes(design: Design, place: Place) -> list[_Box]:
         high = low + POSTURES[place.posture or "standing"]
     centres = np.array([[x, y, 0.0]])
     if design.loop.rotates:
-        centres = at_bearings(np.array([[hypot(x, y), 0.0, 0.0]]), np.radians(np.arange(0.0, 360.0, 7.5)))
+        centres = at_bearings(
+            np.array([[hypot(x, y), 0.0, 0.0]]),
+            np.radians(np.arange(0.0, 360.0, 7.5 if hypot(x, y) < _NEARBY else 15.0)),
+        )
     wide = np.array([half, half, 0.0])
     return [_Box(centre - wide + [0.0, 0.0, low], centre + wide + [0.0, 0.0, high]) for centre in centres]
 
@@ -152,16 +157,20 @@ def _grid(boxes: list[_Box]) -> Array:
 
 
 def _surface(box: _Box) -> Array:
-    """Return points on the upright sides of a box, and its one upright line where it has no width."""
+    """Return points on all faces of a box, and on its one upright line where it has no width."""
     size = box.high - box.low
     up = np.linspace(box.low[2], box.high[2], max(1, ceil(size[2] / _UP)) + 1) if size[2] > 0.0 else box.low[2:3]
     if size[0] == 0.0:
-        across = box.low[None, :2]
-    else:
-        side = np.linspace(0.0, 1.0, round(size[0] / _ACROSS) + 1)
-        x, y = np.meshgrid(side, side)
-        rim = (x == 0.0) | (x == 1.0) | (y == 0.0) | (y == 1.0)
-        across = box.low[:2] + np.stack([x[rim], y[rim]], axis=1) * size[:2]
+        return _stacked(box.low[None, :2], up)
+    side = np.linspace(0.0, 1.0, round(size[0] / _ACROSS) + 1)
+    x, y = np.meshgrid(side, side)
+    rim = (x == 0.0) | (x == 1.0) | (y == 0.0) | (y == 1.0)
+    inside, across = ~rim, np.stack([x, y], axis=2) * size[:2] + box.low[:2]
+    return np.concatenate([_stacked(across[rim], up), _stacked(across[inside], up[[0, -1]])])
+
+
+def _stacked(across: Array, up: Array) -> Array:
+    """Return every horizontal position at every height, shape (point, 3)."""
     return np.concatenate([np.repeat(across, len(up), axis=0), np.tile(up, len(across))[:, None]], axis=1)
 
 
@@ -183,8 +192,14 @@ def _about(
 
 
 def _fence(source: FieldSource, place: Place) -> Array:
-    """Return points on and outside a fence, at every bearing, at the heights of people on each floor."""
+    """Return points on and outside a fence, at every bearing, at the heights of people on each floor.
+
+    The fence itself is looked at in steps of 5 degrees and 0.1 m, what lies outside it more coarsely.
+    """
     floors = source.design.site.floors or [0.0]
-    heights = [floor + up for floor in floors for up in _FENCE_HEIGHTS]
-    ring = [[(place.fence or 0.0) * further, 0.0, z] for further in _FENCE_STEPS for z in heights]
-    return at_bearings(np.array(ring), np.radians(np.arange(0.0, 360.0, 10.0)))
+    radius, made = place.fence or 0.0, []
+    for further, up, turn in ((_FENCE_STEPS[:1], 0.1, 5.0), (_FENCE_STEPS[1:], 0.5, 10.0)):
+        heights = [floor + step for floor in floors for step in np.linspace(0.0, 2.0, round(2.0 / up) + 1)]
+        ring = np.array([[radius * each, 0.0, z] for each in further for z in heights])
+        made.append(at_bearings(ring, np.radians(np.arange(0.0, 360.0, turn))))
+    return np.concatenate(made)

@@ -143,10 +143,7 @@ def _people(design: Design) -> Iterator[str]:
                 "pauses can fill more of a window."
             )
         if transmission.tune_up is not None:
-            yield (
-                f"{title}: one tune-up in any averaging time, as part of an over; its carrier counts "
-                "where it is stronger than the mode's mean."
-            )
+            yield (f"{title}: one tune-up in any averaging time, beside the overs.")
 
 
 def _kept(design: Design) -> Iterator[str]:

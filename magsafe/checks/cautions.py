@@ -32,7 +32,5 @@ def _volts(points: tuple[OperatingPoint, ...]) -> str:
     if volts == 0.0:
         return "The loop carries kilovolts even at a few watts."
     at_five = max(each * (5.0 / watts) ** 0.5 for each, watts in found)
-    return (
-        f"The loop carries up to {words.amount(volts, 'V', qualifier='peak')} at {power:.6g} W, and still "
-        f"{words.amount(at_five, 'V', qualifier='peak')} at 5 W."
-    )
+    first = f"The loop carries up to {words.amount(volts, 'V', qualifier='peak')} at {words.watts(power)}"
+    return f"{first}." if power <= 5.0 else f"{first}, and still {words.amount(at_five, 'V', qualifier='peak')} at 5 W."

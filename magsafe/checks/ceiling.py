@@ -8,27 +8,18 @@ from magsafe.checks.sheet import Finding, PowerCeiling
 def ceiling(findings: Sequence[Finding], transmission: int) -> PowerCeiling:
     """Return the ceiling of one transmission from its findings and those of the whole sheet.
 
-    What is unproven cannot be counted: it is left out, and the ceiling is then told as "at most". What stops it at any
+    What is unproven or in doubt is left out, and the ceiling is then told as "at most". What stops it at any
     power makes it 0.
     """
     counted = [(f.power_at_margin, f.id) for f in findings if f.power_at_margin is not None]
     limits = [f.power_at_limit for f in findings if f.power_at_limit is not None]
-    left_out = tuple(f.id for f in findings if f.verdict == "unproven")
+    left_out = tuple(f.id for f in findings if f.verdict == "unproven" or f.doubt)
     value, held_by = min(counted, default=(None, None))
     at_limit = min(limits, default=None)
-    fatal = [f.id for f in findings if f.verdict == "stop" and f.power_at_margin is None]
+    fatal = [f.id for f in findings if f.verdict == "stop" and f.power_at_margin is None and not f.doubt]
     if fatal:
         value, at_limit, held_by = 0.0, 0.0, fatal[0]
-    thin = tuple(
-        f.id
-        for f in findings
-        if f.verdict == "narrow"
-        and f.power_at_margin is not None
-        and f.margin_found is not None
-        and f.margin_asked is not None
-        and f.margin_found >= f.margin_asked
-        and f.provenance == "memory"
-    )
+    thin = tuple(f.id for f in findings if f.thin)
     return PowerCeiling(
         value=value,
         at_limit=at_limit,

@@ -117,8 +117,8 @@ def _tier(view: _View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Findi
     gap = f"{rule.name} has no {' and no '.join(uncovered)} limit at this frequency" if uncovered else ""
     findings: list[Finding] = []
     records: list[PlaceRecord] = []
-    if not places:
-        findings.append(_no_place(rule, who))
+    if not any(place.when == "always" for place in places):
+        findings.append(_no_place(rule, who, tuning=bool(places)))
     for place in places:
         record, finding = _place(view, rule, found, place, view.unknown or gap)
         records.append(record)
@@ -130,7 +130,7 @@ def _tier(view: _View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Findi
     ), findings
 
 
-def _no_place(rule: Rule, who: Who) -> Finding:
+def _no_place(rule: Rule, who: Who, *, tuning: bool) -> Finding:
     check = Check(
         f"exposure.{rule.name}.{who}",
         f"Are people ({who}) within the limits of {rule.name}?",
@@ -138,6 +138,10 @@ def _no_place(rule: Rule, who: Who) -> Finding:
         f"{rule.standard}, {rule.edition}",
         "1",
     )
+    if tuning:
+        return unproven(
+            check, f'Only places while tuning are given for who = "{who}": nothing says where they are after'
+        )
     return unproven(check, f'No place with who = "{who}" is given, and silence is not clear')
 
 
@@ -160,7 +164,10 @@ def _as_dict(found: Distances) -> dict[str, object]:
         for name in ("any_direction", "along_axis", "in_plane", "across", "above", "below")
     }
     floors = [
-        {"floor": each.floor, **{name: one(getattr(each, name)) for name in ("along_axis", "in_plane", "across")}}
+        {
+            "floor": each.floor,
+            **{name: one(getattr(each, name)) for name in ("any_bearing", "along_axis", "in_plane", "across")},
+        }
         for each in found.on_floors
     ]
     return {**named, "on_floors": tuple(floors)}
@@ -210,7 +217,7 @@ def _place(
         Check(
             check.id,
             check.question,
-            _KEEP if tuning else _DO_PLACE,
+            _KEEP if tuning else _DO_TUNE_UP if powers[0] == 0.0 else _DO_PLACE,
             check.source,
             _UNITS[binding.kind],
             shown=_UNITS[binding.kind],
@@ -226,15 +233,18 @@ def _place(
         provenance=binding.row.provenance_at(binding.basis.frequency) or "none",
         place=place.name,
     )
-    finding = _doubted(check, finding, (*strongest.doubts, *([view.doubt] if view.doubt else [])))
+    finding = _doubted(finding, (*strongest.doubts, *([view.doubt] if view.doubt else [])))
+    if place.fence:
+        text = f"{finding.because}; for people on the floors, above them the keep-out holds"
+        finding = finding.model_copy(update={"because": text})
     top = next(record for record in records if record.basis == binding.basis.name)
     return (
         PlaceRecord(
             name=place.name,
             **top.model_dump(),
             verdict=finding.verdict,
-            power_ceiling=powers[0],
-            at_limit=powers[1],
+            power_ceiling=None if finding.doubt else powers[0],
+            at_limit=None if finding.doubt else powers[1],
             when=place.when,
             bases=records,
         ),
@@ -243,13 +253,21 @@ def _place(
 
 
 _DO_PLACE = "keep people out of this place"
+_DO_TUNE_UP = "lower the tune_up, which alone is too much here, or keep people out of this place"
 
 
-def _doubted(check: Check, finding: Finding, doubts: Sequence[str]) -> Finding:
-    """Return a finding that cannot be clear because part of the field is not known; a stop stays one."""
-    if not doubts or finding.verdict == "stop":
+def _doubted(finding: Finding, doubts: Sequence[str]) -> Finding:
+    """Return a finding that proves nothing because part of the field is not known; a stop stays one.
+
+    The power that it allows by what is known stays too: more is certainly too much, whatever the verdict.
+    """
+    if not doubts:
         return finding
-    return unproven(check, f"{'; '.join(doubts)} ({finding.because})", do=_KEEP, place=finding.place)
+    doubt = "; ".join(doubts)
+    update: dict[str, object] = {"doubt": doubt, "do": _KEEP, "because": f"{doubt} ({finding.because})"}
+    if finding.verdict != "stop":
+        update["verdict"] = "unproven"
+    return finding.model_copy(update=update)
 
 
 def _judged(view: _View, found: tuple[Basis, ...], strongest: Strongest, tuning: bool) -> list[_Judged]:

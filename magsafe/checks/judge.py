@@ -78,6 +78,7 @@ def judge(  # noqa: PLR0913 (each is a fact of its own, named at the call)
             "provenance": provenance,
             "power_at_margin": allowed,
             "power_at_limit": reached,
+            "thin": bool(thin),
         }
     )
 
@@ -119,7 +120,7 @@ def _do(check: Check, verdict: Verdict, allowed: float | None, power: float | No
     if verdict == "clear":
         return "nothing"
     do = "have what it rests on measured or read at its source, or count it as not proven" if kept else check.do
-    if allowed is None or power is None or allowed >= power:
+    if allowed is None or power is None or allowed >= power or allowed == 0.0:
         return do
     return f"lower the power to {words.power(allowed)}, or {do}"
 

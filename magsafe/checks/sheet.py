@@ -48,7 +48,8 @@ class Finding(Record):
     """One question, its figure, its limit, its verdict.
 
     `power_at_margin` and `power_at_limit` are the envelope powers at the transmitter [W] up to which this finding
-    keeps the margin asked for and the bare limit; null where no power changes it.
+    keeps the margin asked for and the bare limit; null where no power changes it. `thin` tells that its evidence allows
+    narrow at best, `doubt` what part of its figure is not known: then it proves nothing, and a stop stays a stop.
     """
 
     id: str
@@ -65,6 +66,8 @@ class Finding(Record):
     provenance: str
     power_at_margin: float | None = None
     power_at_limit: float | None = None
+    thin: bool = False
+    doubt: str | None = None
 
 
 class PowerCeiling(Record):
@@ -149,6 +152,7 @@ class FloorRecord(Record):
     """Distances for people on one floor; null for a direction that the loop does not have."""
 
     floor: float
+    any_bearing: DistanceRecord
     along_axis: DistanceRecord | None
     in_plane: DistanceRecord
     across: DistanceRecord | None

@@ -32,8 +32,8 @@ def farthest(found: Sequence[DistanceRecord | None]) -> str:
 
 
 def on_floors(found: DistancesRecord) -> list[DistanceRecord | None]:
-    """Return the distances for people on all floors."""
-    return [d for floor in found.on_floors for d in (floor.along_axis, floor.in_plane, floor.across)]
+    """Return the distances for people on all floors, at any bearing."""
+    return [floor.any_bearing for floor in found.on_floors]
 
 
 def distance_columns(point: OperatingPointRecord) -> tuple[str, ...]:
@@ -71,13 +71,19 @@ def place_text(place: PlaceRecord, exposure: ExposureRecord) -> str:
     field = place.electric if electric else place.magnetic
     limit = place.electric_limit if electric else place.magnetic_limit
     unit = FIELD_UNITS[place.set_by]
-    what = "a tune-up of " if place.when == "tuning" else ""
     who = f"{words.short(place.name)}, {exposure.rule} {exposure.who}"
-    return (
-        f"{who}: {place.set_by} {words.amount(field or 0.0, unit)} RMS "
-        f"of {words.amount(limit or 0.0, unit)}, {significant(100.0 * place.share_of_limit, 2)} % of the power at the "
-        f"limit; could bear {what}{words.power(place.power_ceiling or 0.0)}"
+    found = (
+        f"{who}: {place.set_by} {words.amount(field or 0.0, unit)} RMS of {words.amount(limit or 0.0, unit)}, "
+        f"{_share(place.share_of_limit)} the power at the limit"
     )
+    if place.power_ceiling is None:
+        return f"{found} by what is computed, but not proven"
+    what = "a tune-up of " if place.when == "tuning" else ""
+    return f"{found}; could bear {what}{words.power(place.power_ceiling)}"
+
+
+def _share(share: float) -> str:
+    return f"{significant(100.0 * share, 2)} % of" if share < 10.0 else f"{significant(share, 2)} times"
 
 
 def keepout_rows(point: KeepoutPoint) -> Iterator[tuple[str, ...]]:
@@ -91,7 +97,7 @@ def keepout_rows(point: KeepoutPoint) -> Iterator[tuple[str, ...]]:
         for floor, carrier in zip(found.on_floors, found.key_down.on_floors, strict=True):
             pairs += [
                 (f"floor {floor.floor:g} m, {name.replace('_', ' ')}", getattr(floor, name), getattr(carrier, name))
-                for name in ("along_axis", "in_plane", "across")
+                for name in ("any_bearing", "along_axis", "in_plane", "across")
             ]
         for label, averaged, carrier_distance in pairs:
             if averaged is not None:

@@ -50,6 +50,8 @@ def ceiling(sheet: Sheet, made: PowerCeiling) -> str:
         several = f" in {words.short(sheet.operating_points[made.transmission].name)}"
     if made.value == 0.0:
         return f"No power is clear: {made.held_by}{several} stops it at any power."
+    if made.held_by in made.left_out:
+        return f"No power is proven. More than {words.power(made.value)} is too much in any case, by {made.held_by}{several}."
     if made.complete:
         text = f"Clear up to {words.power(made.value)}; {first}"
     else:
@@ -74,6 +76,8 @@ def people_ceiling(sheet: KeepoutSheet) -> str:
         return "No highest power can be named for people: no place could be counted."
     if made.value == 0.0:
         return f"No power is clear for people: {made.held_by} stops it at any power."
+    if made.held_by in made.left_out:
+        return f"No power is proven for people. More than {words.power(made.value)} is too much in any case."
     most = "" if made.complete else "at most "
     where = sheet.operating_points[made.transmission].name
     return (

@@ -11,7 +11,7 @@ from rich.table import Table
 from rich.text import Text
 
 from magsafe import words
-from magsafe.checks.sheet import FigureRecord, KeepoutPoint, KeepoutSheet, OperatingPointRecord, Sheet, Verdict
+from magsafe.checks.sheet import ORDER, FigureRecord, KeepoutPoint, KeepoutSheet, OperatingPointRecord, Sheet, Verdict
 from magsafe.reports import people, telling
 from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
@@ -20,6 +20,7 @@ WIDEST = 100
 NARROWEST = 40
 _SAID = 13  # columns for shape and verdict word
 _LABEL = 27
+_TABLE = 76  # columns that the tables of distances need
 _ASIDE = 4  # transmissions beside each other in one table
 _PLAIN = str.maketrans(
     {
@@ -180,9 +181,9 @@ class _Speaker:
         yield from self.heading("People: places")
         for point in points:
             yield self.paragraph(_use(point))
-            for exposure in point.exposure:
-                for place in exposure.places:
-                    yield self.item(place.verdict, f"{people.place_text(place, exposure)}.")
+            places = [(place, exposure) for exposure in point.exposure for place in exposure.places]
+            for place, exposure in sorted(places, key=lambda each: ORDER.index(each[0].verdict)):
+                yield self.item(place.verdict, f"{people.place_text(place, exposure)}.")
         yield from self.heading("People: keep-out in metres from the loop's centre, averaged; last column key-down")
         for point in points:
             yield self.grid((words.short(point.name), *people.distance_columns(point)), people.distance_rows(point))
@@ -195,13 +196,19 @@ class _Speaker:
             yield self.paragraph(f"Not proven: {reason}.")
 
     def grid(self, head: Sequence[str], rows: Iterable[Sequence[str]]) -> RenderableType:
-        """Return a table of short cells, the first column to the left."""
+        """Return a table of short cells, the first column to the left; where it would not fit, a line for each row."""
+        listed = list(rows)
+        if self.width < _TABLE:
+            lines = [
+                ", ".join(f"{name} {cell}" for name, cell in zip(head[1:], row[1:], strict=True)) for row in listed
+            ]
+            return Group(*(self.paragraph(f"{row[0]}: {line}") for row, line in zip(listed, lines, strict=True)))
         table = Table(box=None, pad_edge=False, padding=(0, 0, 0, 1), show_edge=False)
         table.add_column(Text(self.letters(head[0])), width=_LABEL - 6)
         for name in head[1:]:
             words_in_it = name in ("direction", "set by")
             table.add_column(Text(self.letters(name)), justify="left" if words_in_it else "right", min_width=6)
-        for row in rows:
+        for row in listed:
             table.add_row(*(self.letters(cell) for cell in row))
         return Padding(table, (0, 0, 1, 0))
 
@@ -259,8 +266,12 @@ class _Speaker:
 
 def _title(told: telling.Told) -> str:
     where = f" ({', '.join(told.transmissions)})" if told.transmissions else ""
-    return f"{words.short(told.finding.id, 60)}{where}"
+    if told.finding.place is None:
+        return f"{told.finding.id}{where}"
+    rule = told.finding.id.rsplit(".", 1)[0]
+    return f"{rule}, {words.short(told.finding.place)}{where}"
 
 
 def _use(point: OperatingPointRecord | KeepoutPoint) -> str:
-    return f"{words.short(point.name)}, {words.frequency(point.frequency)}, {words.watts(point.power)} PEP"
+    parts = dict.fromkeys((words.short(point.name), words.frequency(point.frequency)))
+    return f"{', '.join(parts)}, {words.watts(point.power)} PEP"

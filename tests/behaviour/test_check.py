@@ -610,26 +610,25 @@ def test_the_ceiling_is_the_least_of_each_and_the_margin_decides_who_holds_it() 
     assert short.left_out == ("d",)
 
 
-def test_thin_evidence_is_named_only_where_nothing_else_makes_it_narrow() -> None:
-    """A limit from memory that keeps its margin; not one that lacks the margin, nor one that was read."""
-    made = ceiling(
-        [
-            counted("thin", "narrow", 50.0, 90.0, provenance="memory"),
-            counted("short", "narrow", 50.0, 90.0, provenance="memory", margin_found=1.2),
-            counted("read", "narrow", 50.0, 90.0, provenance="verified"),
-            counted("fine", "clear", 50.0, 90.0, provenance="memory"),
-        ],
-        0,
-    )
+def test_thin_evidence_is_named_and_counts_with_its_margin() -> None:
+    """A finding whose evidence lets it be narrow at best, whichever row of its rule binds."""
+    made = ceiling([counted("thin", "narrow", 50.0, 90.0, thin=True), counted("read", "narrow", 60.0, 90.0)], 0)
     assert made.on_thin_evidence == ("thin",)
+    assert made.value == 50.0
+
+
+def test_a_doubted_finding_holds_the_power_and_proves_nothing() -> None:
+    for verdict in ("stop", "unproven"):
+        made = ceiling([counted("near", verdict, 5.0, 9.0, doubt="metal"), counted("far", "clear", 50.0, 90.0)], 0)
+        assert (made.value, made.left_out, made.complete) == (5.0, ("near",), False)
 
 
 def test_the_least_ceiling_keeps_what_any_transmission_leaves_out() -> None:
-    low = ceiling([counted("a", "narrow", 10.0, 90.0, provenance="memory")], 0)
+    low = ceiling([counted("a", "narrow", 10.0, 90.0, thin=True)], 0)
     high = ceiling(
         [
             counted("a", "clear", 30.0, 50.0),
-            counted("b", "narrow", 40.0, 60.0, provenance="memory"),
+            counted("b", "narrow", 40.0, 60.0, thin=True),
             counted("d", "unproven", None, None),
         ],
         1,

@@ -10,6 +10,7 @@ from designs import MakeDesign, file_of, plain_tree
 import magsafe
 from magsafe.checks.keepout import keepout
 from magsafe.checks.sheet import Finding, PlaceRecord, Sheet
+from magsafe.reports import telling
 
 DESK = {"name": "operating desk", "who": "trained", "along_axis": "3 m", "posture": "sitting"}
 WALK = {"name": "Quay walk", "who": "public", "along_axis": "8 m"}
@@ -154,6 +155,57 @@ def test_a_tuning_place_without_a_tune_up_is_unproven_for_that_transmission(desi
     assert verdicts == ["clear", "unproven"]
 
 
+def test_a_power_held_by_doubt_is_told_as_an_upper_bound_only(design: MakeDesign) -> None:
+    site = {"ground": "average", "rules": ["us-fcc"], "metal_within": "0.5 m"}
+    ratings = {
+        "capacitor__rated_voltage": None,
+        "capacitor__rated_voltage_kind": None,
+        "capacitor__rated_current": None,
+    }
+    sheet = sheet_of(design, site=site, place=[WALK], **ratings)
+    assert telling.ceiling(sheet, sheet.power_ceiling).startswith("No power is proven. More than")
+    assert telling.people_ceiling(keepout(sheet)).startswith("No power is proven for people.")
+
+
+def test_only_tuning_places_leave_a_tier_unproven(design: MakeDesign) -> None:
+    use = {"frequency": "7.1 MHz", "power": "100 W", "tune_up": {"power": "5 W", "time": "60 s"}}
+    found = findings(sheet_of(design, place=[{**DESK, "when": "tuning"}], transmission__0=use))
+    assert found["exposure.us-fcc.trained"].verdict == "unproven"
+    assert "while tuning" in found["exposure.us-fcc.trained"].because
+
+
+def test_a_place_in_doubt_holds_the_same_power_whatever_its_verdict(design: MakeDesign) -> None:
+    close = {**WALK, "along_axis": "0.5 m"}
+
+    def ceiling(watts: str) -> tuple[float | None, bool, str]:
+        sheet = sheet_of(design, place=[close], transmission__0__power=watts)
+        assert place_of(sheet, "Quay walk").power_ceiling is None
+        made = sheet.power_ceiling
+        return made.value, made.complete, findings(sheet)["exposure.us-fcc.public.quay-walk"].verdict
+
+    (high, high_complete, high_verdict), (low, low_complete, low_verdict) = ceiling("1000 W"), ceiling("0.001 W")
+    assert (high_verdict, low_verdict) == ("stop", "unproven")
+    assert not high_complete
+    assert not low_complete
+    assert high == pytest.approx(low, rel=1e-9)
+
+
+def test_a_tune_up_that_alone_is_too_much_is_told_so(design: MakeDesign) -> None:
+    use = {"frequency": "7.1 MHz", "power": "100 W", "mode": "CW", "tune_up": {"power": "100 W", "time": "30 min"}}
+    near = {**WALK, "along_axis": "1.5 m"}
+    found = findings(sheet_of(design, place=[near], transmission__0=use))["exposure.us-fcc.public.quay-walk"]
+    assert found.verdict == "stop"
+    assert "tune_up, which alone" in found.do
+
+
+def test_unread_rows_that_do_not_bind_are_named_beside_the_ceiling(design: MakeDesign) -> None:
+    site = {"ground": "average", "rules": ["icnirp-2020"]}
+    sheet = sheet_of(design, site=site, place=[WALK], transmission__0={"frequency": "7.1 MHz", "power": "100 W"})
+    found = findings(sheet)["exposure.icnirp-2020.public.quay-walk"]
+    assert found.thin
+    assert found.id in sheet.power_ceiling.on_thin_evidence
+
+
 def test_a_fence_is_held_against_the_field_outside_it(design: MakeDesign) -> None:
     def verdict(metres: str) -> str:
         sheet = sheet_of(design, place=[{"name": "fence", "who": "public", "fence": metres}])
@@ -176,7 +228,7 @@ def test_distances_are_in_the_machine_form_as_the_contract_shows_them(design: Ma
     assert set(out["key_down"]) == directions
     assert set(out["any_direction"]) == {"distance", "set_by", "basis"}
     assert out["across"] is None
-    assert set(out["on_floors"][0]) == {"floor", "along_axis", "in_plane", "across"}
+    assert set(out["on_floors"][0]) == {"floor", "any_bearing", "along_axis", "in_plane", "across"}
     (place,) = exposure[1]["places"]
     assert set(place) >= {
         "name", "electric", "magnetic", "electric_limit", "magnetic_limit", "share_of_limit", "field_ratio", "set_by",

@@ -201,19 +201,23 @@ def test_near_the_bodies_the_electric_field_is_not_trusted() -> None:
 
 def test_the_contracts_example_of_judged_power() -> None:
     """93.3 W at the loop, SSB, 3 min on and 3 off: 23.3 W over half an hour, and the envelope where not averaged."""
-    use = Use(100.0, 0.5, Over(180.0, 180.0), 5.0, 20.0)
+    use = Use(100.0, 0.5, Over(180.0, 180.0), 0.0, 0.0)
     assert use.judged(1800.0, "always") * 0.933 == pytest.approx(23.3, abs=0.05)
     assert use.judged(0.0, "always") == 100.0
 
 
-def test_a_tune_up_counts_where_it_is_stronger_than_the_mode() -> None:
-    weak = Use(100.0, 0.4, Over(180.0, 180.0), 10.0, 60.0)
-    strong = Use(100.0, 0.4, Over(180.0, 180.0), 100.0, 60.0)
-    assert weak.judged(360.0, "always") == pytest.approx(20.0)
-    # 2 of 3 minutes at 40 %, 1 minute at 100 %, of 6 minutes.
-    assert strong.judged(360.0, "always") == pytest.approx((2.0 * 40.0 + 1.0 * 100.0) / 6.0)
-    assert strong.judged(360.0, "tuning") == pytest.approx(100.0 / 6.0)
-    assert strong.judged(0.0, "tuning") == 100.0
+def test_a_tune_up_adds_to_the_mean_of_its_window() -> None:
+    use = Use(100.0, 0.5, Over(60.0, 1740.0), 100.0, 60.0)
+    # 1 minute at 50 W and 1 minute at 100 W, of 6 and of 30 minutes.
+    assert use.judged(360.0, "always") == pytest.approx(25.0)
+    assert use.judged(1800.0, "always") == pytest.approx(5.0)
+    assert use.judged(360.0, "tuning") == pytest.approx(100.0 / 6.0)
+    assert use.judged(0.0, "tuning") == 100.0
+
+
+def test_a_tune_up_adds_no_more_than_there_is_time() -> None:
+    assert Use(100.0, 1.0, None, 50.0, 60.0).judged(360.0, "always") == pytest.approx(100.0)
+    assert Use(100.0, 0.4, None, 90.0, 600.0).judged(360.0, "always") == pytest.approx(90.0)
 
 
 PATTERNS: st.SearchStrategy[Pattern | None] = st.one_of(
@@ -317,6 +321,49 @@ def test_no_point_outside_a_keep_out_exceeds_the_limit_less_the_margin(sample: P
                     line[:, side] = distance.distance + rng.exponential(2.0, 2500)
                     line[:, 2] = floor.floor + rng.uniform(0.0, 2.0, 2500)
                     assert share(near, line, design, rule, who, carrier).max() < 1.0
+
+
+MEETING_THE_GROUND = [
+    # Loops whose distances end where the sphere about them meets the ground, and whose lobes are many.
+    {"loop__centre_height": "2.88 m", "loop__diameter": "2.5 m", "transmission__0__frequency": "3.426 MHz"},
+    {"loop__centre_height": "10.77 m", "loop__diameter": "0.46 m", "transmission__0__frequency": "30.687 MHz"},
+    {"loop__centre_height": "3 m", "loop__diameter": "2.4 m", "transmission__0__frequency": "3.113 MHz"},
+]
+
+
+@pytest.mark.parametrize("changes", MEETING_THE_GROUND, ids=["low", "lobes", "flat"])
+@pytest.mark.parametrize("watts", ["10 W", "30 W", "130 W", "850 W"])
+def test_near_the_ground_no_distance_stops_short(changes: dict[str, Any], watts: str) -> None:
+    plane = (
+        {"loop__plane": "horizontal"} if changes["loop__centre_height"] == "3 m" else {"capacitor__position": "bottom"}
+    )
+    design = plain_design(**changes, **plane, site__ground="average", transmission__0__power=watts)
+    found, source = distances_of(design, 0, "icnirp-2020", "public", carrier=True)
+    near = field_source(design, source.point, NEAR_PIECE)
+    rng = np.random.default_rng(17)
+    assert found.any_direction.distance is not None
+    turn = rng.uniform(0.0, 2.0 * pi, 4000)
+    away = np.sqrt(np.maximum(found.any_direction.distance**2 - near.height**2, 0.01)) + rng.exponential(0.5, 4000)
+    ground = np.stack([away * np.cos(turn), away * np.sin(turn), rng.uniform(0.0, 0.3, 4000)], axis=1)
+    outside = np.linalg.norm(ground - [0.0, 0.0, near.height], axis=1) > found.any_direction.distance
+    assert share(near, ground[outside], design, "icnirp-2020", "public", True).max() < 1.0
+    down = (found.below.distance or 0.0) + 1e-6
+    if down < near.height:
+        line = np.stack([np.zeros(500), np.zeros(500), np.linspace(0.0, near.height - down, 500)], axis=1)
+        assert share(near, line, design, "icnirp-2020", "public", True).max() < 1.0
+    for floor in found.on_floors:
+        assert floor.any_bearing.distance is not None
+        away = floor.any_bearing.distance + rng.exponential(1.0, 4000)
+        people = np.stack([away * np.cos(turn), away * np.sin(turn), rng.uniform(0.0, 2.0, 4000)], axis=1)
+        assert share(near, people, design, "icnirp-2020", "public", True).max() < 1.0
+
+
+def test_the_middle_of_a_columns_lowest_face_is_looked_at() -> None:
+    """A floor close above a flat loop: its strongest field is under the middle of the column."""
+    source = source_of(loop__plane="horizontal", loop__centre_height="3 m", site__ground="average")
+    (found,) = search(source, (place(in_plane="0 m", across="0 m", floor="3.55 m"),))
+    middle = source.strongest(np.array([[0.0, 0.0, 3.55]]))
+    assert found.magnetic >= float(middle.magnetic[0]) * (1.0 - 1e-9)
 
 
 def test_the_distance_is_not_much_longer_than_it_must_be() -> None:
