@@ -51,7 +51,8 @@ def ceiling(sheet: Sheet, made: PowerCeiling) -> str:
     if made.value == 0.0:
         return f"No power is clear: {made.held_by}{several} stops it at any power."
     if made.held_by in made.left_out:
-        return f"No power is proven. More than {words.power(made.value)} is too much in any case, by {made.held_by}{several}."
+        most = words.power(made.value)
+        return f"No power is proven. More than {most} is too much in any case, by {made.held_by}{several}."
     if made.complete:
         text = f"Clear up to {words.power(made.value)}; {first}"
     else:
