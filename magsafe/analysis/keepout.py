@@ -17,6 +17,7 @@ from magsafe.analysis.field_source import FieldSource, touch_distance
 from magsafe.physics.arrays import Array
 
 FARTHEST = 150.0  # m
+ELECTRIC_FOR_MAGNETIC = 377.0  # ohm: brings the two weights to one scale, no field is converted by it
 _PAD = 1.02
 _STEP = 0.1  # m, to which distances are rounded up
 _PEOPLE = (0.0, 0.5, 1.0, 1.5, 2.0)  # m above a floor
@@ -74,14 +75,21 @@ class Shells:
     to_ground: float
 
 
-def shells(source: FieldSource) -> Shells:
-    """Return the strongest fields about a source, from the touch distance to 150 m."""
+def shells(source: FieldSource, weight: float) -> Shells:
+    """Return the strongest fields about a source, from the touch distance to where nothing is reached any more.
+
+    Parameters
+    ----------
+    source : the loop as wires
+    weight : the largest `reach_weight` that will be asked for: the search goes no further out than it must
+    """
     nearest = touch_distance(source.line)
     # Over a plane, direct and mirrored field make lobes whose number grows with the height in wavelengths.
     lobes = 2.0 * pi * source.point.transmission.frequency / c * source.height if source.grounded else 0.0
-    count = min(20 + ceil(5.0 * max(0.0, lobes - 0.5)), 80)
-    distances = np.geomspace(nearest, FARTHEST, count)
-    if source.grounded and nearest < source.height < FARTHEST:
+    farthest = _bounded(source, lobes, weight)
+    steps = min(20 + ceil(5.0 * max(0.0, lobes - 0.5)), 80) / log(FARTHEST / nearest)
+    distances = np.geomspace(nearest, farthest, ceil(steps * log(farthest / nearest)) + 2)
+    if source.grounded and nearest < source.height < farthest:
         # Straight down the ground is a sample of its own: what lies further is not there.
         distances = np.sort(np.append(distances, source.height))
     count = len(distances)
@@ -103,6 +111,36 @@ def shells(source: FieldSource) -> Shells:
     ]
     to_ground = source.height if source.grounded else inf
     return Shells(distances, tops[0], tops[1], floors, source.bare_factor, to_ground)
+
+
+def _bounded(source: FieldSource, lobes: float, weight: float) -> float:
+    """Return a distance from which on all spheres that were tried stay below half of the power at the limit [m]."""
+    tried = np.geomspace(FARTHEST, touch_distance(source.line), 10)
+    points = _sphere(tried, source.height, lobes, _half_turn(source))
+    flat = points.reshape(-1, 3)
+    there = flat[:, 2] >= 0.0 if source.grounded else np.ones(len(flat), dtype=bool)
+    share = np.zeros(len(flat))
+    squares = source.strongest(flat[there])
+    share[there] = weight * np.maximum(squares.electric, squares.magnetic * ELECTRIC_FOR_MAGNETIC**2)
+    reached = np.flatnonzero(share.reshape(len(tried), -1).max(axis=1) >= 0.5)
+    first = int(reached[0]) if len(reached) else len(tried) - 1
+    return float(tried[max(0, first - 1)])
+
+
+def _half_turn(source: FieldSource) -> tuple[float, float]:
+    """Return the bearings that all others mirror [rad]."""
+    if source.design.loop.plane == "horizontal":
+        return 0.0, pi
+    return (0.0, pi / 2.0) if source.mirrors else (-pi / 2.0, pi / 2.0)
+
+
+def reach_weight(bases: tuple[Basis, ...], use: Use, at_loop: float, margin: float, bare_factor: float) -> float:
+    """Return the largest share of a limit less its margin for each unit of the electric square [m2/V2].
+
+    Magnetic limits are told as electric ones by `ELECTRIC_FOR_MAGNETIC`, for this comparison alone.
+    """
+    found = weights(bases, use, at_loop * margin**2 * bare_factor)
+    return max((max(e, h / ELECTRIC_FOR_MAGNETIC**2) for _, e, h in found), default=0.0)
 
 
 Family = Callable[[Array], Array]
@@ -146,7 +184,7 @@ def _families(source: FieldSource, floors: tuple[float, ...], lobes: float) -> d
 
         return points
 
-    half = (0.0, pi / 2.0) if source.mirrors else (-pi / 2.0, pi / 2.0) if vertical else (0.0, pi)
+    half = _half_turn(source)
     families: dict[str, Family] = {"any_direction": lambda d: _sphere(d, height, lobes, half)}
     families |= {name: any_height(turns) for name, turns in bearings.items()}
     families |= {"above": upright(1.0), "below": upright(-1.0)}

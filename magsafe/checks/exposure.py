@@ -1,12 +1,12 @@
 """Where may people be: each place under each rule, and silence is never clear."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import sqrt
 
 from magsafe.analysis.exposure import Basis, Use, bases, key_down, use_of
 from magsafe.analysis.field_source import FAR_PIECE, field_source
-from magsafe.analysis.keepout import Distances, Shells, keep_out, shells
+from magsafe.analysis.keepout import Distances, Shells, keep_out, reach_weight, shells
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.people import Strongest, at_places
 from magsafe.checks.judge import Check, judge, unproven
@@ -87,7 +87,16 @@ def _view(design: Design, point: OperatingPoint) -> _View:
     far = field_source(design, point, FAR_PIECE)
     found = at_places(design, point, tuple(design.place))
     strongest = {place.name: each for place, each in zip(design.place, found, strict=True)}
-    return _View(design, point, use, unknown, doubt, strongest, shells(far), far.bare_factor, far.likely_factor)
+    view = _View(design, point, use, unknown, doubt, strongest, None, far.bare_factor, far.likely_factor)
+    heaviest = max(
+        reach_weight(
+            bases(load_rule(name), who, point.transmission.frequency), each, view.at_loop, view.margin, far.bare_factor
+        )
+        for name in design.site.rules
+        for who in WHO
+        for each in (use, key_down(point.power))
+    )
+    return replace(view, around=shells(far, heaviest))
 
 
 def _unknown(design: Design, point: OperatingPoint) -> str:

@@ -13,7 +13,7 @@ from hypothesis import strategies as st
 import magsafe
 from magsafe.analysis.exposure import Use, bases, key_down, use_of
 from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, FieldSource, field_source, touch_distance
-from magsafe.analysis.keepout import Distances, keep_out, round_up, shells
+from magsafe.analysis.keepout import Distances, keep_out, reach_weight, round_up, shells
 from magsafe.analysis.operating_point import operating_point
 from magsafe.analysis.people import at_places, search
 from magsafe.design.model import Design, Place
@@ -277,7 +277,9 @@ def distances_of(
     use = key_down(point.power) if carrier else use_of(point.transmission)
     at_loop = factor * (point.power_at_loop.high or 0.0) / point.power
     vertical = design.loop.plane == "vertical"
-    return keep_out(shells(source), found, use, at_loop, design.margins.exposure_ratio, vertical), source
+    margin = design.margins.exposure_ratio
+    around = shells(source, reach_weight(found, use, at_loop, margin, source.bare_factor))
+    return keep_out(around, found, use, at_loop, margin, vertical), source
 
 
 def share(source: FieldSource, points: Any, design: Design, rule: str, who: str, carrier: bool) -> Any:
