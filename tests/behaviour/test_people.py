@@ -85,6 +85,16 @@ def test_at_its_ceiling_a_place_is_clear_and_above_it_is_not(design: MakeDesign)
     assert verdict(ceiling * 1.01) == "narrow"
 
 
+def test_what_a_place_could_bear_rests_on_no_typical_loss(design: MakeDesign) -> None:
+    """Sliding contacts by kind alone lower the field that is shown, and not the power that is allowed."""
+    contacts = [{"name": "brushes", "kind": "sliding contact", "count": 4, "at": "capacitor"}]
+    plain = place_of(sheet_of(design, place=[WALK]), "Quay walk")
+    typical = place_of(sheet_of(design, place=[WALK], loop__joint=contacts), "Quay walk")
+    assert (typical.share_of_limit or 0.0) < 0.8 * (plain.share_of_limit or 0.0)
+    # One factor serves free space and image, so it may allow a little less, never more.
+    assert 0.9 < (typical.power_ceiling or 0.0) / (plain.power_ceiling or 1.0) <= 1.0 + 1e-9
+
+
 def test_people_hold_the_power_ceiling(design: MakeDesign) -> None:
     near = {**WALK, "along_axis": "2 m"}
     sheet = sheet_of(design, place=[DESK, near], capacitor__rated_voltage="100 kV", capacitor__rated_current="1000 A")

@@ -15,8 +15,9 @@ from magsafe.analysis.exposure import Use, bases, key_down, use_of
 from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, FieldSource, field_source, touch_distance
 from magsafe.analysis.keepout import Distances, keep_out, reach_weight, round_up, shells
 from magsafe.analysis.operating_point import operating_point
-from magsafe.analysis.people import at_places, search
+from magsafe.analysis.people import _fence, at_places, search
 from magsafe.design.model import Design, Place
+from magsafe.physics import near_field
 from magsafe.rules.duty import OnAirShare, Over, Pattern
 from magsafe.rules.limit import WHO, load_rule
 
@@ -186,6 +187,27 @@ def test_far_places_in_coarse_pieces_say_the_same() -> None:
     for one, other in zip(together, search(source, places), strict=True):
         assert sqrt(one.magnetic) == pytest.approx(sqrt(other.magnetic), rel=3e-3)
         assert sqrt(one.electric) == pytest.approx(sqrt(other.electric), rel=6e-3)
+
+
+def test_between_the_points_of_a_fence_two_percent_of_field_are_added() -> None:
+    source = source_of(loop__centre_height="1.6 m", site__ground="average", capacitor__position="top")
+    fence = place(fence="3 m")
+    (found,) = search(source, (fence,))
+    looked_at = source.strongest(_fence(source, fence))
+    assert found.magnetic == pytest.approx(1.02**2 * float(looked_at.magnetic.max()))
+    assert found.electric == pytest.approx(1.02**2 * float(looked_at.electric.max()))
+
+
+def test_fields_are_widened_by_what_the_tapered_current_leaves_out() -> None:
+    source = source_of(transmission__0__frequency="14.2 MHz", capacitor__position="top")
+    (case,), (wire,) = source.point.ground_cases, source.wires
+    points = np.array([[2.0, 0.5, 0.3], [0.4, 3.0, -1.0]])
+    electric, magnetic = near_field.fields(points, wire, 14.2e6)
+    wider = case.square * (1.0 + source.point.field_error) ** 2
+    found = source.strongest(points)
+    np.testing.assert_allclose(found.electric, wider * near_field.magnitude(electric) ** 2)
+    np.testing.assert_allclose(found.magnetic, wider * near_field.magnitude(magnetic) ** 2)
+    assert source.point.field_error > 0.005
 
 
 def test_near_the_bodies_the_electric_field_is_not_trusted() -> None:
