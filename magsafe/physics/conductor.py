@@ -1,4 +1,4 @@
-"""Internal impedance of round conductors, and conductivity against temperature."""
+"""Internal impedance of round conductors, plated surfaces, and conductivity against temperature."""
 
 import numpy as np
 from scipy.constants import mu_0
@@ -76,6 +76,63 @@ def tube_impedance(frequency: Values, conductivity: Values, radius: Values, wall
     denominator = ive(1, outer) * kve(1, inner) - kve(1, outer) * ive(1, inner) * decay
     scale = propagation / (2.0 * np.pi * radius * conductivity)
     return np.asarray(scale * numerator / denominator)
+
+
+def plated_surface_impedance(
+    frequency: Values, layer_conductivity: Values, layer_thickness: Values, base_conductivity: Values
+) -> ComplexArray:
+    """Return the surface impedance of a flat thick metal under a layer of another.
+
+    Parameters
+    ----------
+    frequency : frequency [Hz], shape (...)
+    layer_conductivity : conductivity of the layer outside [S/m], broadcast
+    layer_thickness : thickness of the layer [m], 0 or more, broadcast
+    base_conductivity : conductivity of the metal under it [S/m], broadcast
+
+    Returns
+    -------
+    impedance [ohm]: tangential E over tangential H at the surface, broadcast shape
+
+    Valid     any ratio of layer to skin depth, base much thicker than its own; relative permeability 1 (not nickel).
+    Source    line analogue of a wave going through layers (Ramo, Whinnery & Van Duzer, memory).
+    """
+    propagation = (1.0 + 1.0j) / skin_depth(frequency, layer_conductivity)
+    layer = propagation / layer_conductivity
+    base = (1.0 + 1.0j) / (base_conductivity * skin_depth(frequency, base_conductivity))
+    # tanh written with a decaying exponential, which a thick layer turns into 0 and not into overflow.
+    through = -2.0 * propagation * layer_thickness
+    tanh = -np.expm1(through) / (1.0 + np.exp(through))
+    return np.asarray(layer * (base + layer * tanh) / (layer + base * tanh))
+
+
+def plated_impedance(
+    frequency: Values,
+    layer_conductivity: Values,
+    layer_thickness: Values,
+    base_conductivity: Values,
+    radius: Values,
+) -> ComplexArray:
+    """Return the internal impedance per metre of a plated round conductor, return current outside.
+
+    Parameters
+    ----------
+    frequency : frequency [Hz], shape (...)
+    layer_conductivity : conductivity of the layer outside [S/m], broadcast
+    layer_thickness : thickness of the layer [m], 0 or more, broadcast
+    base_conductivity : conductivity of the rod or thick-walled tube under it [S/m], broadcast
+    radius : outer radius with the layer [m], broadcast
+
+    Returns
+    -------
+    impedance [ohm/m], broadcast shape
+
+    Valid     layer and both skin depths much smaller than the radius: the surface is taken as flat, which leaves the
+              resistance low by about skin depth/(2 radius), 0.1 % for 22 mm of copper at 7 MHz.
+    Source    as `plated_surface_impedance`.
+    """
+    surface = plated_surface_impedance(frequency, layer_conductivity, layer_thickness, base_conductivity)
+    return np.asarray(surface / (2.0 * np.pi * radius))
 
 
 def conductivity_at(conductivity_20: Values, coefficient_20: Values, temperature: Values) -> Array:

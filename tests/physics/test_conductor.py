@@ -6,9 +6,16 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.constants import mu_0
 
-from magsafe.physics.conductor import conductivity_at, rod_impedance, skin_depth, tube_impedance
+from magsafe.physics.conductor import (
+    conductivity_at,
+    plated_impedance,
+    plated_surface_impedance,
+    rod_impedance,
+    skin_depth,
+    tube_impedance,
+)
 
-COPPER = 58e6
+COPPER, SILVER, TIN, BRASS = 58e6, 62e6, 8.7e6, 16.2e6
 
 
 def test_a_rod_at_low_frequency_is_its_cross_section() -> None:
@@ -84,3 +91,71 @@ def test_sixty_kelvin_on_copper_is_eleven_percent_of_resistance() -> None:
     warm = float(conductivity_at(58e6, 0.00393, 353.15))
     ratio = float(rod_impedance(7.1e6, warm, 0.011).real / rod_impedance(7.1e6, 58e6, 0.011).real)
     assert ratio == pytest.approx(1.11, abs=0.005)
+
+
+@pytest.mark.parametrize(
+    ("layer", "thickness", "base", "frequency", "change", "within"),
+    [
+        (TIN, 5e-6, COPPER, 7.1e6, 0.011, 0.001),
+        (TIN, 10e-6, COPPER, 28.5e6, 0.20, 0.005),
+        (SILVER, 5e-6, BRASS, 14.2e6, -0.19, 0.005),
+        (SILVER, 25e-6, BRASS, 14.2e6, -0.50, 0.02),
+    ],
+)
+def test_what_plating_changes(
+    layer: float, thickness: float, base: float, frequency: float, change: float, within: float
+) -> None:
+    """Worked cases of the reference notes, section 1 (two checkers)."""
+    plated = float(plated_impedance(frequency, layer, thickness, base, 0.011).real)
+    bare = float(plated_impedance(frequency, base, 0.0, base, 0.011).real)
+    assert plated / bare - 1.0 == pytest.approx(change, abs=within)
+
+
+def test_a_layer_against_its_differential_equation() -> None:
+    """Maxwell's equations in the layer, stepped outwards from the base, without exponentials."""
+    frequency, thickness = 14.2e6, 9e-6
+    omega = 2.0 * np.pi * frequency
+    # E/H looking inwards obeys dZ/dx = j omega mu0 - conductivity Z^2 from the base outwards.
+    impedance = complex((1.0 + 1.0j) / (BRASS * skin_depth(frequency, BRASS)))
+    steps = 2000
+    step = thickness / steps
+
+    def slope(z: complex) -> complex:
+        return 1.0j * omega * mu_0 - SILVER * z * z
+
+    for _ in range(steps):
+        first = slope(impedance)
+        second = slope(impedance + first * step / 2.0)
+        third = slope(impedance + second * step / 2.0)
+        fourth = slope(impedance + third * step)
+        impedance += step / 6.0 * (first + 2.0 * second + 2.0 * third + fourth)
+    found = complex(plated_surface_impedance(frequency, SILVER, thickness, BRASS))
+    assert found == pytest.approx(impedance, rel=1e-9)
+
+
+def test_without_a_layer_or_with_a_thick_one_only_one_metal_is_seen() -> None:
+    frequencies = np.array([1.8e6, 28.5e6])
+    surface = (1.0 + 1.0j) / (BRASS * skin_depth(frequencies, BRASS))
+    np.testing.assert_allclose(plated_surface_impedance(frequencies, SILVER, 0.0, BRASS), surface, rtol=1e-12)
+    thick = (1.0 + 1.0j) / (SILVER * skin_depth(frequencies, SILVER))
+    for thickness in (1e-3, 1.0, 1e6):
+        np.testing.assert_allclose(plated_surface_impedance(frequencies, SILVER, thickness, BRASS), thick, rtol=1e-12)
+    same = plated_surface_impedance(frequencies, BRASS, np.array([3e-6, 7e-6]), BRASS)
+    np.testing.assert_allclose(same, surface, rtol=1e-12)
+
+
+def test_a_plated_rod_is_a_rod_but_for_its_curvature() -> None:
+    """A layer of the same metal: the flat form is low by skin depth/(2 radius), as its docstring says."""
+    plated = float(plated_impedance(7.1e6, COPPER, 1e-5, COPPER, 0.011).real)
+    rod = float(rod_impedance(7.1e6, COPPER, 0.011).real)
+    assert rod / plated - 1.0 == pytest.approx(float(skin_depth(7.1e6, COPPER)) / 0.022, rel=0.01)
+
+
+@given(
+    layer=st.floats(1e5, 7e7), base=st.floats(1e5, 7e7), thickness=st.floats(0.0, 1.0), frequency=st.floats(1e3, 1e9)
+)
+def test_no_layer_overflows_or_gives_power(layer: float, base: float, thickness: float, frequency: float) -> None:
+    found = complex(plated_surface_impedance(frequency, layer, thickness, base))
+    assert np.isfinite(found)
+    assert found.real > 0.0
+    assert found.imag > 0.0

@@ -13,7 +13,7 @@ import pytest
 from scipy.constants import c, mu_0
 
 from magsafe.design import tables
-from magsafe.physics import conductor, ground, inductance, small_loop, tuned_circuit
+from magsafe.physics import conductor, ground, inductance, proximity, small_loop, strip, tuned_circuit
 
 Row = dict[str, Any]
 
@@ -62,6 +62,25 @@ def _slab(row: Row) -> float:
     radius = 2e6 * depth
     thin = conductor.tube_impedance(1e6, 58e6, radius, row["inputs"]["t_over_delta"] * depth)
     return float(thin.real) * 2.0 * np.pi * radius * 58e6 * depth
+
+
+def _plated(row: Row) -> float:
+    i = row["inputs"]
+    surface = conductor.plated_surface_impedance(i["f_Hz"], i["sigma_plate"], i["t_plate_m"], i["sigma_base"])
+    # The round conductor has the same, spread over its circumference.
+    round_one = conductor.plated_impedance(i["f_Hz"], i["sigma_plate"], i["t_plate_m"], i["sigma_base"], 0.5 / np.pi)
+    assert complex(round_one) == pytest.approx(complex(surface), rel=1e-12)
+    return float(surface.real)
+
+
+def _row(row: Row) -> float:
+    i = row["inputs"]
+    return proximity.row_proximity(i["N"], i["spacing_over_diameter"], 1.0).mean_loss_factor - 1.0
+
+
+def _go_and_return(row: Row) -> float:
+    places = np.array([[0.0, 0.0], [row["inputs"]["spacing_over_diameter"], 0.0]])
+    return proximity.proximity(places, 1.0, np.array([1.0, -1.0])).mean_loss_factor
 
 
 def _polygon(row: Row) -> float:
@@ -176,6 +195,10 @@ CALCULATIONS: dict[str, Callable[[Row], Any]] = {
     "round_": _round,
     "tube_R": _tube,
     "slab_min": _slab,
+    "strip_factor": lambda row: strip.crowding_factor(float(row["inputs"]["w_over_t"]), 1.0),
+    "prox_": _row,
+    "plated_": _plated,
+    "antiparallel_pair": _go_and_return,
     "polygon_phi": _polygon,
     "ring_dc": _ring,
     "circle_L_hf": _ring,
