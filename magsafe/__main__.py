@@ -31,6 +31,10 @@ def main() -> None:
     # of the validation library are other people's code, and looking for them takes time too.
     gc.disable()
     os.environ.setdefault("PYDANTIC_DISABLE_PLUGINS", "__all__")
+    # Matrices of a hundred unknowns gain nothing from more threads, and on a busy machine threads that wait for each
+    # other cost ten times the work.
+    for threads in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
+        os.environ.setdefault(threads, "1")
     from magsafe.cli.app import run  # noqa: PLC0415  (not needed for --version)
 
     debug = "--debug" in sys.argv

@@ -1,7 +1,12 @@
-"""Fixtures: makers of designs that are easy to vary."""
+"""Fixtures: makers of designs that are easy to vary. One thread for the linear algebra, as the command has."""
 
-import pytest
-from designs import MakeDesign, MakeTree, plain_design, plain_tree
+import os
+
+for _threads in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
+    os.environ.setdefault(_threads, "1")
+
+import pytest  # noqa: E402  (after what the linear algebra reads when it is loaded)
+from designs import MakeDesign, MakeTree, plain_design, plain_tree  # noqa: E402
 
 
 @pytest.fixture

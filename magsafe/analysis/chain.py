@@ -1,57 +1,51 @@
 """The resonant loop at one frequency, ready to be asked at the corner that each question needs.
 
-Which end of a loss is dangerous depends on what is asked, so no corner serves all. What the closed forms leave out, a
-capacitance across the port, runs through every answer as one excess of the reactance between 0 and its largest value,
-because most of it cancels.
+Which end of a loss is dangerous depends on what is asked, so no corner serves all. The current is solved; what stays
+open of it is the capacitance of the port's own gap, whose width no design tells. It runs through every answer as
+one excess of the reactance between two ends, because most of it cancels.
 """
 
-from collections.abc import Callable
-from dataclasses import dataclass
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass, replace
 from math import pi, sqrt
 
 from scipy.constants import c, mu_0
 
-from magsafe.analysis.losses import (
-    Bend,
-    Loss,
-    capacitor_loss,
-    conductor_loss,
-    impedance_per_metre,
-    joint_losses,
-)
-from magsafe.analysis.surroundings import Surroundings, surroundings
+from magsafe.analysis.flow import Flow, inductance
+from magsafe.analysis.losses import Corner, Loss, capacitor_loss, conductor_loss, joint_loss
+from magsafe.analysis.surroundings import State, Surroundings, surroundings
+from magsafe.analysis.wires import electrical_radius
 from magsafe.design.model import Design
-from magsafe.design.shape import Outline
-from magsafe.physics import inductance, small_loop, tuned_circuit
+from magsafe.design.shape import Outline, extent, outline
+from magsafe.physics import small_loop, tuned_circuit
 from magsafe.spread import Spread
 
-Question = Callable[[str, float, Bend, float], float]
+Question = Callable[[str, Corner, float], float]
 
-# Curvature of the conductor and the last digits of the closed forms, at any size.
+# Against the Fourier series of the circular loop and twice the segments (tests), with the conductor's curvature.
 RESISTANCE_ERROR = 0.005
-REACTANCE_ERROR = 0.002
-VOLTAGE_ERROR = 0.003
-QUALITY_ERROR = 0.005
+REACTANCE_ERROR = 0.005
+VOLTAGE_ERROR = 0.005
+QUALITY_ERROR = 0.007
+STUDY = "thin-wire method of moments, held against the Fourier series of the circular loop (computed)"
 
+CROWDED_SHARE = 0.2  # of what crowding takes from the inductance of turns: they are bent, and their currents differ
+LARGEST_SHARE = 0.5  # of the susceptance that cancels the reactance, which the gap's may be
 
-@dataclass(frozen=True, slots=True)
-class WithoutTaper:
-    """What the plain small-loop form would give, over the tapered one: how far it fails at this size."""
-
-    voltage: float
-    quality: float
-    efficiency: float
+# Capacitance across the port of a gap wider or narrower than the one computed [F, F/m of conductor diameter]: from
+# 20 mm and three conductor radii to 100 mm by the Fourier series, for loops of 0.5 to 3.4 m (computed).
+GAP_CAPACITANCE = (0.25e-12, 0.02e-12 / 1e-3)
 
 
 @dataclass(frozen=True, slots=True)
 class GroundCase:
-    """A field that may be: free space, or with the image in a perfect plane.
+    """A field that may be: the current that flows, and what the loop would draw with it.
 
     `square` is the square of the current that flows into the conductor at the port, RMS [A2], for each watt at the
     loop, at its dangerous end; `bare_square` the same without credit for typical losses; `likely_square` the likely.
     """
 
-    image: bool
+    flow: Flow
     square: float
     bare_square: float
     likely_square: float
@@ -61,37 +55,78 @@ class GroundCase:
 class Chain:
     """The resonant loop at one frequency, ready to be asked at any corner.
 
-    Questions are asked with (end, ratio, bend, power): which end of every loss, radiation plus ground resistance over
-    that of free space, bend of the reactance, power at the loop [W].
+    Questions are asked with (end, corner, power): which end of every loss, which state with which excess of its
+    reactance, power at the loop [W]. `corner_error` is the relative uncertainty of the inductance by sharp corners and
+    crowded turns.
     """
 
     frequency: float
     line: Outline
+    extent: float
     conductor_radius: float
-    x: float
-    excesses: tuple[float, float, float]
-    error: small_loop.ClosedFormError
-    corner: float
+    corner_error: float
     power: Spread
     overshoot: float
     inductance: float
-    reactance: float
-    radiation: float
+    gap_capacitance: float
+    tuned: bool
+    internal: float
     around: Surroundings
     conductor: Loss
     joints: tuple[Loss, ...]
     capacitor: Loss
 
-    @property
-    def bends(self) -> tuple[Bend, ...]:
-        """Every bend of the reactance that may be."""
-        most = self.around.image_share.high or 0.0
-        return tuple(Bend(excess, taken) for excess in self.excesses for taken in dict.fromkeys((0.0, most)))
+    def corners(self, states: Iterable[State]) -> tuple[Corner, ...]:
+        """Return states with every excess of the reactance that the port's gap leaves open."""
+        return tuple(
+            Corner(state, self._excess(state.flow, sign), self.internal)
+            for state in states
+            for sign in (-1.0, 0.0, 1.0)
+        )
+
+    def _excess(self, flow: Flow, sign: float) -> float:
+        if not self.tuned:
+            return 0.0
+        across = sign * 2.0 * pi * self.frequency * self.gap_capacitance * flow.reactance
+        return across / (1.0 - across)
 
     @property
-    def likely_bend(self) -> Bend:
-        """The likely bend: a perfect plane's image is there, soil's is left out."""
-        return Bend(0.0, self.around.image_share.likely or 0.0)
+    def gap_is_small(self) -> bool:
+        """Whether the gap's capacitance is a small part of what tunes the port, so that an excess can stand for it."""
+        susceptance = 2.0 * pi * self.frequency * self.gap_capacitance
+        states = (*self.around.least, *self.around.most)
+        return all(0.0 < state.flow.reactance * susceptance < LARGEST_SHARE for state in states)
+
+    @property
+    def least(self) -> tuple[Corner, ...]:
+        """The corners with the least resistance of radiation and ground."""
+        return self.corners(self.around.least)
+
+    @property
+    def most(self) -> tuple[Corner, ...]:
+        """The corners with the most; empty where soil adds an amount that is not computed."""
+        return self.corners(self.around.most)
+
+    @property
+    def every(self) -> tuple[Corner, ...]:
+        """All corners."""
+        return (*self.least, *self.most)
+
+    @property
+    def free(self) -> tuple[Corner, ...]:
+        """The corners in free space."""
+        return self.corners(State(each, each.radiation) for each in self.around.free)
+
+    @property
+    def likely(self) -> Corner:
+        """The likely corner."""
+        return Corner(self.around.likely, 0.0, self.internal)
+
+    @property
+    def likely_free(self) -> Corner:
+        """The likely corner in free space."""
+        first = self.around.free[0]
+        return Corner(State(first, first.radiation), 0.0, self.internal)
 
     @property
     def losses(self) -> tuple[Loss, ...]:
@@ -103,183 +138,157 @@ class Chain:
         """The rows of common practice that were used."""
         return tuple(dict.fromkeys(row for loss in self.losses for row in loss.typical))
 
-    @property
-    def growth(self) -> float:
-        """How much of the shape's error at 0.25 wavelengths applies at this size."""
-        return (self.x / (0.25 * pi)) ** 2
-
-    def resistance(self, end: str, ratio: float, bend: Bend) -> float:
+    def resistance(self, end: str, corner: Corner) -> float:
         """Return the total resistance with every loss at one end [ohm]."""
-        grown = ratio * self.radiation * (1.0 + bend.excess) ** 2
-        return grown + sum(loss.at(end, bend) for loss in self.losses)
+        return corner.radiated + sum(loss.at(end, corner) for loss in self.losses)
 
-    def voltage(self, end: str, ratio: float, bend: Bend, power: float) -> float:
+    def voltage(self, end: str, corner: Corner, power: float) -> float:
         """Return the crest of the voltage at the port, with the overshoot [V]."""
-        resistance, reactance = self.resistance(end, ratio, bend), self.reactance * bend.factor
-        return float(tuned_circuit.peak_voltage(power, resistance, reactance)) * self.overshoot
+        found = tuned_circuit.peak_voltage(power, self.resistance(end, corner), corner.reactance)
+        return float(found) * self.overshoot
 
-    def current(self, end: str, ratio: float, bend: Bend, power: float) -> float:
+    def current(self, end: str, corner: Corner, power: float) -> float:
         """Return the RMS current at the port [A]."""
-        return float(tuned_circuit.port_current(power, self.resistance(end, ratio, bend)))
+        return float(tuned_circuit.port_current(power, self.resistance(end, corner)))
 
-    def largest_current(self, end: str, ratio: float, bend: Bend, power: float) -> float:
-        """Return the RMS current opposite the port [A]."""
-        taper = float(small_loop.opposite_taper(self.x))
-        return self.current(end, ratio, bend, power) * (1.0 + bend.excess) * taper
+    def largest_current(self, end: str, corner: Corner, power: float) -> float:
+        """Return the largest RMS current anywhere on the conductor [A]."""
+        return self.current(end, corner, power) * sqrt(corner.growth) * corner.state.flow.largest
 
-    def quality(self, end: str, ratio: float, bend: Bend, power: float = 0.0) -> float:  # noqa: ARG002
+    def quality(self, end: str, corner: Corner, power: float = 0.0) -> float:  # noqa: ARG002
         """Return the unloaded Q, which no power changes."""
-        slope = float(small_loop.slope_taper(self.x)) * (1.0 + bend.excess) ** 2 * (1.0 - bend.taken)
-        return float(tuned_circuit.unloaded_q(self.resistance(end, ratio, bend), self.reactance, slope))
+        factor = corner.slope / (2.0 * abs(corner.reactance))
+        return float(tuned_circuit.unloaded_q(self.resistance(end, corner), corner.reactance, factor))
 
-    def efficiency(self, end: str, bend: Bend) -> float:
-        """Return radiation resistance over that and the losses, the ground left out."""
-        return self.radiation * (1.0 + bend.excess) ** 2 / self.resistance(end, 1.0, bend)
+    def efficiency(self, end: str, corner: Corner) -> float:
+        """Return radiation resistance over that and the losses, of a corner in free space."""
+        return corner.radiated / self.resistance(end, corner)
 
-    def capacitor_heat(self, own: str, others: str, ratio: float, power: float) -> Spread:
-        """Return the least and most heat in the capacitor [W], its own loss at one end, all others at another."""
+    def capacitor_heat(self, own: str, others: str, corner: Corner, power: float) -> float:
+        """Return the heat in the capacitor [W], its own loss at one end, all others at another."""
+        rest = self.resistance(others, corner) - self.capacitor.at(others, corner)
+        mine = self.capacitor.at(own, corner)
+        return power * mine / (rest + mine)
+
+    def terminals(self) -> list[complex]:
+        """Return the impedance of a loop that is fed as it is [ohm] at every corner.
+
+        A port of another width is a capacitance across it; the stated error of the reactance is one of frequency.
+        """
         found = []
-        for bend in self.bends:
-            rest = self.resistance(others, ratio, bend) - self.capacitor.at(others, bend)
-            mine = self.capacitor.at(own, bend)
-            found.append(power * mine / (rest + mine))
-        return Spread(min(found), None, max(found))
+        susceptance = 2.0 * pi * self.frequency * self.gap_capacitance
+        for corner in (*self.least, *self.most):
+            steep = REACTANCE_ERROR * (abs(corner.slope - corner.reactance) + abs(corner.reactance))
+            for end, error in (("low", -RESISTANCE_ERROR), ("high", RESISTANCE_ERROR)):
+                resistance = self.resistance(end, corner) * (1.0 + error)
+                for moved in (-steep, 0.0, steep):
+                    bare = complex(resistance, corner.reactance + moved)
+                    found += [bare / (1.0 + 1j * sign * susceptance * bare) for sign in (-1.0, 0.0, 1.0)]
+        return found
 
     def dangerous(self, ask: Question, end: str) -> float:
         """Return the high end of a question: losses at `end`, least resistance of any ground, most power."""
-        least, most = self.around.ratio.low or 0.0, self.power.high or 0.0
-        return max(ask(end, least, bend, most) for bend in self.bends)
+        return max(ask(end, corner, self.power.high or 0.0) for corner in self.least)
 
     def spread(self, ask: Question) -> Spread:
         """Return the spread of a question whose answer rises as the resistance falls."""
-        ratio, power = self.around.ratio, self.power
-        low = None
-        if ratio.high is not None:
-            low = min(ask("high", ratio.high, bend, power.low or 0.0) for bend in self.bends)
-        likely = ask("likely", ratio.likely or 0.0, self.likely_bend, power.likely or 0.0)
+        low = min((ask("high", corner, self.power.low or 0.0) for corner in self.most), default=None)
+        likely = ask("likely", self.likely, self.power.likely or 0.0)
         return Spread(low, likely, self.dangerous(ask, "low"))
 
-    def voltage_error(self) -> tuple[float, float]:
-        """Return how far the voltage may lie below and above the closed form, beside the excess."""
-        base = VOLTAGE_ERROR + self.corner
-        return (
-            base + self.error.voltage_below * self.growth,
-            base + self.error.voltage_above * self.growth,
-        )
+    @property
+    def voltage_error(self) -> float:
+        """How far the voltage may lie off, beside the excess [1]."""
+        return VOLTAGE_ERROR + self.corner_error
 
-    def current_error(self) -> tuple[float, float]:
-        """Return the same of the port current, which the inductance does not move."""
-        below, above = self.voltage_error()
-        return below - self.corner, above - self.corner
+    @property
+    def quality_error(self) -> float:
+        """The same of Q [1]."""
+        return QUALITY_ERROR + self.corner_error
 
-    def largest_current_error(self) -> tuple[float, float]:
-        """Return the same of the largest current, which the closed form never gives too low."""
-        return VOLTAGE_ERROR + self.error.largest_current_below * self.growth, VOLTAGE_ERROR
-
-    def quality_error(self) -> tuple[float, float]:
-        """Return the same of Q."""
-        base = QUALITY_ERROR + self.corner
-        return (
-            base + self.error.quality_below * self.growth,
-            base + self.error.quality_above * self.growth,
-        )
-
-    def resistance_error(self) -> tuple[float, float]:
-        """Return the same of a resistance along the loop."""
-        return RESISTANCE_ERROR, RESISTANCE_ERROR + self.error.efficiency_above * self.growth
+    @property
+    def reactance_error(self) -> float:
+        """The same of the reactance [1]: steep near the anti-resonance, it moves by more than the inductance."""
+        free = self.likely_free
+        steep = (free.slope / free.growth - free.reactance) / abs(free.reactance)
+        return (REACTANCE_ERROR + self.corner_error) * max(1.0, steep)
 
     def ground_cases(self) -> tuple[GroundCase, ...]:
         """Return the fields to compare, each with the current that it would draw."""
-        cases = [(False, self.around.ratio.low or 0.0)]
-        if self.around.image is not None:
-            cases.append((True, self.around.image))
+        likely = self.likely.growth / self.resistance("likely", self.likely)
         return tuple(
-            GroundCase(
-                image,
-                self._square("low", ratio),
-                self._square("bare", ratio),
-                1.0 / self.resistance("likely", self.around.ratio.likely or 0.0, self.likely_bend),
-            )
-            for image, ratio in cases
+            GroundCase(state.flow, self._square("low", state), self._square("bare", state), likely)
+            for state in self.around.fields
         )
 
-    def _square(self, end: str, ratio: float) -> float:
-        return max((1.0 + bend.excess) ** 2 / self.resistance(end, ratio, bend) for bend in self.bends)
-
-    def field_error(self) -> float:
-        """Return how far fields may lie above those of the tapered current: charge that it leaves out radiates."""
-        return VOLTAGE_ERROR + 0.5 * self.error.efficiency_above * self.growth
+    def _square(self, end: str, state: State) -> float:
+        return max(corner.growth / self.resistance(end, corner) for corner in self.corners([state]))
 
     def efficiency_spread(self) -> Spread:
         """Return the spread of the efficiency with the ground left out."""
-        likely = self.efficiency("likely", self.likely_bend)
-        least = min(self.efficiency("high", bend) for bend in self.bends)
-        most = max(self.efficiency("low", bend) for bend in self.bends)
-        below, above = self.resistance_error()
-        return Spread(min(likely, least) * (1.0 - below), likely, min(1.0, max(likely, most) * (1.0 + above)))
+        likely = self.efficiency("likely", self.likely_free)
+        least = min(self.efficiency("high", corner) for corner in self.free)
+        most = max(self.efficiency("low", corner) for corner in self.free)
+        return Spread(least * (1.0 - RESISTANCE_ERROR), likely, min(1.0, most * (1.0 + RESISTANCE_ERROR)))
 
     def bound_ratio(self) -> Spread:
         """Return Q over efficiency times the lower bound on Q, in free space."""
-        reach = self.line.reach + self.conductor_radius
+        reach = self.extent + self.conductor_radius
         bound = float(tuned_circuit.chu_bound(2.0 * pi * self.frequency / c * reach))
-        free = Bend(0.0, 0.0)
-        likely = self.quality("likely", 1.0, free) / (self.efficiency("likely", free) * bound)
-        below, above = self.quality_error()
-        return Spread.exact(likely).widened(below + self.resistance_error()[1], above)
-
-    def without_taper(self) -> WithoutTaper:
-        """Return the uniform-current chain over the tapered one, likely values."""
-        radiation = self.radiation / float(small_loop.radiation_taper(self.x))
-        reactance = self.reactance / float(small_loop.reactance_taper(self.x))
-        loss = self.conductor.likely / float(small_loop.loss_taper(self.x))
-        joints = sum(joint.likely for joint in self.joints)
-        resistance = radiation + loss + joints + self.capacitor.likely * reactance / self.reactance
-        free = Bend(0.0, 0.0)
-        tapered = self.resistance("likely", 1.0, free)
-        return WithoutTaper(
-            voltage=reactance / self.reactance * sqrt(tapered / resistance),
-            quality=reactance / resistance / self.quality("likely", 1.0, free),
-            efficiency=radiation / resistance / self.efficiency("likely", free),
-        )
+        likely = self.quality("likely", self.likely_free) / (self.efficiency("likely", self.likely_free) * bound)
+        return Spread.exact(likely).widened(self.quality_error + RESISTANCE_ERROR, self.quality_error)
 
 
 def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Chain:
-    """Return the chain of a design that the closed forms reach, at one frequency [Hz], fed with `power` [W]."""
-    loop, made_of = design.loop, design.loop.conductor
-    wavelength = c / frequency
-    x = pi * line.perimeter / wavelength
-    radius = (made_of.outer_diameter or 0.0) / 2.0
-    per_metre, internal = impedance_per_metre(made_of, frequency, design.site.air_temperature or made_of.temperature)
+    """Return the chain of a design that the solver reaches, at one frequency [Hz], fed with `power` [W]."""
+    made_of = design.loop.conductor
+    along, internal = conductor_loss(made_of, frequency, design.site.air_temperature or made_of.temperature)
+    around = surroundings(design, frequency)
+    # Where the capacitor sits there may be no conductor, which is the dangerous side for volts.
+    open_share = around.free[0].shape.gap / (line.perimeter * design.loop.turns)
+    along = replace(along, low=along.low * (1.0 - open_share), bare=along.bare * (1.0 - open_share))
+    external = inductance(design, frequency)
     omega = 2.0 * pi * frequency
-    if loop.shape == "circle":
-        external = float(inductance.circle_inductance(line.reach, radius))
-    else:
-        external = float(inductance.polygon_inductance(line.perimeter, loop.sides or 3, radius))
-    own = external + internal * line.perimeter / omega
-    reactance = omega * own * float(small_loop.reactance_taper(x))
-    around = surroundings(design, line, frequency, own)
-    radiation = small_loop.radiation_resistance(line.area, 1, wavelength)
-    error = small_loop.closed_form_error(None if loop.shape == "circle" else loop.sides)
-    capacitor = capacitor_loss(design.capacitor, reactance, frequency)
+    likely = Corner(around.likely, 0.0, internal)
+    radius = electrical_radius(made_of)
     return Chain(
         frequency=frequency,
         line=line,
+        extent=extent(design.loop),
         conductor_radius=radius,
-        x=x,
-        excesses=(
-            small_loop.shunt_excess(x, error.least_shunt),
-            0.0,
-            small_loop.shunt_excess(x, small_loop.largest_shunt(radius / line.mean_radius)),
-        ),
-        error=error,
-        corner=error.corner * mu_0 * radius / external,
+        corner_error=(corner_constant(design) * mu_0 * radius + crowded_inductance(design)) / external,
         power=power,
         overshoot=design.margins.overshoot_ratio,
-        inductance=own,
-        reactance=reactance,
-        radiation=float(radiation) * float(small_loop.radiation_taper(x)),
+        inductance=external + internal / omega * line.perimeter * design.loop.turns,
+        gap_capacitance=GAP_CAPACITANCE[0] + GAP_CAPACITANCE[1] * 2.0 * radius,
+        tuned=design.capacitor.kind != "none",
+        internal=internal,
         around=around,
-        conductor=conductor_loss(per_metre, line.perimeter, x),
-        joints=joint_losses(loop, x),
-        capacitor=capacitor,
+        conductor=along,
+        joints=tuple(joint_loss(joint) for joint in design.loop.joint),
+        capacitor=capacitor_loss(design.capacitor, frequency, abs(likely.reactance)),
     )
+
+
+def corner_constant(design: Design) -> float:
+    """Return the uncertainty of the inductance by sharp corners, in mu0 times the conductor radius.
+
+    Of an outline each corner counts as one of a triangle.
+    """
+    loop = design.loop
+    if loop.shape == "circle":
+        return 0.0
+    if loop.shape == "outline":
+        return small_loop.closed_form_error(3).corner / 3.0 * max(3, len(loop.points or []))
+    return small_loop.closed_form_error(4 if loop.shape == "rectangle" else loop.sides).corner * loop.turns
+
+
+def crowded_inductance(design: Design) -> float:
+    """Return how uncertain the inductance is because the current crowds on the turns, taken as parallel lines [H]."""
+    loop = design.loop
+    if loop.turns == 1:
+        return 0.0
+    from magsafe.physics.proximity import row_proximity  # noqa: PLC0415  (only for turns: slow to import)
+
+    found = row_proximity(loop.turns, loop.turn_spacing or 0.0, loop.conductor.outer_diameter or 0.0)
+    return CROWDED_SHARE * abs(found.mean_inductance_change) * outline(loop).perimeter * loop.turns

@@ -1,14 +1,19 @@
 """Figures: each a spread with its unit, its method and its source."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass, fields
 from math import pi
 
+import numpy as np
 from scipy.constants import c
 
-from magsafe.analysis.chain import REACTANCE_ERROR, Chain
+from magsafe.analysis.chain import REACTANCE_ERROR, RESISTANCE_ERROR, STUDY, VOLTAGE_ERROR, Chain, Question
+from magsafe.analysis.flow import nearest_resonance
+from magsafe.analysis.losses import Loss
 from magsafe.design.model import Design
 from magsafe.design.shape import Outline
 from magsafe.physics import small_loop, tuned_circuit
+from magsafe.physics.far_field import FarField
 from magsafe.spread import UNKNOWN, Spread
 
 
@@ -40,6 +45,8 @@ class Figures:
     tuning_capacitance: Figure
     conductor_efficiency: Figure
     overall_efficiency: Figure
+    directivity_along_axis: Figure
+    directivity_in_plane: Figure
     unloaded_q: Figure
     loaded_q: Figure
     half_power_bandwidth: Figure
@@ -50,9 +57,13 @@ class Figures:
     capacitor_dissipation: Figure
     conductor_temperature_rise: Figure
     coupling_loop_diameter: Figure
+    terminal_resistance: Figure
+    terminal_reactance: Figure
+    swr_at_50_ohm: Figure
+    nearest_resonance: Figure
 
 
-_LOOP_SOURCE = f"Foster 1944, Balanis (memory); taper held against Storer 1956 (memory); ends from a {small_loop.STUDY}"
+_LOOP_SOURCE = f"Harrington 1968 (memory); {STUDY}"
 _YAGHJIAN = "Yaghjian & Best 2005 (memory)"
 _SOIL = "the loss in the soil is not computed by this version"
 _NO_SOIL = f"{_SOIL}: it lowers this, so only the other end is known"
@@ -62,55 +73,142 @@ _SOIL_WIDENS = f"{_SOIL}: it widens this"
 
 
 def figures_of(chain: Chain, design: Design) -> Figures:
-    """Return all figures of a loop that the closed forms reach."""
-    lowers = _NO_SOIL if chain.around.ratio.high is None else ""
-    say = "; the likely value leaves the ground out" if chain.around.likely_is_free_space else ""
-    quality = chain.spread(chain.quality).widened(*chain.quality_error())
-    swr2 = float(tuned_circuit.swr_bandwidth_factor(2.0))
+    """Return all figures of a loop that the solver reaches."""
+    tuned = design.capacitor.kind != "none"
+    known = {
+        "perimeter_in_wavelengths": _size(chain.line, chain.frequency),
+        "thickness_parameter": _thickness(chain),
+        "radiation_resistance": _radiation(chain),
+        "conductor_resistance": _conductor(chain),
+        "joint_resistance": _joints(chain),
+        "ground_resistance": _ground(chain),
+        "total_resistance": _total(chain),
+        "port_reactance": _reactance(chain),
+        "inductance": _inductance(chain),
+        "conductor_efficiency": _efficiency(chain),
+        "overall_efficiency": _not_yet("1", "the power that leaves over real ground"),
+        "largest_current": _answer(
+            chain, chain.largest_current, VOLTAGE_ERROR, "A", "RMS, anywhere on the conductor", _LOOP_SOURCE
+        ),
+        "conductor_temperature_rise": _not_yet("K", "the heating of the conductor"),
+        "coupling_loop_diameter": _not_yet("m", "the coupling loop"),
+        **_directivities(chain),
+        **(_tuned(chain) if tuned else _terminals(chain, design)),
+    }
+    why = "for a full-wave loop, used without a capacitor" if tuned else "the loop has no capacitor that tunes it"
     return Figures(
-        perimeter_in_wavelengths=_size(chain.line, chain.frequency),
-        thickness_parameter=_thickness(chain),
-        radiation_resistance=_radiation(chain),
-        conductor_resistance=_conductor(chain),
-        joint_resistance=_joints(chain),
-        capacitor_resistance=_capacitor(chain),
-        ground_resistance=_ground(chain),
-        total_resistance=_total(chain, say),
-        port_reactance=_reactance(chain),
-        inductance=_inductance(chain, design),
-        tuning_capacitance=_capacitance(chain),
-        conductor_efficiency=_efficiency(chain),
-        overall_efficiency=_not_yet("1", "the power that leaves over real ground"),
-        unloaded_q=Figure(quality, "1", f"slope of the reactance of loop and capacitor{say}", _YAGHJIAN, lowers),
-        loaded_q=Figure(quality.scaled(0.5), "1", f"half of the unloaded Q{say}", _YAGHJIAN, lowers),
-        half_power_bandwidth=_bandwidth(chain, quality, 2.0, f"frequency over loaded Q{say}"),
-        swr2_bandwidth=_bandwidth(chain, quality, swr2, f"between the points of SWR 2, matched at resonance{say}"),
-        capacitor_peak_voltage=Figure(
-            chain.spread(chain.voltage).widened(*chain.voltage_error()),
+        **{f.name: known.get(f.name) or Figure(UNKNOWN, _unit(f.name), "none", "none", why) for f in fields(Figures)}
+    )
+
+
+def _tuned(chain: Chain) -> dict[str, Figure]:
+    """Return the figures of a loop that its capacitor tunes."""
+    quality = _answer(
+        chain, chain.quality, chain.quality_error, "1", "slope of the reactance of loop and capacitor", _YAGHJIAN
+    )
+    swr2 = float(tuned_circuit.swr_bandwidth_factor(2.0))
+    return {
+        "capacitor_resistance": _capacitor(chain),
+        "tuning_capacitance": _capacitance(chain),
+        "unloaded_q": quality,
+        "loaded_q": Figure(
+            quality.spread.scaled(0.5), "1", f"half of the unloaded Q{_say(chain)}", _YAGHJIAN, quality.why
+        ),
+        "half_power_bandwidth": _bandwidth(chain, quality.spread, 2.0, "frequency over loaded Q"),
+        "swr2_bandwidth": _bandwidth(chain, quality.spread, swr2, "between the points of SWR 2, matched at resonance"),
+        "capacitor_peak_voltage": _answer(
+            chain,
+            chain.voltage,
+            chain.voltage_error,
             "V",
             "crest of the RF at the crest of the envelope; its high end with the least resistance of free space, "
-            f"perfect image and any soil{say}",
+            "perfect image and any soil",
             _LOOP_SOURCE,
-            lowers,
         ),
-        capacitor_rms_current=Figure(
-            chain.spread(chain.current).widened(*chain.current_error()),
-            "A",
-            f"RMS over an RF cycle at the port{say}",
-            _LOOP_SOURCE,
-            lowers,
+        "capacitor_rms_current": _answer(
+            chain, chain.current, VOLTAGE_ERROR, "A", "RMS over an RF cycle at the port", _LOOP_SOURCE
         ),
-        largest_current=Figure(
-            chain.spread(chain.largest_current).widened(*chain.largest_current_error()),
-            "A",
-            f"RMS opposite the capacitor, where it is largest{say}",
-            _LOOP_SOURCE,
-            lowers,
-        ),
-        capacitor_dissipation=_dissipation(chain, lowers, say),
-        conductor_temperature_rise=_not_yet("K", "the heating of the conductor"),
-        coupling_loop_diameter=_not_yet("m", "the coupling loop"),
+        "capacitor_dissipation": _dissipation(chain),
+    }
+
+
+def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
+    """Return the figures of a loop that is fed as it is."""
+    every = chain.terminals()
+    likely = complex(chain.resistance("likely", chain.likely), chain.likely.reactance)
+    swr = [tuned_circuit.standing_wave_ratio(each, 50.0) for each in every]
+    resonance = nearest_resonance(design, chain.frequency)
+    open_end, say = not chain.most, _say(chain)
+    resistance = Spread(
+        min(each.real for each in every), likely.real, None if open_end else max(each.real for each in every)
     )
+    reactance = Spread(
+        min(each.imag for each in every) if chain.around.height_known else None,
+        likely.imag,
+        max(each.imag for each in every),
+    )
+    found = Spread(
+        None if open_end else min(swr),
+        tuned_circuit.standing_wave_ratio(likely, 50.0),
+        None if open_end else max(swr),
+    )
+    return {
+        "terminal_resistance": Figure(
+            resistance,
+            "ohm",
+            f"radiation, conductor and joints, seen through a port of any usual width{say}",
+            _LOOP_SOURCE,
+            _SOIL_ADDS if open_end else "",
+        ),
+        "terminal_reactance": Figure(
+            reactance, "ohm", f"of a port of any usual width{say}", _LOOP_SOURCE, _no_height(chain)
+        ),
+        "swr_at_50_ohm": Figure(
+            found,
+            "1",
+            f"of the terminal impedance on a line of 50 ohm, no match between{say}",
+            "definition",
+            _SOIL_WIDENS if open_end else "",
+        ),
+        "nearest_resonance": Figure(
+            UNKNOWN if resonance is None else Spread.exact(resonance).widened(REACTANCE_ERROR, REACTANCE_ERROR),
+            "Hz",
+            "where the reactance rises through zero, in free space",
+            _LOOP_SOURCE,
+            "none within half the frequency either way" if resonance is None else "",
+        ),
+    }
+
+
+def _answer(chain: Chain, ask: Question, error: float, unit: str, method: str, source: str) -> Figure:
+    """Return the figure of a question whose answer rises as the resistance falls."""
+    lowers = "" if chain.most else _NO_SOIL
+    return Figure(chain.spread(ask).widened(error, error), unit, f"{method}{_say(chain)}", source, lowers)
+
+
+def _say(chain: Chain) -> str:
+    return "" if chain.around.ground_known else "; the likely value leaves the ground out"
+
+
+def _no_height(chain: Chain) -> str:
+    return "" if chain.around.height_known else _NO_HEIGHT
+
+
+def _unit(name: str) -> str:
+    units = {
+        "inductance": "H",
+        "tuning_capacitance": "F",
+        "half_power_bandwidth": "Hz",
+        "swr2_bandwidth": "Hz",
+        "nearest_resonance": "Hz",
+        "capacitor_peak_voltage": "V",
+        "capacitor_rms_current": "A",
+        "largest_current": "A",
+        "capacitor_dissipation": "W",
+        "conductor_temperature_rise": "K",
+        "coupling_loop_diameter": "m",
+    }
+    return units.get(name, "ohm" if name.endswith(("_resistance", "_reactance")) else "1")
 
 
 def _not_yet(unit: str, what: str) -> Figure:
@@ -131,113 +229,97 @@ def _thickness(chain: Chain) -> Figure:
     return Figure(Spread.exact(value), "1", "2 ln(perimeter / conductor radius)", "Storer 1956 (memory)")
 
 
-def _along(chain: Chain, low: float, likely: float, high: float) -> Spread:
-    """Return the spread of a resistance along the loop over the excesses of the reactance."""
-    least, most = min(chain.excesses), max(chain.excesses)
-    found = Spread(low * (1.0 + least) ** 2, likely, high * (1.0 + most) ** 2)
-    return found.widened(*chain.resistance_error())
+def _part(chain: Chain, losses: Sequence[Loss], error: float, method: str, source: str) -> Figure:
+    """Return the resistance of some parts as the port sees it."""
+    found = Spread(
+        sum(min(loss.at("low", corner) for corner in chain.every) for loss in losses),
+        sum(loss.at("likely", chain.likely) for loss in losses),
+        sum(max(loss.at("high", corner) for corner in chain.every) for loss in losses),
+    )
+    return Figure(found.widened(error, error), "ohm", method, source)
 
 
 def _radiation(chain: Chain) -> Figure:
-    found = _along(chain, chain.radiation, chain.radiation, chain.radiation)
-    method = "one-port loop with its current tapered as a cosine, in free space"
-    return Figure(found, "ohm", method, _LOOP_SOURCE)
+    ends = [corner.radiated for corner in chain.free]
+    found = Spread(min(ends), chain.likely_free.radiated, max(ends)).widened(RESISTANCE_ERROR, RESISTANCE_ERROR)
+    return Figure(found, "ohm", "power radiated by the solved current, in free space", _LOOP_SOURCE)
 
 
 def _conductor(chain: Chain) -> Figure:
-    part = chain.conductor
-    return Figure(
-        _along(chain, part.low, part.likely, part.high),
-        "ohm",
-        "exact internal impedance of the round conductor, mean square of the tapered current; its high end has "
-        "10 % for roughness and oxide (common practice)",
-        "Schelkunoff 1934 (memory); material as listed",
+    return _part(
+        chain,
+        [chain.conductor],
+        RESISTANCE_ERROR,
+        "internal impedance of the conductor's form times the square of the solved current, each turn with its "
+        "proximity to the others; its high end has 10 % for roughness and oxide (common practice)",
+        "Schelkunoff 1934, Cockcroft 1929, G. S. Smith 1972 (memory); material as listed",
     )
 
 
 def _joints(chain: Chain) -> Figure:
-    found = Spread(
-        sum(min(joint.at("low", bend) for bend in chain.bends) for joint in chain.joints),
-        sum(joint.likely for joint in chain.joints),
-        sum(max(joint.at("high", bend) for bend in chain.bends) for joint in chain.joints),
-    )
-    method = "as stated or typical of the kind, weighted by the square of the current where each joint sits"
-    return Figure(found, "ohm", method, "the design; common practice")
+    method = "as stated or typical of the kind, times the square of the current where each joint sits"
+    return _part(chain, chain.joints, 0.0, method, "the design; common practice")
 
 
 def _capacitor(chain: Chain) -> Figure:
-    part = chain.capacitor
-    found = Spread(
-        min(part.at("low", bend) for bend in chain.bends),
-        part.at("likely", chain.likely_bend),
-        max(part.at("high", bend) for bend in chain.bends),
-    )
     method = "as stated, or reactance over Q; typical of the kind where not stated"
-    return Figure(found, "ohm", method, "the design; common practice")
+    return _part(chain, [chain.capacitor], 0.0, method, "the design; common practice")
 
 
 def _ground(chain: Chain) -> Figure:
-    ratio = chain.around.perfect
-    if ratio is None:
+    if not chain.around.ground_known:
         return _not_yet("ohm", "the loss in real ground")
-    value = (ratio - 1.0) * chain.radiation
-    least, most = min(chain.excesses), max(chain.excesses)
-    ends = sorted((value * (1.0 + least) ** 2, value * (1.0 + most) ** 2))
-    found = Spread(ends[0], value, ends[1]).widened(*chain.resistance_error())
-    source = "Wait, Electromagnetic Waves in Stratified Media (memory)"
-    return Figure(found, "ohm", "image of a point dipole in a perfect plane; 0 in free space", source)
+    states = zip(chain.around.free, chain.around.stated, strict=True)
+    added = chain.around.likely.radiated - chain.around.free[0].radiation
+    ends = [
+        (corner.state.radiated - alone.radiation) * corner.growth
+        for alone, state in states
+        for corner in chain.corners([state])
+    ]
+    error = RESISTANCE_ERROR * chain.around.likely.radiated if added else 0.0
+    found = Spread(min(ends) - error, added, max(ends) + error)
+    method = "the loop with its image in a perfect plane, solved, less the loop alone; 0 in free space"
+    return Figure(found, "ohm", method, _LOOP_SOURCE)
 
 
-def _total(chain: Chain, say: str) -> Figure:
-    ratio, highest = chain.around.ratio, None
-    if ratio.high is not None:
-        highest = max(chain.resistance("high", ratio.high, bend) for bend in chain.bends)
+def _total(chain: Chain) -> Figure:
     found = Spread(
-        min(chain.resistance("low", ratio.low or 0.0, bend) for bend in chain.bends),
-        chain.resistance("likely", ratio.likely or 0.0, chain.likely_bend),
-        highest,
-    ).widened(*chain.resistance_error())
-    method = f"sum of all, its low end with the least of free space, perfect image and any soil{say}"
-    return Figure(found, "ohm", method, _LOOP_SOURCE, _SOIL_ADDS if highest is None else "")
+        min(chain.resistance("low", corner) for corner in chain.least),
+        chain.resistance("likely", chain.likely),
+        max((chain.resistance("high", corner) for corner in chain.most), default=None),
+    ).widened(RESISTANCE_ERROR, RESISTANCE_ERROR)
+    method = f"sum of all, its low end with the least of free space, perfect image and any soil{_say(chain)}"
+    return Figure(found, "ohm", method, _LOOP_SOURCE, "" if chain.most else _SOIL_ADDS)
 
 
 def _reactance_ends(chain: Chain) -> Spread:
-    """Return the port reactance [ohm]; the image may lower it, the charge's capacitance raise it."""
-    factors = [bend.factor for bend in chain.bends]
-    least = None if chain.around.image_share.high is None else chain.reactance * min(factors)
-    error = REACTANCE_ERROR + chain.corner
-    found = Spread(least, chain.reactance * chain.likely_bend.factor, chain.reactance * max(factors))
-    return found.widened(error, error)
+    """Return the port reactance [ohm]; a plane may lower it, the port's gap move it either way."""
+    ends = [corner.reactance for corner in chain.every]
+    least = min(ends) if chain.around.height_known else None
+    return Spread(least, chain.likely.reactance, max(ends)).widened(chain.reactance_error, chain.reactance_error)
 
 
 def _reactance(chain: Chain) -> Figure:
-    found = _reactance_ends(chain)
     return Figure(
-        found,
+        _reactance_ends(chain),
         "ohm",
-        "omega L tan(x)/x; its high end with a capacitance across the port, its low end with the ground's image",
+        "of the solved current, internal part included; its ends with a port of other width, and with or without "
+        "what is below",
         _LOOP_SOURCE,
-        _NO_HEIGHT if found.low is None else "",
+        _no_height(chain),
     )
 
 
-def _inductance(chain: Chain, design: Design) -> Figure:
-    round_loop = design.loop.shape == "circle"
-    error = REACTANCE_ERROR + chain.corner
-    return Figure(
-        Spread.exact(chain.inductance).widened(error, error),
-        "H",
-        "low frequency, in free space, internal part included",
-        "Rosa & Grover, NBS Scientific Paper 169 (memory)" if round_loop else "Grover 1946, ch. 8 (memory)",
-    )
+def _inductance(chain: Chain) -> Figure:
+    found = Spread.exact(chain.inductance).widened(chain.reactance_error, chain.reactance_error)
+    return Figure(found, "H", "low frequency, in free space, internal part included", _LOOP_SOURCE)
 
 
 def _capacitance(chain: Chain) -> Figure:
     reactance, omega = _reactance_ends(chain), 2.0 * pi * chain.frequency
     falling = (reactance.high, reactance.likely, reactance.low)
     ends = [None if end is None else 1.0 / (omega * end) for end in falling]
-    why = _NO_HEIGHT if ends[2] is None else ""
-    return Figure(Spread(*ends), "F", "cancels the port reactance; strays included", "resonance", why)
+    return Figure(Spread(*ends), "F", "cancels the port reactance; strays included", "resonance", _no_height(chain))
 
 
 def _efficiency(chain: Chain) -> Figure:
@@ -245,56 +327,48 @@ def _efficiency(chain: Chain) -> Figure:
     return Figure(chain.efficiency_spread(), "1", method, _LOOP_SOURCE)
 
 
+def _directivities(chain: Chain) -> dict[str, Figure]:
+    """Return the directivity along the loop's axis, and the largest in its plane, in free space."""
+    flow = chain.around.free[0]
+    far = FarField.of(flow.segments(), chain.frequency)
+    axis = np.array([1.0, 0.0, 0.0] if flow.shape.upright else [0.0, 0.0, 1.0])
+    both = [far.directivity_along(axis), far.directivity_along(-axis)]
+    found = {"directivity_along_axis": max(both), "directivity_in_plane": far.largest_directivity_across(axis)[0]}
+    said = {"directivity_along_axis": "along the axis, the larger side", "directivity_in_plane": "largest in the plane"}
+    return {
+        name: Figure(
+            Spread.exact(value).widened(RESISTANCE_ERROR, RESISTANCE_ERROR),
+            "1",
+            f"over a source that radiates evenly, {said[name]}, in free space",
+            "radiation integral of the solved current: Balanis, Antenna Theory, ch. 3 (memory)",
+        )
+        for name, value in found.items()
+    }
+
+
 def _bandwidth(chain: Chain, quality: Spread, factor: float, method: str) -> Figure:
     falling = (quality.high, quality.likely, quality.low)
     ends = [None if q is None else factor * chain.frequency / q for q in falling]
-    why = _SOIL_WIDENS if ends[2] is None else ""
-    return Figure(Spread(*ends), "Hz", method, _YAGHJIAN, why)
+    why = "" if chain.most else _SOIL_WIDENS
+    return Figure(Spread(*ends), "Hz", f"{method}{_say(chain)}", _YAGHJIAN, why)
 
 
-def _dissipation(chain: Chain, lowers: str, say: str) -> Figure:
-    ratio, power = chain.around.ratio, chain.power
-    low = None
-    if ratio.high is not None:
-        low = chain.capacitor_heat("low", "high", ratio.high, power.low or 0.0).low
-    bend = chain.likely_bend
-    part = chain.capacitor.at("likely", bend) / chain.resistance("likely", ratio.likely or 0.0, bend)
-    likely = part * (power.likely or 0.0)
-    high = chain.capacitor_heat("high", "low", ratio.low or 0.0, power.high or 0.0).high
-    error = [2.0 * end for end in chain.current_error()]
+def _dissipation(chain: Chain) -> Figure:
+    power = chain.power
+    low = min((chain.capacitor_heat("low", "high", corner, power.low or 0.0) for corner in chain.most), default=None)
+    likely = chain.capacitor_heat("likely", "likely", chain.likely, power.likely or 0.0)
+    high = max(chain.capacitor_heat("high", "low", corner, power.high or 0.0) for corner in chain.least)
     return Figure(
-        Spread(low, likely, high).widened(*error),
+        Spread(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR),
         "W",
-        f"key-down; its high end with its own loss high and every other low{say}",
+        f"key-down; its high end with its own loss high and every other low{_say(chain)}",
         _LOOP_SOURCE,
-        lowers,
+        "" if chain.most else _NO_SOIL,
     )
 
 
 def unknown_figures(line: Outline, frequency: float, reasons: tuple[str, ...]) -> Figures:
-    """Return figures without values, with the reasons why the closed forms do not reach this loop."""
-    units = {
-        "inductance": "H",
-        "tuning_capacitance": "F",
-        "half_power_bandwidth": "Hz",
-        "swr2_bandwidth": "Hz",
-        "capacitor_peak_voltage": "V",
-        "capacitor_rms_current": "A",
-        "largest_current": "A",
-        "capacitor_dissipation": "W",
-        "conductor_temperature_rise": "K",
-        "coupling_loop_diameter": "m",
-        "port_reactance": "ohm",
-    }
+    """Return figures without values, with the reasons why nothing is computed of this loop."""
     why = "; ".join(reasons)
-    unknown = {
-        f.name: Figure(
-            UNKNOWN,
-            units.get(f.name, "ohm" if f.name.endswith("_resistance") else "1"),
-            "none",
-            "none",
-            why,
-        )
-        for f in fields(Figures)
-    }
+    unknown = {f.name: Figure(UNKNOWN, _unit(f.name), "none", "none", why) for f in fields(Figures)}
     return Figures(**{**unknown, "perimeter_in_wavelengths": _size(line, frequency)})

@@ -83,7 +83,7 @@ def shells(source: FieldSource, weight: float) -> Shells:
     source : the loop as wires
     weight : the largest `reach_weight` that will be asked for: the search goes no further out than it must
     """
-    nearest = touch_distance(source.line)
+    nearest = touch_distance(source.design.loop)
     # Over a plane, direct and mirrored field make lobes whose number grows with the height in wavelengths.
     lobes = 2.0 * pi * source.point.transmission.frequency / c * source.height if source.grounded else 0.0
     farthest = _bounded(source, lobes, weight)
@@ -115,7 +115,7 @@ def shells(source: FieldSource, weight: float) -> Shells:
 
 def _bounded(source: FieldSource, lobes: float, weight: float) -> float:
     """Return a distance from which on all spheres that were tried stay below half of the power at the limit [m]."""
-    tried = np.geomspace(FARTHEST, touch_distance(source.line), 10)
+    tried = np.geomspace(FARTHEST, touch_distance(source.design.loop), 10)
     points = _sphere(tried, source.height, lobes, _half_turn(source))
     flat = points.reshape(-1, 3)
     there = flat[:, 2] >= 0.0 if source.grounded else np.ones(len(flat), dtype=bool)

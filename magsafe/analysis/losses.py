@@ -1,55 +1,89 @@
 """Resistances of the loop's parts, each with the ends that different questions need."""
 
 from dataclasses import dataclass
+from typing import Literal
 
 import numpy as np
 
+from magsafe.analysis.surroundings import State
 from magsafe.design import tables
-from magsafe.design.model import Capacitor, Conductor, Joint, Loop
+from magsafe.design.model import Capacitor, Conductor, Joint, Plating
 from magsafe.design.quantities import Uncertain
-from magsafe.physics import conductor, small_loop
+from magsafe.physics import conductor
+from magsafe.physics.arrays import Array, ComplexArray
 from magsafe.spread import Spread
 
 COPPER_COEFFICIENT = 0.0039  # 1/K, of a conductivity that is stated without its metal (common practice)
 
+Where = Literal["conductor", "spread", "opposite", "port", "capacitor"]
+
 
 @dataclass(frozen=True, slots=True)
-class Bend:
-    """How the port reactance differs from the closed form in free space.
+class Corner:
+    """A state of the loop with a capacitance across its port: `excess` is by how much it raises the reactance [1]."""
 
-    `excess` is raised by a capacitance across the port, `taken` is the share that the ground's image takes away.
-    """
-
+    state: State
     excess: float
-    taken: float
+    internal: float
 
     @property
-    def factor(self) -> float:
-        """The reactance over that of the closed form in free space."""
-        return (1.0 + self.excess) * (1.0 - self.taken)
+    def reactance(self) -> float:
+        """Reactance of the loop at the port, internal part included [ohm]."""
+        flow = self.state.flow
+        return (flow.reactance + self.internal * flow.internal_length) * (1.0 + self.excess)
+
+    @property
+    def radiated(self) -> float:
+        """Resistance of radiation and ground [ohm]."""
+        return self.state.radiated * self.growth
+
+    @property
+    def growth(self) -> float:
+        """Square of the current into the conductor over that at the port."""
+        return (1.0 + self.excess) ** 2
+
+    @property
+    def slope(self) -> float:
+        """Derivative of the reactance by the frequency, times it, and the reactance [ohm].
+
+        Of the internal reactance, which goes as the root of the frequency by the skin depth, half counts.
+        """
+        flow = self.state.flow
+        inner = self.internal * flow.internal_length
+        return (flow.slope + flow.reactance + 1.5 * inner) * self.growth
+
+    def weight(self, where: Where) -> float:
+        """Return by what a part's own value is multiplied to be seen at the port."""
+        flow = self.state.flow
+        along = {
+            "conductor": flow.conductor_length,
+            "spread": flow.mean_square,
+            "opposite": flow.opposite_square,
+        }
+        if where in along:
+            return along[where] * self.growth
+        return 1.0 if where == "port" else abs(self.reactance)
 
 
 @dataclass(frozen=True, slots=True)
 class Loss:
-    """The resistance of one part, referred to the port current [ohm].
+    """The loss of one part by its own values: ohm, ohm per metre of the conductor, or 1/Q of the capacitor.
 
     `low` may rest on what is typical of a kind; `bare` is the low end that rests on stated values alone, zero
-    where nothing is stated. `grows` tells how it follows the reactance's bend: 2, by the square of the excess, along
-    the conductor; 1, as the reactance, for a capacitor of given Q; 0, not at all, at the port. `typical` names the rows
-    of common practice used.
+    where nothing is stated. `where` tells how the port sees it. `typical` names the rows of common practice used.
     """
 
     low: float
     bare: float
     likely: float
     high: float
-    grows: int
+    where: Where
     typical: tuple[str, ...] = ()
 
-    def at(self, end: str, bend: Bend) -> float:
-        """Return the resistance at one end, as the port sees it with a bend of the reactance."""
+    def at(self, end: str, corner: Corner) -> float:
+        """Return the resistance at one end, as the port sees it at a corner [ohm]."""
         value: float = getattr(self, end)
-        return value * (1.0, bend.factor, (1.0 + bend.excess) ** 2)[self.grows]
+        return value * corner.weight(self.where)
 
 
 def conductivity(made_of: Conductor, coldest: float) -> Spread:
@@ -67,29 +101,57 @@ def conductivity(made_of: Conductor, coldest: float) -> Spread:
     return Spread(warm * (1.0 - scatter), warm, cold * (1.0 + scatter))
 
 
-def impedance_per_metre(made_of: Conductor, frequency: float, coldest: float) -> tuple[Spread, float]:
-    """Return resistance [ohm/m] with its spread, and internal reactance [ohm/m], of a rod or tube."""
+def conductor_loss(made_of: Conductor, frequency: float, coldest: float) -> tuple[Loss, float]:
+    """Return the conductor's loss [ohm/m] with its ends, and its internal reactance [ohm/m]."""
     sigma = conductivity(made_of, coldest)
     # Resistance falls steadily with conductivity, also where the wall is thin.
     tried = np.array([sigma.high, sigma.likely, sigma.low], dtype=np.float64)
-    radius = (made_of.outer_diameter or 0.0) / 2.0
-    if made_of.form == "rod":
-        impedance = conductor.rod_impedance(frequency, tried, radius)
-    else:
-        impedance = conductor.tube_impedance(frequency, tried, radius, made_of.wall or 0.0)
-    rough = tables.roughness_share()
-    low, likely, high = (float(each) for each in impedance.real)
-    resistance = Spread(
-        low * (1.0 + (rough.low or 0.0)), likely * (1.0 + (rough.likely or 0.0)), high * (1.0 + (rough.high or 0.0))
+    impedance, error = _impedance(made_of, frequency, tried, coldest)
+    rough, kind = tables.roughness_share(), tables.conductor_factor(made_of.form)
+    smooth = impedance.real * np.array([1.0 - error, 1.0, 1.0 + error])
+    low, likely, high = (
+        float(value) * (1.0 + (share or 0.0)) * (factor or 1.0)
+        for value, share, factor in zip(
+            smooth, (rough.low, rough.likely, rough.high), (kind.low, kind.likely, kind.high), strict=True
+        )
     )
-    return resistance, float(impedance.imag[1])
+    rows = (f"conductor, {made_of.form}",) if kind.high != 1.0 else ()
+    return Loss(low, float(smooth[0]), likely, high, "conductor", rows), float(impedance.imag[1])
 
 
-def conductor_loss(per_metre: Spread, perimeter: float, x: float) -> Loss:
-    """Return the loss of the conductor from its resistance per metre [ohm/m]."""
-    factor = perimeter * float(small_loop.loss_taper(x))
-    low = (per_metre.low or 0.0) * factor
-    return Loss(low, low, (per_metre.likely or 0.0) * factor, (per_metre.high or 0.0) * factor, grows=2)
+def _impedance(made_of: Conductor, frequency: float, sigma: Array, coldest: float) -> tuple[ComplexArray, float]:
+    """Return impedance per metre of a smooth conductor [ohm/m] for each conductivity, (3,), and its relative error."""
+    radius = (made_of.outer_diameter or 0.0) / 2.0
+    if made_of.form == "strip":
+        from magsafe.physics import strip  # noqa: PLC0415  (it brings a root finder, which is slow to import)
+
+        found = [
+            strip.strip_impedance(frequency, float(each), made_of.width or 0.0, made_of.thickness or 0.0)
+            for each in sigma
+        ]
+        impedance = np.array([each.impedance for each in found])
+        error = max(max(each.below, each.above) for each in found)
+    elif made_of.form == "tube":
+        impedance, error = conductor.tube_impedance(frequency, sigma, radius, made_of.wall or 0.0), 0.0
+    else:
+        impedance, error = conductor.rod_impedance(frequency, sigma, radius), 0.0
+    if made_of.plating is None:
+        return impedance, error
+    layer = plating_conductivity(made_of.plating, made_of.temperature, coldest)[:, None]
+    plated = conductor.plated_surface_impedance(frequency, layer, made_of.plating.thickness, sigma)
+    bare = (1.0 + 1.0j) / (sigma * conductor.skin_depth(frequency, sigma))
+    # A poorer layer may raise the loss or let the current through to the base: every pair of ends is tried.
+    every = impedance * plated.real / bare.real
+    ends = [every.flat[np.argmin(every.real)], every[1, 1], every.flat[np.argmax(every.real)]]
+    return np.array(ends), error
+
+
+def plating_conductivity(plating: Plating, temperature: float, coldest: float) -> Array:
+    """Return high, likely and low conductivity of the plating [S/m], shape (3,)."""
+    row = tables.materials()[plating.material]
+    warm = float(conductor.conductivity_at(row.conductivity, row.coefficient, temperature))
+    cold = float(conductor.conductivity_at(row.conductivity, row.coefficient, min(coldest, temperature)))
+    return np.array([cold * (1.0 + row.scatter), warm, warm * (1.0 - row.scatter)])
 
 
 def stated_ends(stated: Uncertain | None, typical: Spread | None) -> tuple[float, float, float, float]:
@@ -107,55 +169,47 @@ def stated_ends(stated: Uncertain | None, typical: Spread | None) -> tuple[float
     return stated.low, stated.low, stated.likely, stated.high
 
 
-_PLACES = {"capacitor": 0, "spread": 2, "opposite": 2}
+_PLACES: dict[str, Where] = {"capacitor": "port", "spread": "spread", "opposite": "opposite"}
 
 
-def joint_loss(joint: Joint, x: float) -> Loss:
-    """Return the loss of one group of joints, where it sits."""
+def joint_loss(joint: Joint) -> Loss:
+    """Return the loss of one group of joints, where it sits [ohm]."""
     typical = tables.joint_resistance(joint.kind) if joint.kind else None
-    at = x
-    share = {
-        "capacitor": 1.0,
-        "opposite": float(small_loop.opposite_taper(at)) ** 2,
-        "spread": float(small_loop.loss_taper(at)),
-    }[joint.at]
-    low, bare, likely, high = (end * joint.count * share for end in stated_ends(joint.resistance, typical))
+    low, bare, likely, high = (end * joint.count for end in stated_ends(joint.resistance, typical))
     uses = joint.kind and (joint.resistance is None or joint.resistance.single)
     rows = (f"joint, {joint.kind}",) if uses else ()
     return Loss(low, bare, likely, high, _PLACES[joint.at], rows)
 
 
-def joint_losses(loop: Loop, x: float) -> tuple[Loss, ...]:
-    """Return the losses of all joints."""
-    return tuple(joint_loss(joint, x) for joint in loop.joint)
-
-
-def capacitor_loss(part: Capacitor, reactance: float, frequency: float) -> Loss:
-    """Return the series resistance of the capacitor tuned to a loop of this reactance [ohm].
+def capacitor_loss(part: Capacitor, frequency: float, reactance: float) -> Loss:
+    """Return the loss of the capacitor [1/Q, or ohm where its resistance is stated].
 
     A Q stated for another frequency is widened to both sides by the ratio of the frequencies to the power of 1.5, which
-    metal losses at one capacitance give (common practice), and no longer counts as stated for volts.
+    metal losses at one capacitance give (common practice), and no longer counts as stated for volts. `reactance` is
+    that of the loop [ohm], by which a typical Q becomes the low end of a single stated resistance.
     """
+    if part.kind == "none":
+        return Loss(0.0, 0.0, 0.0, 0.0, "port")
     typical_q = capacitor_typical(part)
     if part.series_resistance is not None:
         typical = Spread(reactance / (typical_q.high or 1.0), None, None)
         ends = stated_ends(part.series_resistance, typical)
         rows = (f"capacitor, {part.kind}",) if part.series_resistance.single else ()
-        return Loss(*ends, grows=0, typical=rows)
-    typical = Spread(*(reactance / (q or 1.0) for q in (typical_q.high, typical_q.likely, typical_q.low)))
+        return Loss(*ends, where="port", typical=rows)
+    typical = Spread(*(1.0 / (q or 1.0) for q in (typical_q.high, typical_q.likely, typical_q.low)))
     rows, stated, moved = (f"capacitor, {part.kind}",), None, 1.0
     if part.quality_factor is not None:
         q = part.quality_factor
         if part.quality_factor_at is not None:
             ratio = frequency / part.quality_factor_at
             moved = max(ratio, 1.0 / ratio) ** 1.5
-        stated = Uncertain(reactance / (q.high * moved), reactance / q.likely, reactance * moved / q.low, q.single)
+        stated = Uncertain(1.0 / (q.high * moved), 1.0 / q.likely, moved / q.low, q.single)
         if moved > 1.0:
             rows = ("capacitor, Q at another frequency",)
         elif not q.single:
             rows = ()
     low, bare, likely, high = stated_ends(stated, typical)
-    return Loss(low, 0.0 if moved > 1.0 else bare, likely, high, grows=1, typical=rows)
+    return Loss(low, 0.0 if moved > 1.0 else bare, likely, high, where="capacitor", typical=rows)
 
 
 def capacitor_typical(part: Capacitor) -> Spread:

@@ -1,15 +1,31 @@
 """One design at one frequency: what the checks hold against ratings and limits."""
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 from scipy.constants import c
 
-from magsafe.analysis.chain import GroundCase, WithoutTaper, chain
+from magsafe import words
+from magsafe.analysis.chain import VOLTAGE_ERROR, GroundCase, chain
+from magsafe.analysis.closed_form import SecondOpinion, second_opinion
 from magsafe.analysis.figures import Figures, figures_of, unknown_figures
-from magsafe.design.model import Design, Transmission
+from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
+from magsafe.analysis.losses import conductivity
+from magsafe.analysis.wires import electrical_radius, positions, shape_of, shortest_side, wire_of
+from magsafe.design.model import Design, Loop, Transmission
 from magsafe.design.shape import Outline, outline
-from magsafe.physics import inductance, small_loop
+from magsafe.physics.conductor import skin_depth
+from magsafe.physics.ranges import Range
+from magsafe.physics.thin_wire import FULL_WAVE
 from magsafe.spread import UNKNOWN, Spread
+
+THICKNESS = Range("conductor radius over loop radius", 0.0, 0.06, "the thickest loop held against the Fourier series")
+SHORTEST_SIDE = 6.0  # conductor radii
+WIDEST_STRIP = 0.12  # loop radii: wider, the side towards the centre carries more
+THICK_WALL = 3.0  # skin depths
+LOWEST = 2.0  # conductor radii between the ground and the axis; to 4 the reactance reads up to 7 % high, which is safe
+
+TURN_SPACING = 1.02  # diameters, from which the crowding is solved
 
 
 @dataclass(frozen=True, slots=True)
@@ -18,51 +34,69 @@ class OperatingPoint:
 
     `power` is the peak envelope power at the transmitter [W], `power_at_loop` what of it arrives. The two `bare_`
     values are the dangerous ends of volts and amps that rest on no typical value. `typical` names the rows of common
-    practice that were used. `out_of_range` tells why the closed forms do not reach this loop; then most figures are
-    unknown. `bound_ratio` is Q over efficiency times the lower bound on Q.
+    practice that were used. `out_of_range` tells why nothing is computed of this loop; then most figures are unknown.
+    `tuning_limit` is the frequency above which no series capacitor tunes the loop [Hz], `beyond_tuning` says that the
+    transmission lies above it. `bound_ratio` is Q over efficiency times the lower bound on Q. `opinion` is what the
+    closed forms say, None where they do not reach.
     """
 
     transmission: Transmission
     power: float
     power_at_loop: Spread
     figures: Figures
-    out_of_range: tuple[str, ...]
-    bare_voltage: float | None
-    bare_current: float | None
-    typical: tuple[str, ...]
-    ground_left_out: bool
-    bound_ratio: Spread
-    without_taper: WithoutTaper | None
-    ground_cases: tuple[GroundCase, ...]
-    field_error: float
+    out_of_range: tuple[str, ...] = ()
+    tuning_limit: float | None = None
+    beyond_tuning: bool = False
+    bare_voltage: float | None = None
+    bare_current: float | None = None
+    typical: tuple[str, ...] = ()
+    ground_left_out: bool = False
+    bound_ratio: Spread = UNKNOWN
+    opinion: SecondOpinion | None = None
+    ground_cases: tuple[GroundCase, ...] = ()
+    field_error: float = VOLTAGE_ERROR
 
 
 def operating_point(design: Design, transmission: Transmission) -> OperatingPoint:
     """Return the figures of a design in one transmission."""
     line = outline(design.loop)
-    reasons = out_of_range(design, transmission.frequency, line)
-    power = transmission.envelope_power
+    frequency, power = transmission.frequency, transmission.envelope_power
     arriving = power_at_loop(design, power)
-    if reasons:
-        figures = unknown_figures(line, transmission.frequency, reasons)
-        return OperatingPoint(
-            transmission, power, arriving, figures, reasons, None, None, (), False, UNKNOWN, None, (), 0.0
+    reasons = out_of_range(design, frequency, line)
+    limit = None if reasons else tuning_limit(design)
+    tuned = design.capacitor.kind != "none"
+    beyond = tuned and limit is not None and frequency >= limit
+    if tuned and not reasons and limit is None:
+        reasons = _unlimited(design.loop, frequency, line)
+    made = None if reasons or beyond else chain(design, frequency, line, arriving)
+    if limit is not None and beyond:
+        reasons = (
+            f"no series capacitor tunes this loop above its anti-resonance at {words.amount(limit, 'Hz', 'MHz')}",
         )
-    made = chain(design, transmission.frequency, line, arriving)
+    elif made is not None and tuned and not made.gap_is_small and limit is None:
+        reasons, made = ("no series capacitor tunes this loop: it is capacitive at its port",), None
+    elif made is not None and tuned and not made.gap_is_small:
+        reasons, made = (
+            (f"so near to its anti-resonance at {words.amount(limit or 0.0, 'Hz', 'MHz')} the port's own gap decides",),
+            None,
+        )
+    if made is None:
+        figures = unknown_figures(line, frequency, reasons)
+        return OperatingPoint(transmission, power, arriving, figures, reasons, limit, beyond)
+    bare_voltage = made.dangerous(made.voltage, "bare") * (1.0 + made.voltage_error)
     return OperatingPoint(
-        transmission,
-        power,
-        arriving,
-        figures_of(made, design),
-        (),
-        made.dangerous(made.voltage, "bare") * (1.0 + made.voltage_error()[1]),
-        made.dangerous(made.current, "bare") * (1.0 + made.current_error()[1]),
-        made.typical,
-        made.around.likely_is_free_space,
-        made.bound_ratio(),
-        made.without_taper(),
-        made.ground_cases(),
-        made.field_error(),
+        transmission=transmission,
+        power=power,
+        power_at_loop=arriving,
+        figures=figures_of(made, design),
+        tuning_limit=limit,
+        bare_voltage=bare_voltage if tuned else None,
+        bare_current=made.dangerous(made.current, "bare") * (1.0 + VOLTAGE_ERROR),
+        typical=made.typical,
+        ground_left_out=not made.around.ground_known,
+        bound_ratio=made.bound_ratio() if tuned else UNKNOWN,
+        opinion=second_opinion(design, made) if tuned else None,
+        ground_cases=made.ground_cases(),
     )
 
 
@@ -77,39 +111,68 @@ def power_at_loop(design: Design, power: float) -> Spread:
 
 
 def out_of_range(design: Design, frequency: float, line: Outline) -> tuple[str, ...]:
-    """Return why the closed forms do not reach this design at this frequency [Hz]; empty if they do."""
-    loop, made_of = design.loop, design.loop.conductor
-    reasons = []
-    size = line.perimeter * frequency / c
-    if not small_loop.TAPERED_CURRENT.holds(size):
-        reasons.append(
-            f"the perimeter is {size:.3g} wavelengths; the closed forms hold to {small_loop.TAPERED_CURRENT.high:g}"
-        )
-    if loop.turns > 1:
-        reasons.append("the closed forms hold for one turn")
-    if loop.shape not in ("circle", "polygon"):
-        reasons.append(f"the closed forms hold for circles and regular polygons, not for {_a(loop.shape)}")
-    if made_of.form not in ("rod", "tube"):
-        reasons.append(f"the loss of {_a(made_of.form)} is not computed by this version")
-    if made_of.plating is not None:
-        reasons.append("the loss of a plated conductor is not computed by this version")
-    if design.capacitor.kind == "none":
-        reasons.append("a full-wave loop without a capacitor is not computed by this version")
-    thickness = (made_of.outer_diameter or 0.0) / 2.0 / line.mean_radius
-    if made_of.form in ("rod", "tube") and not small_loop.TAPERED_THICKNESS.holds(thickness):
-        reasons.append(
-            f"the conductor's radius is {thickness:.3g} of the loop's; the closed forms are proved to "
-            f"{small_loop.TAPERED_THICKNESS.high:g}"
-        )
-    if loop.shape == "polygon":
-        slender = (made_of.outer_diameter or 0.0) / 2.0 / (line.perimeter / (loop.sides or 3))
-        if not inductance.POLYGON_THICKNESS.holds(slender):
-            reasons.append(
-                f"the conductor's radius is {slender:.3g} of a side; the polygon's inductance is proved to "
-                f"{inductance.POLYGON_THICKNESS.high:g}"
-            )
-    return tuple(reasons)
+    """Return why nothing is computed of this design at this frequency [Hz]; empty if it is."""
+    found = (*_size_reasons(design.loop, frequency, line), *_conductor_reasons(design.loop, frequency))
+    return found or tuple(_place_reasons(design, frequency))
 
 
-def _a(word: str) -> str:
-    return f"{'an' if word[0] in 'aeiou' else 'a'} {word}"
+def _unlimited(loop: Loop, frequency: float, line: Outline) -> tuple[str, ...]:
+    """Return why a loop is not computed whose anti-resonance was not found where it is looked for."""
+    size, most = line.perimeter * loop.turns * frequency / c, float(TUNING_SCAN[-1])
+    if size <= most:
+        return ()
+    return (f"the conductor is {size:.3g} wavelengths long; what a capacitor tunes is computed to {most:g}",)
+
+
+def _size_reasons(loop: Loop, frequency: float, line: Outline) -> Iterator[str]:
+    size = line.perimeter * loop.turns * frequency / c
+    if not FULL_WAVE.holds(size):
+        yield (
+            f"the conductor is {size:.3g} wavelengths long; the solver is proved from {FULL_WAVE.low:g} to "
+            f"{FULL_WAVE.high:g}"
+        )
+    radius = electrical_radius(loop.conductor)
+    nested = loop.turns > 1 and loop.turn_arrangement == "nested"
+    inner = line.mean_radius - ((loop.turns - 0.5) * (loop.turn_spacing or 0.0) if nested else 0.0)
+    if inner <= 0.0:
+        yield "there is no room for the innermost turn"
+        return
+    thickness = radius / inner
+    if not THICKNESS.holds(thickness):
+        yield f"the conductor's radius is {thickness:.3g} of the loop's; the solver is proved to {THICKNESS.high:g}"
+    side = shortest_side(loop)
+    if side is not None and side < SHORTEST_SIDE * radius:
+        yield (
+            f"a side is {side / radius:.3g} times as long as the conductor's radius; a corner's own shape decides "
+            f"below {SHORTEST_SIDE:g}"
+        )
+
+
+def _place_reasons(design: Design, frequency: float) -> Iterator[str]:
+    """Yield why the wire cannot be where the design puts it."""
+    shapes = [shape_of(design.loop, frequency, position) for position in positions(design)]
+    try:
+        lowest = min(float(wire_of(shape).nodes[:, 2].min()) for shape in shapes)
+    except ValueError as error:
+        yield str(error)
+        return
+    if design.ground_name == "none" or design.loop.centre_height is None:
+        return
+    if lowest < LOWEST * shapes[0].radius:
+        yield "the conductor is nearer to the ground than its own diameter; how its current crowds is not computed"
+
+
+def _conductor_reasons(loop: Loop, frequency: float) -> Iterator[str]:
+    made_of = loop.conductor
+    width = (made_of.width or 0.0) / outline(loop).mean_radius
+    if made_of.form == "strip" and width > WIDEST_STRIP:
+        yield f"the strip is {width:.3g} of the loop's radius wide; it is computed as if straight to {WIDEST_STRIP:g}"
+    if loop.turns > 1 and made_of.form == "strip":
+        yield "what the turns of a strip do to one another is not computed by this version"
+    elif loop.turns > 1 and (loop.turn_spacing or 0.0) < TURN_SPACING * (made_of.outer_diameter or 0.0):
+        yield f"the turns are nearer together than {TURN_SPACING:g} diameters; how the current crowds is not computed"
+    if made_of.plating is not None and made_of.form == "tube":
+        sigma = conductivity(made_of, made_of.temperature).likely or 0.0
+        wall = (made_of.wall or 0.0) / float(skin_depth(frequency, sigma))
+        if wall < THICK_WALL:
+            yield (f"the plated wall is {wall:.3g} skin depths thick; plating is computed on walls from {THICK_WALL:g}")

@@ -5,7 +5,7 @@ from math import ceil, hypot
 
 import numpy as np
 
-from magsafe.analysis.field_source import FAR_PIECE, NEAR_PIECE, FieldSource, at_bearings, field_source
+from magsafe.analysis.field_source import FAR, NEAR, FieldSource, at_bearings, field_source
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.design.model import Design, Place
 from magsafe.physics.arrays import Array
@@ -41,13 +41,13 @@ class _Box:
 
 def at_places(design: Design, point: OperatingPoint, places: tuple[Place, ...]) -> tuple[Strongest, ...]:
     """Return the strongest field at each place, in their order; fine pieces of the loop only for places near it."""
-    coarse = field_source(design, point, FAR_PIECE)
+    coarse = field_source(design, point, FAR)
     far = {place.name for place in places if _is_far(coarse, place)}
     found: dict[str, Strongest] = {}
     for source, names in ((coarse, far), (None, {place.name for place in places} - far)):
         own = tuple(place for place in places if place.name in names)
         if own:
-            used = source or field_source(design, point, NEAR_PIECE)
+            used = source or field_source(design, point, NEAR)
             found |= dict(zip((place.name for place in own), search(used, own), strict=True))
     return tuple(found[place.name] for place in places)
 
@@ -55,7 +55,7 @@ def at_places(design: Design, point: OperatingPoint, places: tuple[Place, ...]) 
 def _is_far(source: FieldSource, place: Place) -> bool:
     """Return whether a place keeps so far from the loop that coarse pieces serve: a metre, as keep-out does."""
     if place.fence:
-        return place.fence >= source.line.reach + _COARSE_FROM
+        return place.fence >= source.reach + _COARSE_FROM
     axis, _ = source.clearance(_grid(_boxes(source.design, place)))
     return bool(axis.min() >= _COARSE_FROM)
 
@@ -123,7 +123,7 @@ class _Search:
             doubts.append("the conductor runs through it")
         if self.buried[index]:
             doubts.append("part of it is below the ground")
-        if place.fence and place.fence < self.source.line.reach:
+        if place.fence and place.fence < self.source.reach:
             doubts.append("the fence is inside the loop's outline")
         pad = _FENCE_PAD if place.fence else 1.0
         return Strongest(float(self.best[0, index]) * pad, float(self.best[1, index]) * pad, tuple(doubts))

@@ -17,6 +17,7 @@ def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, 
         *_feed(design),
         *_use(design),
         *_people(design),
+        *_methods(design, points),
         *_kept(design),
     )
     return tuple(dict.fromkeys(found))
@@ -96,10 +97,13 @@ def _feed(design: Design) -> Iterator[str]:
         yield "feed.line_loss is not given: all of the transmitter's power is taken to arrive at the loop."
     elif loss.single:
         yield "The line loss is a single value: for volts and amps the line is taken to lose nothing."
-    yield (
-        "The loop is matched at its resonance. The capacitor's terminals are at least three conductor radii apart; "
-        "a narrower gap's end faces belong to the capacitor."
-    )
+    if design.capacitor.kind == "none":
+        yield "All of the power that the line leaves is taken to enter the loop, whatever its SWR."
+    else:
+        yield (
+            "The loop is matched at its resonance. The capacitor's terminals are about 20 to 100 mm apart, and three "
+            "conductor radii at least; a narrower gap's end faces belong to the capacitor."
+        )
     if design.feed.coupling == "small loop":
         yield "The coupling loop's own size is not computed by this version."
 
@@ -144,6 +148,29 @@ def _people(design: Design) -> Iterator[str]:
             )
         if transmission.tune_up is not None:
             yield (f"{title}: one tune-up in any averaging time, beside the overs.")
+
+
+def _methods(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
+    loop = design.loop
+    if any(point.opinion is None and not point.out_of_range for point in points):
+        yield "Where no loop.methods_agree is told, no closed form reaches the loop: the solved current stands alone."
+    if loop.turns > 1:
+        turns = "beside their plane" if loop.turn_arrangement == "nested" else "outside them"
+        yield (
+            f"The turns are closed by a link one spacing {turns}, with the capacitor in its middle. They are bare: "
+            "insulation between them would lower the frequency up to which a capacitor tunes the loop."
+        )
+    kind = tables.conductor_factor(loop.conductor.form)
+    if kind.high != 1.0:
+        yield (
+            f"The resistance of a {loop.conductor.form} conductor is taken as {kind.low:g} to {kind.high:g} times that "
+            "of a smooth one (common practice). No verdict is clear by that credit."
+        )
+    if loop.conductor.form == "strip":
+        yield (
+            "The strip is bent so gently that it is as good as straight; which way it lies changes nothing that is "
+            "computed."
+        )
 
 
 def _kept(design: Design) -> Iterator[str]:

@@ -4,11 +4,12 @@ from magsafe import words
 from magsafe.analysis.operating_point import OperatingPoint
 
 
-def cautions(points: tuple[OperatingPoint, ...]) -> tuple[str, ...]:
+def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, ...]:
     """Return the cautions, the computed volts in the first of them."""
     return (
-        f"RF burns. {_volts(points)} A touch burns deeply, without the warning of a shock. Fence the loop, keep "
-        "people, pets and dry or flammable things a metre and more from conductor and capacitor, also at a few watts.",
+        f"RF burns. {_volts(points) if tuned else _FULL_WAVE} A touch burns deeply, without the warning of a shock. "
+        "Fence the loop, keep people, pets and dry or flammable things a metre and more from conductor and capacitor, "
+        "also at a few watts.",
         "Tuning. Never turn the capacitor by hand at the loop under power. Tune at 5 W or less from a distance, then "
         "raise the power in steps. If the SWR creeps or jumps during a carrier, stop: something arcs or heats.",
         "Fields. Nobody stays near the loop during a transmission until exposure is proven for that place. Limits "
@@ -24,6 +25,9 @@ def cautions(points: tuple[OperatingPoint, ...]) -> tuple[str, ...]:
         "Law. This sheet reports what was computed against the limits it names. Local regulation, the licence and a "
         "qualified person's judgement go before it.",
     )
+
+
+_FULL_WAVE = "A full-wave loop carries its highest volts where its current is least, hundreds of them at 100 W."
 
 
 def _volts(points: tuple[OperatingPoint, ...]) -> str:

@@ -5,7 +5,7 @@ from dataclasses import dataclass, replace
 from math import sqrt
 
 from magsafe.analysis.exposure import Basis, Use, bases, key_down, use_of
-from magsafe.analysis.field_source import FAR_PIECE, field_source
+from magsafe.analysis.field_source import FAR, field_source
 from magsafe.analysis.keepout import Distances, Shells, keep_out, reach_weight, shells
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.people import Strongest, at_places
@@ -20,7 +20,7 @@ from magsafe.checks.sheet import (
 )
 from magsafe.design.consistency import slug
 from magsafe.design.model import Design, Place
-from magsafe.design.shape import outline
+from magsafe.design.shape import extent
 from magsafe.rules.limit import WHO, Limit, Rule, Who, load_rule
 from magsafe.spread import Spread
 
@@ -84,7 +84,7 @@ def _view(design: Design, point: OperatingPoint) -> _View:
     doubt, use = _metal(design), use_of(point.transmission)
     if unknown or not design.site.rules:
         return _View(design, point, use, unknown, doubt, {}, None, 1.0, 1.0)
-    far = field_source(design, point, FAR_PIECE)
+    far = field_source(design, point, FAR)
     found = at_places(design, point, tuple(design.place))
     strongest = {place.name: each for place, each in zip(design.place, found, strict=True)}
     view = _View(design, point, use, unknown, doubt, strongest, None, far.bare_factor, far.likely_factor)
@@ -112,7 +112,7 @@ def _unknown(design: Design, point: OperatingPoint) -> str:
 
 def _metal(design: Design) -> str:
     """Return why computed fields do not hold near metal; empty where none is that near."""
-    near, across = design.site.metal_within, 2.0 * outline(design.loop).reach
+    near, across = design.site.metal_within, 2.0 * extent(design.loop)
     if near is None or near >= across:
         return ""
     return f"metal is within {near:.3g} m, nearer than one loop diameter ({across:.3g} m): fields there are not proven"

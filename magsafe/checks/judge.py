@@ -180,6 +180,11 @@ def holds(check: Check, value: Spread, limit: float, because: str) -> Finding:
     return _finding(check, value, "clear", because, limit).model_copy(update={"provenance": "computed"})
 
 
+def stopped(check: Check, value: Spread, because: str, do: str) -> Finding:
+    """Return the stop of a question that no power changes and no margin belongs to."""
+    return _finding(check, value, "stop", because, None).model_copy(update={"do": do, "provenance": "computed"})
+
+
 def undecided(check: Check, value: Spread, because: str, do: str) -> Finding:
     """Return the narrow finding of a question that harms nobody and lacks what it would be held against."""
     return _finding(check, value, "narrow", because, None).model_copy(update={"do": do})

@@ -55,7 +55,8 @@ def later(design: Design) -> Iterator[Finding]:
                 f"{' and '.join(stated)}: kept from the design, but not computed by this version",
             )
 
-    if design.feed.coupling in ("capacitors", "direct"):
+    fed_as_it_is = design.feed.coupling == "direct" and part.kind == "none"
+    if design.feed.coupling in ("capacitors", "direct") and not fed_as_it_is:
         yield unproven(
             Check("feed.coupling", "Do the parts of the match stand their volts?", _JUDGE, "none", "1"),
             f'coupling = "{design.feed.coupling}" is not computed by this version; a small series capacitor can carry '

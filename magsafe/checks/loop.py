@@ -1,16 +1,29 @@
-"""Is the loop inside every method's range, does the signal fit, is its Q possible?"""
+"""How large is the loop, do both methods agree, does the signal fit, is its Q possible?"""
 
+from magsafe import words
+from magsafe.analysis.chain import STUDY
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.checks.judge import Check, holds, judge, undecided, unproven
+from magsafe.checks.judge import Check, holds, judge, stopped, undecided, unproven
 from magsafe.checks.sheet import Finding
-from magsafe.physics.small_loop import TAPERED_CURRENT, UNIFORM_CURRENT
+from magsafe.design.model import Design
+from magsafe.physics.small_loop import STUDY as CLOSED_FORM_STUDY
+from magsafe.physics.small_loop import UNIFORM_CURRENT
+from magsafe.physics.thin_wire import FULL_WAVE
 from magsafe.rules.duty import mode_named
+from magsafe.spread import Spread
 
 _SIZE = Check(
     "loop.size",
-    "Is every method inside its range?",
-    "change what is named, or wait for a method that reaches it",
-    TAPERED_CURRENT.source,
+    "Is the loop of a size that can be used and computed?",
+    "change what is named",
+    STUDY,
+    "1",
+)
+_METHODS = Check(
+    "loop.methods_agree",
+    "Do the solved current and the closed forms agree?",
+    "check the sizes in the design; if they are right, trust neither and have the loop measured",
+    f"Foster 1944, Balanis, Storer 1956 (memory); {CLOSED_FORM_STUDY}",
     "1",
 )
 _BANDWIDTH = Check(
@@ -31,20 +44,50 @@ _Q_BOUND = Check(
 )
 
 
-def size(point: OperatingPoint) -> Finding:
-    """Is every method inside its range?"""
-    value = point.figures.perimeter_in_wavelengths.spread
-    if point.out_of_range:
-        return unproven(_SIZE, "; ".join(point.out_of_range), value=value, limit=TAPERED_CURRENT.high)
-    found = value.likely or 0.0
-    text = f"the perimeter is {found:.3g} wavelengths, the tapered closed forms hold to {TAPERED_CURRENT.high:g}"
-    plain = point.without_taper
-    if plain is not None and not UNIFORM_CURRENT.holds(found):
-        text += (
-            f"; without the taper the small-loop forms would give {_off(plain.voltage)} in volts, "
-            f"{_off(plain.quality)} in Q and {_off(plain.efficiency)} in efficiency"
+def size(design: Design, point: OperatingPoint) -> Finding:
+    """Is the loop small, medium, or beyond what a capacitor tunes?"""
+    value, at = point.figures.perimeter_in_wavelengths.spread, words.frequency(point.transmission.frequency)
+    if point.beyond_tuning:
+        limit = words.amount(point.tuning_limit or 0.0, "Hz", "MHz")
+        text = (
+            f"{at} lies above the port's anti-resonance at {limit}: from there on the loop is capacitive at its port, "
+            "and no series capacitor tunes it"
         )
-    return holds(_SIZE, value, TAPERED_CURRENT.high, text)
+        do = f"use it below {limit}, make it smaller, or use it without a capacitor as a full-wave loop"
+        return stopped(_SIZE, value, text, do)
+    if point.out_of_range:
+        return unproven(_SIZE, "; ".join(point.out_of_range), value=value, limit=FULL_WAVE.high)
+    found = value.likely or 0.0
+    if design.capacitor.kind == "none":
+        resonance = point.figures.nearest_resonance.spread.likely
+        near = "" if resonance is None else f", its nearest resonance at {words.amount(resonance, 'Hz', 'MHz')}"
+        return holds(_SIZE, value, FULL_WAVE.high, f"a full-wave loop of {found:.3g} wavelengths{near}")
+    named = "small" if UNIFORM_CURRENT.holds(found) else "medium"
+    text = f"a {named} loop: its perimeter is {found:.3g} wavelengths"
+    if point.tuning_limit is not None:
+        text += f"; a capacitor tunes it up to {words.amount(point.tuning_limit, 'Hz', 'MHz')}"
+    if point.opinion is not None and named == "medium":
+        voltage, quality, efficiency = point.opinion.plain
+        text += (
+            f". The small-loop forms, which take the current as uniform, would give {_off(voltage)} in volts, "
+            f"{_off(quality)} in Q and {_off(efficiency)} in efficiency"
+        )
+    return holds(_SIZE, value, FULL_WAVE.high, text)
+
+
+def methods_agree(point: OperatingPoint) -> Finding | None:
+    """Do the closed forms agree with the solved current, within their stated error? None where they do not reach."""
+    if point.opinion is None:
+        return None
+    worst = max(point.opinion.compared, key=lambda each: each.share)
+    text = ", ".join(
+        f"{each.figure} {_off(each.ratio)} ({_off(each.least)} to {_off(each.most)} allowed)"
+        for each in point.opinion.compared
+    )
+    said = f"solved against closed forms, in free space: {text}"
+    if worst.share > 1.0:
+        return unproven(_METHODS, f"{said}. The {worst.figure} disagree, so neither is proven", limit=1.0)
+    return holds(_METHODS, Spread.exact(worst.share), 1.0, said)
 
 
 def _off(ratio: float) -> str:

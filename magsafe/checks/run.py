@@ -46,19 +46,25 @@ def check(design: Design, on: date | None = None) -> Sheet:
         verdict=worst(tuple(finding.verdict for finding in everything)),
         power_ceiling=least([record.power_ceiling for record in records]),
         operating_points=records,
-        cautions=cautions(points),
+        cautions=cautions(points, tuned=design.capacitor.kind != "none"),
     )
 
 
 def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Finding, ...]) -> OperatingPointRecord:
     people, exposed = exposure(design, point)
-    findings = (
+    tuned = (
         capacitor.voltage(design, point),
         capacitor.current(design, point),
         capacitor.tuning_range(design, point),
-        loop.size(point),
-        loop.bandwidth(point),
-        loop.q_bound(point),
+    )
+    resonant = (loop.bandwidth(point), loop.q_bound(point))
+    agreed = loop.methods_agree(point)
+    has_capacitor = design.capacitor.kind != "none"
+    findings = (
+        *(tuned if has_capacitor else ()),
+        loop.size(design, point),
+        *([agreed] if agreed else ()),
+        *(resonant if has_capacitor else ()),
         *exposed,
     )
     transmission = point.transmission

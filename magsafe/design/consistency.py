@@ -149,6 +149,17 @@ def _turns(tree: Tree) -> Iterator[Complaint]:
             f"more than the conductor's {plain(thick, LENGTH)}: nearer, the turns touch",
             "measure it from centre to centre",
         )
+    made = _readable_loop(loop)
+    if made is None or thick is None or made.turn_arrangement != "nested":
+        return
+    room = shape.room_inside(made)
+    if room is not None and room <= thick:
+        yield (
+            ("loop", "turns"),
+            show(turns),
+            "fewer nested turns, or a closer turn_spacing: there is no room for the innermost one",
+            'use fewer turns, or turn_arrangement = "side by side"',
+        )
 
 
 def _conductor_across(loop: Tree) -> float | None:
@@ -225,20 +236,28 @@ def _narrowest(loop: Tree) -> float | None:
 
 
 _GEOMETRY = (*_ALL_SIZES, "shape")
+_WINDING = ("turns", "turn_spacing", "turn_arrangement", "plane")
 
 
 def _readable_loop(loop: Tree) -> Loop | None:
     """Return the loop's geometry alone, if that can be read, however wrong its other keys are."""
     geometry = {key: loop[key] for key in _GEOMETRY if key in loop}
-    try:
-        made = Loop.model_validate({**geometry, "conductor": {"form": "rod"}})
-    except ValidationError:
+    winding = {key: loop[key] for key in _WINDING if key in loop}
+    made = _valid_loop({**geometry, **winding}) or _valid_loop(geometry)
+    if made is None:
         return None
     try:
         line = shape.outline(made)
     except ZeroDivisionError:
         return None
     return made if line.perimeter > 0.0 and line.area > 0.0 else None
+
+
+def _valid_loop(geometry: Tree) -> Loop | None:
+    try:
+        return Loop.model_validate({**geometry, "conductor": {"form": "rod"}})
+    except ValidationError:
+        return None
 
 
 def _outline(tree: Tree) -> Iterator[Complaint]:
@@ -266,8 +285,7 @@ def _above_ground(tree: Tree) -> Iterator[Complaint]:
     height, made = _size(loop, "centre_height"), _readable_loop(loop)
     if height is None or made is None or _block(tree, "site").get("ground") == "none":
         return
-    reach = shape.outline(made).half_height if _word(loop, "plane", "vertical") == "vertical" else 0.0
-    lowest = reach + (_conductor_across(loop) or 0.0) / 2.0
+    lowest = shape.drop(made) + (_conductor_across(loop) or 0.0) / 2.0
     if height <= lowest:
         yield (
             ("loop", "centre_height"),

@@ -1,7 +1,7 @@
 """Lengths of a loop's outline: perimeter, area, how far it reaches. Plane geometry, no electromagnetics."""
 
 from dataclasses import dataclass
-from math import hypot, pi, sin, tan
+from math import cos, hypot, pi, sin, tan
 
 from magsafe.design.model import Loop
 
@@ -40,6 +40,37 @@ def outline(loop: Loop) -> Outline:
         width, height = loop.width or 0.0, loop.height or 0.0
         return Outline(2.0 * (width + height), width * height, hypot(width, height) / 2.0, height / 2.0)
     return _outline_of_points([(x, y) for x, y in loop.points or []])
+
+
+def extent(loop: Loop) -> float:
+    """Return how far the conductor's axis reaches from the loop's centre [m], with all turns and their closing link."""
+    reach, spacing = outline(loop).reach, loop.turn_spacing or 0.0
+    if loop.turns == 1:
+        return reach
+    if loop.turn_arrangement == "nested":
+        return hypot(reach + spacing / 2.0, spacing)
+    return hypot(reach + spacing, loop.turns * spacing / 2.0)
+
+
+def drop(loop: Loop) -> float:
+    """Return how far the conductor's axis reaches below the loop's centre [m], wherever the capacitor sits."""
+    spacing = (loop.turn_spacing or 0.0) if loop.turns > 1 else 0.0
+    nested = loop.turn_arrangement == "nested"
+    if loop.plane == "horizontal":
+        return 0.0 if nested else loop.turns * spacing / 2.0
+    return outline(loop).half_height + (spacing / 2.0 if nested else spacing)
+
+
+def room_inside(loop: Loop) -> float | None:
+    """Return the distance from the centre to the nearest side of the innermost turn [m]; None for a free outline."""
+    line, depth = outline(loop), (loop.turns - 0.5) * (loop.turn_spacing or 0.0)
+    if loop.shape == "circle":
+        return line.reach - depth
+    if loop.shape == "polygon":
+        return line.reach * cos(pi / (loop.sides or 3)) - depth
+    if loop.shape == "rectangle":
+        return min(loop.width or 0.0, loop.height or 0.0) / 2.0 - depth
+    return None
 
 
 def _outline_of_points(points: list[tuple[float, float]]) -> Outline:

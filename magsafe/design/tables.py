@@ -97,6 +97,12 @@ def capacitor_quality_factor(kind: str) -> Spread:
     return next(Spread(*r["quality_factor"]) for r in _kinds()["capacitor"] if r["name"] == kind)
 
 
+def conductor_factor(form: str) -> Spread:
+    """Return a form's resistance over that of a smooth conductor of its outer diameter [1] (common practice)."""
+    rows = (Spread(*row["factor"]) for row in _kinds()["conductor"] if row["form"] == form)
+    return next(rows, Spread.exact(1.0))
+
+
 def roughness_share() -> Spread:
     """Return what roughness and oxide add to a resistance, as a share of it (common practice)."""
     return Spread(*_kinds()["roughness"]["share"])

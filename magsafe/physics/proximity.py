@@ -106,24 +106,58 @@ def proximity(positions: Array, diameter: float, currents: Array | None = None) 
         raise ValueError("the diameter must be above 0")
     if len(axes) == 1:
         return Proximity(np.ones(1), np.zeros(1))
-    across = (axes[:, 0] + 1.0j * axes[:, 1]) / (diameter / 2.0)
-    distance = across[:, None] - across[None, :]
-    closeness = float(np.min(np.abs(distance)[~np.eye(len(axes), dtype=bool)])) / 2.0
-    if not CLOSENESS.holds(closeness * (1.0 + 1e-9)):
-        raise ValueError(
-            f"axes {closeness:.4g} diameters apart: below {CLOSENESS.low:g} the crowding of the current is not solved"
-        )
-    order = 3 + int(np.ceil(_FALL_OF_MULTIPOLES / np.arccosh(closeness)))
-    orders = np.arange(1, order + 1)
-    # The zeros on the diagonal leave out what a conductor would do to itself.
-    inverse = np.divide(1.0, distance, where=distance != 0.0, out=np.zeros_like(distance))
-    seen = np.asarray(inverse[:, :, None] ** orders, dtype=np.complex128)
+    seen = _seen(axes, diameter)
+    orders = np.arange(1, seen.shape[2] + 1)
     multipoles = _multipoles(seen, amperes)
     loss = 1.0 + 2.0 * np.sum((orders * np.abs(multipoles)) ** 2, axis=1) / amperes**2
     # A on the surface of conductor i, less that of the filaments: the others' multipoles at its axis, because the
     # mean of a potential over a circle without sources inside is that at the centre.
     change = np.real(np.einsum("ijl,jl->i", seen, multipoles)) / amperes
     return Proximity(loss, mu_0 / (2.0 * np.pi) * change)
+
+
+def crowded_coefficients(conductors: int, spacing: float, diameter: float) -> Array:
+    """Return what crowding takes from the coefficients of potential of a row of equal round conductors.
+
+    Parameters
+    ----------
+    conductors : number of conductors [1], 2 or more
+    spacing : distance of neighbouring axes [m]
+    diameter : outer diameter of each conductor [m]
+
+    Returns
+    -------
+    change against evenly spread charges, in units of 1/(2 pi epsilon) [1], shape (conductors, conductors), symmetric.
+    In units of mu/(2 pi) it is the change of inductance per metre too, as on any line with waves of one speed
+
+    Raises
+    ------
+    ValueError : fewer than two conductors, or conductors closer than `CLOSENESS`
+
+    Valid     as `proximity`.
+    Source    as `proximity`; two conductors with opposite charges give the two-wire line.
+    """
+    if conductors < 2:
+        raise ValueError(f"a row has two conductors or more, not {conductors}")
+    positions = np.stack([spacing * np.arange(conductors), np.zeros(conductors)], axis=1)
+    seen = _seen(positions, diameter)
+    columns = [np.real(np.einsum("ijl,jl->i", seen, _multipoles(seen, unit))) for unit in np.eye(conductors)]
+    return np.stack(columns, axis=1)
+
+
+def _seen(positions: Array, diameter: float) -> ComplexArray:
+    """Return the powers of the inverse distances of conductors, in radii: shape (N, N, order), 0 for i = j."""
+    across = (positions[:, 0] + 1.0j * positions[:, 1]) / (diameter / 2.0)
+    distance = across[:, None] - across[None, :]
+    closeness = float(np.min(np.abs(distance)[~np.eye(len(positions), dtype=bool)])) / 2.0
+    if not CLOSENESS.holds(closeness * (1.0 + 1e-9)):
+        raise ValueError(
+            f"axes {closeness:.4g} diameters apart: below {CLOSENESS.low:g} the crowding of the current is not solved"
+        )
+    order = 3 + int(np.ceil(_FALL_OF_MULTIPOLES / np.arccosh(closeness)))
+    # The zeros on the diagonal leave out what a conductor would do to itself.
+    inverse = np.divide(1.0, distance, where=distance != 0.0, out=np.zeros_like(distance))
+    return np.asarray(inverse[:, :, None] ** np.arange(1, order + 1), dtype=np.complex128)
 
 
 def _multipoles(inverse: ComplexArray, currents: Array) -> ComplexArray:

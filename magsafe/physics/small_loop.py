@@ -39,19 +39,18 @@ class ClosedFormError:
     quality_below: float
     quality_above: float
     efficiency_above: float
-    largest_current_below: float
     least_shunt: float
     corner: float
 
 
-# Differences between these closed forms and a full-wave solution of our own (Galerkin, surface-averaged kernel; ports
-# 0.02-0.3 loop radii wide, in the middle of a side or in a corner; conductor radius 0.001-0.054 of the loop's; losses
-# in radiation, in the conductor, or at the port). The circle's gap-free ratios agree with two further solutions.
+# Differences between these closed forms and two full-wave solutions of our own: one with ports 0.02-0.3 loop radii
+# wide, in the middle of a side or in a corner, and `thin_wire` with conductor radii of 0.00001-0.054 of the loop's;
+# losses in radiation alone, in the conductor alone, and at the port.
 STUDY = "full-wave study over port widths, thicknesses and kinds of loss (computed)"
-_CIRCLE = ClosedFormError(0.008, 0.011, 0.021, 0.021, 0.026, 0.018, -0.005, 0.0)
-_TRIANGLE = ClosedFormError(0.078, 0.012, 0.152, 0.021, 0.150, 0.094, -0.070, 1.35)
-_SQUARE = ClosedFormError(0.031, 0.011, 0.061, 0.021, 0.061, 0.043, -0.035, 0.85)
-_MANY_SIDES = ClosedFormError(0.019, 0.011, 0.038, 0.021, 0.040, 0.030, -0.025, 0.60)
+_CIRCLE = ClosedFormError(0.010, 0.015, 0.021, 0.027, 0.030, -0.005, 0.0)
+_TRIANGLE = ClosedFormError(0.100, 0.015, 0.190, 0.027, 0.235, -0.070, 1.35)
+_SQUARE = ClosedFormError(0.040, 0.015, 0.080, 0.027, 0.092, -0.035, 0.85)
+_MANY_SIDES = ClosedFormError(0.026, 0.015, 0.050, 0.027, 0.060, -0.025, 0.60)
 
 
 def closed_form_error(sides: int | None) -> ClosedFormError:

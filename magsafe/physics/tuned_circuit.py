@@ -61,6 +61,25 @@ def unloaded_q(resistance: Values, reactance: Values, slope_factor: Values) -> A
     return np.asarray(np.abs(reactance) / resistance * slope_factor)
 
 
+def standing_wave_ratio(impedance: complex, line: float) -> float:
+    """Return the standing-wave ratio of an impedance at the end of a line.
+
+    Parameters
+    ----------
+    impedance : at the end [ohm], resistance above 0
+    line : impedance of the lossless line [ohm]
+
+    Returns
+    -------
+    ratio [1], 1 or more
+
+    Valid     any.
+    Source    definition by the reflection factor.
+    """
+    reflected = abs((impedance - line) / (impedance + line))
+    return (1.0 + reflected) / (1.0 - reflected)
+
+
 def swr_bandwidth_factor(swr: Values) -> Array:
     """Return the bandwidth between two points of one SWR, times Q over frequency.
 

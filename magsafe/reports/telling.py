@@ -1,6 +1,6 @@
 """What a sheet says first, in sentences: the same on every surface."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from magsafe import words
@@ -126,6 +126,14 @@ class Row:
     unit: str
 
 
+def rows(points: Sequence[OperatingPointRecord]) -> tuple[Row, ...]:
+    """Return the rows of the figures' table: those of a loop that a capacitor tunes, or of a full-wave loop."""
+    terminals = [point.figures.get("terminal_resistance") for point in points]
+    full_wave = any(figure is not None and figure.likely is not None for figure in terminals)
+    known = set.intersection(*(set(point.figures) for point in points))
+    return tuple(row for row in (FULL_WAVE_ROWS if full_wave else ROWS) if row.figure in known)
+
+
 ROWS = (
     Row("perimeter_in_wavelengths", "Perimeter, wavelengths", "1", ""),
     Row("radiation_resistance", "Radiation resistance, mΩ", "ohm", "mΩ"),
@@ -139,6 +147,8 @@ ROWS = (
     Row("tuning_capacitance", "Tuning capacitance, pF", "F", "pF"),
     Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),
     Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
+    Row("directivity_along_axis", "Directivity on the axis", "1", ""),
+    Row("directivity_in_plane", "Directivity in the plane", "1", ""),
     Row("unloaded_q", "Unloaded Q", "1", ""),
     Row("loaded_q", "Loaded Q, matched", "1", ""),
     Row("half_power_bandwidth", "Half-power bandwidth, kHz", "Hz", "kHz"),
@@ -147,5 +157,23 @@ ROWS = (
     Row("capacitor_rms_current", "Capacitor current, A RMS", "A", "A"),
     Row("largest_current", "Largest current, A RMS", "A", "A"),
     Row("capacitor_dissipation", "Heat in the capacitor, W", "W", "W"),
+    Row("conductor_temperature_rise", "Conductor, rise in K", "K", "K"),
+)
+
+FULL_WAVE_ROWS = (
+    Row("perimeter_in_wavelengths", "Perimeter, wavelengths", "1", ""),
+    Row("radiation_resistance", "Radiation resistance, Ω", "ohm", "Ω"),
+    Row("conductor_resistance", "Conductor resistance, Ω", "ohm", "Ω"),
+    Row("joint_resistance", "Joint resistance, Ω", "ohm", "Ω"),
+    Row("ground_resistance", "Ground resistance, Ω", "ohm", "Ω"),
+    Row("terminal_resistance", "Terminal resistance, Ω", "ohm", "Ω"),
+    Row("terminal_reactance", "Terminal reactance, Ω", "ohm", "Ω"),
+    Row("swr_at_50_ohm", "SWR at 50 Ω", "1", ""),
+    Row("nearest_resonance", "Nearest resonance, MHz", "Hz", "MHz"),
+    Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),
+    Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
+    Row("directivity_along_axis", "Directivity on the axis", "1", ""),
+    Row("directivity_in_plane", "Directivity in the plane", "1", ""),
+    Row("largest_current", "Largest current, A RMS", "A", "A"),
     Row("conductor_temperature_rise", "Conductor, rise in K", "K", "K"),
 )

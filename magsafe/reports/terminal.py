@@ -220,7 +220,7 @@ class _Speaker:
             yield self._table(points[start : start + aside])
         reasons = dict.fromkeys(
             f"{row.label.split(',')[0]}: {figure.why}."
-            for row in telling.ROWS
+            for row in telling.rows(points)
             for point in points
             if (figure := point.figures[row.figure]).why
         )
@@ -237,7 +237,7 @@ class _Speaker:
             table.add_column(Text(self.letters(name)), justify="right", width=12)
         table.add_row("Power at the key, W PEP", *(f"{point.power:.6g}" for point in points))
         table.add_row("Clear up to, W PEP", *(self._clear_to(point) for point in points))
-        for row in telling.ROWS:
+        for row in telling.rows(points):
             cells = [self._cell(point.figures[row.figure], row) for point in points]
             table.add_row(self.letters(row.label), *cells)
         return Padding(table, (0, 0, 1, 0))

@@ -104,8 +104,9 @@ MISSING = [
     ({"capacitor__rated_voltage_kind": "DC test"}, "capacitor.voltage", "DC test"),
     ({"capacitor__rated_current": None}, "capacitor.current", "rated_current"),
     ({"capacitor__capacitance": None}, "capacitor.range", "capacitance"),
-    ({"transmission__0__frequency": "28 MHz"}, "loop.size", "wavelengths"),
-    ({"transmission__0__frequency": "28 MHz"}, "capacitor.voltage", "wavelengths"),
+    ({"loop__conductor__outer_diameter": "100 mm"}, "loop.size", "proved to 0.06"),
+    ({"loop__conductor__outer_diameter": "100 mm"}, "capacitor.voltage", "proved to 0.06"),
+    ({"transmission__0__frequency": "50.1 MHz"}, "capacitor.voltage", "anti-resonance"),
     ({"capacitor__kind": "air variable", "capacitor__gap": "2 mm"}, "capacitor.gap", "gap"),
     (
         {"capacitor__with": [{"connection": "series", "capacitance": "1 nF"}]},
@@ -435,7 +436,9 @@ def test_every_sheet_carries_the_cautions_and_promises_nothing(design: MakeDesig
         "Fields",
     ):
         assert subject in said
-    assert "7.98 kV" in said  # the computed kilovolts
+    worst = sheet.operating_points[0].figures["capacitor_peak_voltage"].high or 0.0
+    assert 7.9e3 < worst < 8.1e3
+    assert f"{worst / 1e3:.2f} kV" in said
     text = sheet.to_json()
     assert not re.search(r"\b(is safe|are safe|compliant|approved|passes|passed)\b", text)
 
@@ -532,12 +535,12 @@ def test_no_direct_voltage_rating_is_held_against_rf(design: MakeDesign, kind: s
 
 def test_stray_capacitance_lifts_the_least_as_well_as_the_most(design: MakeDesign) -> None:
     """What is always across the plates cannot be tuned away."""
-    ends = {"min": "199 pF", "max": "500 pF"}
+    ends = {"min": "198 pF", "max": "500 pF"}
     assert finding(sheet_of(design, capacitor__capacitance=ends), "capacitor.range").verdict == "clear"
     lifted = finding(sheet_of(design, capacitor__capacitance=ends, capacitor__stray="10 pF"), "capacitor.range")
     assert lifted.verdict == "stop"
     assert lifted.limit is not None
-    assert lifted.limit.value == pytest.approx(209e-12, rel=1e-9, abs=0.0)
+    assert lifted.limit.value == pytest.approx(208e-12, rel=1e-9, abs=0.0)
 
 
 def test_padding_counts_on_its_own_frequencies(design: MakeDesign) -> None:

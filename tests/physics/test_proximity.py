@@ -6,7 +6,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.constants import mu_0
 
-from magsafe.physics.proximity import Proximity, proximity, row_proximity
+from magsafe.physics.proximity import Proximity, crowded_coefficients, proximity, row_proximity
 
 FLUX = mu_0 / (2.0 * np.pi)
 
@@ -187,3 +187,32 @@ def test_no_answer(call: object, words: str) -> None:
     with pytest.raises(ValueError, match=words):
         call()
     row_proximity(3, 1.02 * 0.022, 0.022)  # the bound itself belongs to the range, whatever its last bit
+
+
+@pytest.mark.parametrize("closeness", [1.02, 1.2, 2.0, 5.0])
+def test_a_crowded_pair_is_the_two_wire_line(closeness: float) -> None:
+    """Opposite charges: arcosh(s/d) for ln(2 s/d), any textbook; equal ones: the same as for equal currents."""
+    found = crowded_coefficients(2, closeness * 0.01, 0.01)
+    opposite = float(found[0, 0] - found[0, 1])
+    assert opposite == pytest.approx(np.arccosh(closeness) - np.log(2.0 * closeness), rel=1e-8, abs=0.0)
+    equal = float(row_proximity(2, closeness * 0.01, 0.01).inductance_change[0]) * 2.0 * np.pi / mu_0
+    assert float(found[0].sum()) == pytest.approx(equal, rel=1e-9, abs=0.0)
+
+
+@pytest.mark.parametrize("count", [2, 3, 8])
+def test_crowding_lowers_the_energy_of_any_charges(count: int) -> None:
+    """Thomson's theorem: charges that may move settle at the least energy. Symmetric, mirrored, gone far apart."""
+    found = crowded_coefficients(count, 0.012, 0.01)
+    np.testing.assert_allclose(found, found.T, atol=1e-12)
+    np.testing.assert_allclose(found, found[::-1, ::-1], atol=1e-12)
+    assert np.linalg.eigvalsh(found).max() < 0.0
+    assert np.abs(crowded_coefficients(count, 1.0, 0.01)).max() < 1e-4
+    rows = row_proximity(count, 0.012, 0.01).inductance_change * 2.0 * np.pi / mu_0
+    np.testing.assert_allclose(found.sum(axis=1), rows, rtol=1e-8)
+
+
+def test_one_conductor_crowds_nothing() -> None:
+    with pytest.raises(ValueError, match="two conductors or more"):
+        crowded_coefficients(1, 0.02, 0.01)
+    with pytest.raises(ValueError, match="not solved"):
+        crowded_coefficients(3, 0.01, 0.01)

@@ -159,7 +159,7 @@ def test_sharper_corners_leave_more_open() -> None:
     """Fewer sides gather more charge at each corner: every error grows from the circle to the triangle."""
     shapes = [small_loop.closed_form_error(sides) for sides in (None, 12, 4, 3)]
     assert small_loop.closed_form_error(5) == small_loop.closed_form_error(24)
-    for name in ("voltage_below", "quality_below", "efficiency_above", "largest_current_below", "corner"):
+    for name in ("voltage_below", "quality_below", "efficiency_above", "corner"):
         values = [getattr(shape, name) for shape in shapes]
         assert values == sorted(values), name
         assert len(set(values)) == len(values), name
