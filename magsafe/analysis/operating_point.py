@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from scipy.constants import c
 
 from magsafe import words
-from magsafe.analysis.chain import VOLTAGE_ERROR, GroundCase, chain
+from magsafe.analysis.chain import VOLTAGE_ERROR, Chain, GroundCase, chain
 from magsafe.analysis.closed_form import SecondOpinion, second_opinion
 from magsafe.analysis.figures import Figures, figures_of, unknown_figures
 from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
@@ -73,13 +73,9 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         reasons = (
             f"no series capacitor tunes this loop above its anti-resonance at {words.amount(limit, 'Hz', 'MHz')}",
         )
-    elif made is not None and tuned and not made.gap_is_small and limit is None:
-        reasons, made = ("no series capacitor tunes this loop: it is capacitive at its port",), None
-    elif made is not None and tuned and not made.gap_is_small:
-        reasons, made = (
-            (f"so near to its anti-resonance at {words.amount(limit or 0.0, 'Hz', 'MHz')} the port's own gap decides",),
-            None,
-        )
+    elif made is not None:
+        reasons = _unfit(made, limit)
+        made = None if reasons else made
     if made is None:
         figures = unknown_figures(line, frequency, reasons)
         return OperatingPoint(transmission, power, arriving, figures, reasons, limit, beyond)
@@ -98,6 +94,20 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         opinion=second_opinion(design, made) if tuned else None,
         ground_cases=made.ground_cases(),
     )
+
+
+def _unfit(made: Chain, limit: float | None) -> tuple[str, ...]:
+    """Return why what was solved does not stand for the loop; empty if it does."""
+    if made.tuned and not made.gap_is_small:
+        if limit is None:
+            return ("no series capacitor tunes this loop: it is capacitive at its port",)
+        return (f"so near to its anti-resonance at {words.amount(limit, 'Hz', 'MHz')} the port's own gap decides",)
+    if not made.current_is_perfect:
+        return (
+            f"the conductor's resistance is {100.0 * made.lossy_share:.2g} % of its reactance: too much for a current "
+            "that is solved without loss",
+        )
+    return ()
 
 
 def power_at_loop(design: Design, power: float) -> Spread:
