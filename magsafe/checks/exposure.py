@@ -25,6 +25,11 @@ from magsafe.rules.limit import WHO, Limit, Rule, Who, load_rule
 from magsafe.spread import Spread
 
 _KEEP = "keep people out of this place, or lower the power"
+_PEOPLE: dict[Who, str] = {"trained": "trained people", "public": "the public"}
+_DO_WITHOUT: dict[Who, str] = {
+    "trained": 'name a rule for trained people in site.rules too, or count them as the public: who = "public"',
+    "public": "name a rule for the public in site.rules too",
+}
 _UNITS = {"E": "V/m", "H": "A/m"}
 
 
@@ -46,10 +51,14 @@ def exposure(design: Design, point: OperatingPoint) -> tuple[tuple[ExposureRecor
     """Return what each rule says of people during one transmission, and the findings."""
     view = _view(design, point)
     records, findings = [], []
-    for name in design.site.rules:
-        rule = load_rule(name)
+    rules = [load_rule(name) for name in design.site.rules]
+    for rule in rules:
         for who in WHO:
-            record, found = _tier(view, rule, who)
+            if rule.limits(who):
+                record, found = _tier(view, rule, who)
+            else:
+                elsewhere = any(each.limits(who) for each in rules)
+                record, found = _without(view, rule, who, elsewhere=elsewhere)
             records.append(record)
             findings.extend(found)
     return tuple(records), tuple(findings)
@@ -139,6 +148,24 @@ def _tier(view: _View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Findi
     ), findings
 
 
+def _without(view: _View, rule: Rule, who: Who, *, elsewhere: bool) -> tuple[ExposureRecord, list[Finding]]:
+    """Return what a rule that does not know a tier says of it: nothing, which only another rule may fill."""
+    why = f"{rule.name} has no limits for {_PEOPLE[who]}: {rule.why_without(who)}"
+    places = [] if elsewhere else [place for place in view.design.place if place.who == who]
+    check = Check(
+        f"exposure.{rule.name}.{who}",
+        f"Are people ({who}) within the limits of {rule.name}?",
+        _DO_WITHOUT[who],
+        f"{rule.standard}, {rule.edition}",
+        "1",
+    )
+    found = [unproven(_place_check(rule, place, _DO_WITHOUT[who]), why, place=place.name) for place in places]
+    if not elsewhere and not places:
+        found = [unproven(check, f"{why}; no other rule in site.rules has any, and silence is not clear")]
+    records = tuple(PlaceRecord(name=place.name, verdict="unproven", when=place.when) for place in places)
+    return ExposureRecord(rule=rule.name, edition=rule.edition, who=who, keepout=None, places=records, why=why), found
+
+
 def _no_place(rule: Rule, who: Who, *, tuning: bool) -> Finding:
     check = Check(
         f"exposure.{rule.name}.{who}",
@@ -201,16 +228,20 @@ class _Judged:
         return (self.field / self.limit) ** 2
 
 
-def _place(
-    view: _View, rule: Rule, found: tuple[Basis, ...], place: Place, unknown: str
-) -> tuple[PlaceRecord, Finding]:
-    check = Check(
+def _place_check(rule: Rule, place: Place, do: str) -> Check:
+    return Check(
         f"exposure.{rule.name}.{place.who}.{slug(place.name)}",
         f"Is {place.name} within the limits of {rule.name} for {place.who} people?",
-        _KEEP,
+        do,
         f"{rule.standard}, {rule.edition}",
         "1",
     )
+
+
+def _place(
+    view: _View, rule: Rule, found: tuple[Basis, ...], place: Place, unknown: str
+) -> tuple[PlaceRecord, Finding]:
+    check = _place_check(rule, place, _KEEP)
     tuning = place.when == "tuning"
     if tuning and view.use.tune_up_time == 0.0:
         unknown = unknown or "this transmission has no tune_up, and the place is judged while tuning"

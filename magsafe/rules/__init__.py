@@ -4,6 +4,7 @@ SI floats and the standard library only. Field limits are RMS, power is that of 
 crest unless it says "averaged", times are in seconds, shares are fractions 0..1.
 """
 
+from magsafe.rules.current import Current, Who
 from magsafe.rules.duty import (
     Mode,
     OnAirShare,
@@ -23,20 +24,20 @@ from magsafe.rules.duty import (
 from magsafe.rules.limit import (
     FieldKind,
     Limit,
-    Provenance,
     Rule,
     RuleFileError,
-    Segment,
     Tier,
     UnknownRule,
-    Who,
+    Without,
     load_rule,
     parse_rule,
     rule_names,
 )
+from magsafe.rules.segment import Provenance, Segment
 from magsafe.rules.table import TableError, UnknownName
 
 __all__ = [
+    "Current",
     "FieldKind",
     "Limit",
     "Mode",
@@ -54,6 +55,7 @@ __all__ = [
     "UnknownName",
     "UnknownRule",
     "Who",
+    "Without",
     "averaged_power",
     "judged_power",
     "load_rule",

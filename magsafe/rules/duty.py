@@ -12,7 +12,7 @@ from math import isfinite
 from pathlib import Path
 from typing import Literal, assert_never
 
-from magsafe.rules.limit import NOT_AVERAGED
+from magsafe.rules.segment import NOT_AVERAGED
 from magsafe.rules.table import (
     FREQUENCY_UNITS,
     SHARE_UNITS,

@@ -10,29 +10,43 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cache
 from hashlib import sha256
-from math import isfinite
 from pathlib import Path
 from typing import Literal
 
-from magsafe.rules.table import (
-    FREQUENCY_UNITS,
-    TIME_UNITS,
-    Entries,
-    TableError,
-    UnknownName,
-    parse_quantity,
-    parse_toml,
+from magsafe.rules.current import WHO, Current, Who, read_current
+from magsafe.rules.segment import (
+    NOT_AVERAGED,
+    PROVENANCES,
+    Provenance,
+    Segment,
+    covering,
+    lowest_value,
+    read_averaging_time,
+    read_segments,
 )
+from magsafe.rules.table import Entries, TableError, UnknownName, parse_toml
 
-Who = Literal["trained", "public"]
+__all__ = [
+    "FIELD_KINDS",
+    "UNIT_OF",
+    "WHO",
+    "FieldKind",
+    "Limit",
+    "Rule",
+    "RuleFileError",
+    "Tier",
+    "UnknownRule",
+    "Who",
+    "Without",
+    "load_rule",
+    "parse_rule",
+    "rule_names",
+]
+
 FieldKind = Literal["electric", "magnetic", "power density"]
-Provenance = Literal["verified", "memory"]
 
-WHO: tuple[Who, ...] = ("trained", "public")
 FIELD_KINDS: tuple[FieldKind, ...] = ("electric", "magnetic", "power density")
-PROVENANCES: tuple[Provenance, ...] = ("verified", "memory")
 UNIT_OF: dict[FieldKind, str] = {"electric": "V/m", "magnetic": "A/m", "power density": "W/m2"}
-NOT_AVERAGED = 0.0
 
 _DATE = re.compile(r"\d{4}(-\d\d(-\d\d)?)?")
 _FOLDER = Path(__file__).parent / "limits"
@@ -44,29 +58,6 @@ class UnknownRule(UnknownName):
 
 class RuleFileError(TableError):
     """A rule file lacks something or contradicts itself; `problems` holds all of it."""
-
-
-@dataclass(frozen=True, slots=True)
-class Segment:
-    """A stretch of frequency, both ends included, over which one power law holds.
-
-    Frequencies in Hz; `coefficient` is the limit at 1 MHz in the unit of the row.
-    """
-
-    lowest_frequency: float
-    highest_frequency: float
-    coefficient: float
-    exponent: float
-    provenance: Provenance
-    provenance_detail: str
-
-    def covers(self, frequency: float) -> bool:
-        """Whether the frequency [Hz] lies in the segment, ends included."""
-        return self.lowest_frequency <= frequency <= self.highest_frequency
-
-    def value(self, frequency: float) -> float:
-        """The limit at a frequency [Hz] that the segment covers."""
-        return float(self.coefficient * (frequency / 1e6) ** self.exponent)
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,24 +104,19 @@ class Limit:
         -------
         limit in `unit`, RMS; the lower one where two segments meet; None outside `band`
         """
-        return min((each.value(frequency) for each in self._covering(frequency)), default=None)
+        return lowest_value(self.segments, frequency)
 
     def provenance_at(self, frequency: float) -> Provenance | None:
         """What the limit at a frequency [Hz] rests on; where segments meet, the weaker of them."""
-        covering = self._covering(frequency)
-        if not covering:
+        found = covering(self.segments, frequency)
+        if not found:
             return None
-        return "memory" if any(s.provenance == "memory" for s in covering) else "verified"
+        return "memory" if any(s.provenance == "memory" for s in found) else "verified"
 
     def provenance_detail_at(self, frequency: float) -> str | None:
         """What was read for the limit at a frequency [Hz], in words; None outside `band`."""
-        details = dict.fromkeys(each.provenance_detail for each in self._covering(frequency))
+        details = dict.fromkeys(each.provenance_detail for each in covering(self.segments, frequency))
         return "; ".join(details) if details else None
-
-    def _covering(self, frequency: float) -> tuple[Segment, ...]:
-        if not (isfinite(frequency) and frequency > 0):
-            raise ValueError(f"frequency must be positive and finite, found {frequency!r} Hz")
-        return tuple(each for each in self.segments if each.covers(frequency))
 
 
 @dataclass(frozen=True, slots=True)
@@ -145,11 +131,20 @@ class Tier:
 
 
 @dataclass(frozen=True, slots=True)
+class Without:
+    """A tier for which a rule has no limits, and where to look instead."""
+
+    who: Who
+    why: str
+
+
+@dataclass(frozen=True, slots=True)
 class Rule:
     """One edition of a published exposure rule.
 
     `holds_from` and `holds_until` are ISO dates or their leading part; `holds_until` is None as
-    long as no later edition is known. `sha256` is that of the bytes of `file`.
+    long as no later edition is known. `sha256` is that of the bytes of `file`. A tier has rows, or stands in
+    `without`. `currents` are shown, never judged.
     """
 
     name: str
@@ -163,6 +158,8 @@ class Rule:
     notes: str
     tiers: tuple[Tier, ...]
     rows: tuple[Limit, ...]
+    without: tuple[Without, ...]
+    currents: tuple[Current, ...]
     file: str
     sha256: str
 
@@ -173,6 +170,10 @@ class Rule:
     def tier(self, who: Who) -> Tier | None:
         """How the rule itself calls a tier; None where it does not know it."""
         return next((each for each in self.tiers if each.who == who), None)
+
+    def why_without(self, who: Who) -> str:
+        """Why the rule has no limits for a tier, and where to look instead; empty where it has some."""
+        return next((each.why for each in self.without if each.who == who), "")
 
     def uncovered_fields(self, who: Who, frequency: float) -> tuple[FieldKind, ...]:
         """Which of E and H no judged row limits at a frequency [Hz]: unproven, never unlimited."""
@@ -212,6 +213,8 @@ def parse_rule(content: bytes, file: str) -> Rule:
         notes=head.text("notes", default=""),
         tiers=tuple(_read_tier(each) for each in head.tables("tier")),
         rows=tuple(_read_limit(each, edition) for each in head.tables("limit")),
+        without=tuple(_read_without(each) for each in _optional(head, "without")),
+        currents=tuple(read_current(each) for each in _optional(head, "current")),
         file=file,
         sha256=sha256(content).hexdigest(),
     )
@@ -235,12 +238,31 @@ def _contradictions(rule: Rule) -> list[str]:
     problems += [
         f"no [[tier]] says who {who} is" for who in dict.fromkeys(row.who for row in rule.rows) if who not in described
     ]
+    problems += [f"without {who} is given twice" for who in _repeated([each.who for each in rule.without])]
+    for who in WHO:
+        if not rule.limits(who) and not rule.why_without(who):
+            problems.append(f"no judged limit for {who}, and no [[without]] says why")
+        if rule.limits(who) and rule.why_without(who):
+            problems.append(f"[[without]] says there is no limit for {who}, and there is one")
+    currents = [f"{each.who}, {each.kind}" for each in rule.currents]
+    problems += [f"two currents for {each}" for each in _repeated(currents)]
     rows = [f"{row.who}, {row.field}, {row.basis}" for row in rule.rows]
     return problems + [f"two rows for {row}" for row in _repeated(rows)]
 
 
 def _repeated(names: Sequence[str]) -> list[str]:
     return [name for name in dict.fromkeys(names) if names.count(name) > 1]
+
+
+def _optional(head: Entries, key: str) -> tuple[Entries, ...]:
+    """The tables of a key that may be left out."""
+    return head.tables(key) if head.has(key) else ()
+
+
+def _read_without(entries: Entries) -> Without:
+    without = Without(who=entries.word("who", WHO), why=entries.text("why"))
+    entries.refuse_leftover()
+    return without
 
 
 def _read_tier(entries: Entries) -> Tier:
@@ -263,10 +285,10 @@ def _read_limit(entries: Entries, edition: str) -> Limit:
         field=entries.word("field", FIELD_KINDS),
         unit=entries.text("unit"),
         basis=entries.text("basis"),
-        averaging_time=_read_averaging_time(entries),
+        averaging_time=read_averaging_time(entries),
         edition=entries.text("edition"),
         source=entries.text("source"),
-        segments=tuple(_read_segment(s, provenance, detail) for s in entries.tables("segments")),
+        segments=read_segments(entries, provenance, detail),
         provenance=provenance,
         provenance_detail=detail,
         verified_part=entries.text("verified_part", default=""),
@@ -281,43 +303,4 @@ def _read_limit(entries: Entries, edition: str) -> Limit:
         entries.note(f"edition {limit.edition!r} is not that of the file, {edition!r}")
     if limit.judged == bool(limit.why_not_judged):
         entries.note("why_not_judged goes with judged = false, and only with it")
-    for below, above in zip(limit.segments, limit.segments[1:], strict=False):
-        if below.highest_frequency != above.lowest_frequency:
-            entries.note(
-                f"segments must rise and meet: one ends at {below.highest_frequency:g} Hz, "
-                f"the next begins at {above.lowest_frequency:g} Hz"
-            )
     return limit
-
-
-def _read_averaging_time(entries: Entries) -> float:
-    text = entries.text("averaging_time")
-    if text in ("", "none"):
-        return NOT_AVERAGED
-    try:
-        seconds = parse_quantity(text, TIME_UNITS)
-    except ValueError as error:
-        entries.note(f'averaging_time: {error}, nor "none"')
-        return NOT_AVERAGED
-    if seconds <= 0:
-        entries.note(f'averaging_time must be longer than zero, or "none", found {text!r}')
-    return seconds
-
-
-def _read_segment(entries: Entries, provenance: Provenance, detail: str) -> Segment:
-    lowest, highest = entries.quantities("band", FREQUENCY_UNITS, count=2)
-    own = entries.has("provenance")
-    segment = Segment(
-        lowest_frequency=lowest,
-        highest_frequency=highest,
-        coefficient=entries.number("coefficient"),
-        exponent=entries.number("exponent"),
-        provenance=entries.word("provenance", PROVENANCES, default=provenance),
-        provenance_detail=entries.text("provenance_detail", default=None if own else detail),
-    )
-    entries.refuse_leftover()
-    if lowest <= 0 or highest <= lowest:
-        entries.note("band must rise from above zero")
-    if segment.coefficient <= 0:
-        entries.note("coefficient must be above zero")
-    return segment

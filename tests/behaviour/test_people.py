@@ -37,6 +37,83 @@ def test_silence_is_never_clear(design: MakeDesign) -> None:
     assert found["exposure.us-fcc.trained.operating-desk"].verdict == "clear"
 
 
+@pytest.mark.parametrize(
+    ("rule", "who", "told"),
+    [
+        ("eu-1999-519", "trained", "eu-1999-519 has no limits for trained people: "),
+        ("de-26bimschv", "trained", "de-26bimschv has no limits for trained people: "),
+        ("jp", "trained", "jp has no limits for trained people: "),
+        ("eu-2013-35", "public", "eu-2013-35 has no limits for the public: "),
+        ("jp-1990", "public", "jp-1990 has no limits for the public: "),
+    ],
+)
+@pytest.mark.parametrize("places", [True, False], ids=["with places", "without places"])
+def test_a_tier_that_a_rule_does_not_know_is_unproven_and_told_so(
+    design: MakeDesign, rule: str, who: str, told: str, *, places: bool
+) -> None:
+    """It is not that no place is given: the rule says nothing of these people, and that is not clear either."""
+    site = {"ground": "average", "rules": [rule]}
+    far = [{**DESK, "along_axis": "6 m"}, {**WALK, "along_axis": "12 m"}]
+    sheet = sheet_of(design, site=site, place=far if places else [])
+    (found,) = (f for f in findings(sheet).values() if f.id.startswith(f"exposure.{rule}.{who}"))
+    assert found.verdict == "unproven"
+    assert found.because.startswith(told)
+    assert "No place" not in found.because
+    assert "site.rules" in found.do
+    assert found.id in sheet.power_ceiling.left_out
+    assert sheet.verdict == "unproven"
+    record = next(e for e in sheet.operating_points[0].exposure if e.who == who)
+    assert record.keepout is None
+    assert (record.why or "").startswith(told)
+    assert [p.verdict for p in record.places] == (["unproven"] if places else [])
+    other = next(e for e in sheet.operating_points[0].exposure if e.who != who)
+    assert other.keepout is not None
+    assert other.why is None
+
+
+def test_a_tier_that_another_rule_knows_is_judged_by_that_one(design: MakeDesign) -> None:
+    """Two rules that share the people out between them leave nobody out."""
+    site = {"ground": "average", "rules": ["eu-1999-519", "eu-2013-35"]}
+    far = [{**DESK, "along_axis": "6 m"}, {**WALK, "along_axis": "12 m"}]
+    sheet = sheet_of(design, site=site, place=far)
+    assert {f.id: f.verdict for f in findings(sheet).values()} == {
+        "exposure.eu-1999-519.public.quay-walk": "clear",
+        "exposure.eu-2013-35.trained.operating-desk": "clear",
+    }
+    silent = [e for e in sheet.operating_points[0].exposure if e.keepout is None]
+    assert [(e.rule, e.who, e.places) for e in silent] == [("eu-1999-519", "trained", ()), ("eu-2013-35", "public", ())]
+    assert all("has no limits for" in (e.why or "") for e in silent)
+    alone = findings(sheet_of(design, site=site, place=far[1:]))
+    assert alone["exposure.eu-2013-35.trained"].because.startswith("No place")
+    assert set(alone) == {"exposure.eu-1999-519.public.quay-walk", "exposure.eu-2013-35.trained"}
+
+
+def test_a_fault_of_the_loop_does_not_hide_that_a_tier_is_unknown(design: MakeDesign) -> None:
+    site = {"ground": "average", "rules": ["eu-1999-519"]}
+    sheet = sheet_of(design, site=site, place=[DESK, WALK], transmission__0__frequency="50.1 MHz")
+    found = findings(sheet)["exposure.eu-1999-519.trained.operating-desk"]
+    assert "has no limits for trained people" in found.because
+
+
+def test_a_short_over_is_held_against_the_crest(design: MakeDesign) -> None:
+    """1999/519/EC: what the mean over 6 min allows, the crest may not; the least power of all bases holds.
+
+    At 1.85 MHz the peak factor is 6.93 x 1.85^0.664 over the root of 2, 7.37 of field or 54 of power; 10 s of
+    6 min at 20 % have a crest of 180 times the mean.
+    """
+    over = {"transmit": "10 s", "listen": "10 min"}
+    use = {"frequency": "1.85 MHz", "power": "100 W", "mode": "SSB unprocessed", "over": over}
+    site = {"ground": "average", "rules": ["eu-1999-519"]}
+    place = place_of(sheet_of(design, site=site, place=[WALK], transmission__0=use), "Quay walk", "eu-1999-519")
+    shares = {basis.basis: basis for basis in place.bases}
+    assert set(shares) == {"thermal whole-body", "electrostimulation", "peak"}
+    assert shares["peak"].judged_power == shares["electrostimulation"].judged_power == pytest.approx(100.0)
+    assert shares["thermal whole-body"].judged_power == pytest.approx(100.0 * 0.2 / 36.0)
+    times = shares["peak"].share_of_limit / shares["thermal whole-body"].share_of_limit
+    assert times == pytest.approx(180.0 / (6.93 * 1.85**0.664) ** 2 * 2.0, rel=1e-4)
+    assert place.basis == "peak"
+
+
 def test_the_finding_of_a_place_carries_its_name(design: MakeDesign) -> None:
     found = findings(sheet_of(design, place=[DESK, WALK]))["exposure.us-fcc.public.quay-walk"]
     assert found.place == "Quay walk"
@@ -297,6 +374,16 @@ def test_the_rules_command() -> None:
     text = run("rules", "us-fcc").stdout
     for word in ("2.19 / f A/m", "30 min", "verified", "sha256", "general population"):
         assert word in text
+    text = run("rules", "eu-2013-35").stdout
+    for word in (
+        "40 mA",
+        "100 mA",
+        "No limits: the Directive is for workers",
+        "high level (not judged)",
+        "second reading",
+    ):
+        assert word in text
+    assert "1998, superseded" in " ".join(run("rules", env={"COLUMNS": "200"}).stdout.split())
     wrong = run("rules", "us-fc")
     assert wrong.returncode == 2
     assert "did you mean us-fcc?" in wrong.stderr

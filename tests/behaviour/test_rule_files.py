@@ -10,11 +10,13 @@ from pathlib import Path
 import pytest
 
 import magsafe.rules
+from magsafe.design.tables import bands
 from magsafe.rules import (
     RuleFileError,
     TableError,
     UnknownMode,
     UnknownRule,
+    Who,
     load_rule,
     mode_duty,
     mode_named,
@@ -34,6 +36,10 @@ standard = "Harbour by-law 1"
 edition = "1"
 holds_from = "2020-01"
 how_judged = "each field by itself"
+
+[[without]]
+who = "trained"
+why = "the crew have a by-law of their own"
 
 [[tier]]
 who = "public"
@@ -78,6 +84,9 @@ def test_the_sound_file_is_read() -> None:
     assert limit.averaged
     assert rule.limits("trained") == ()
     assert rule.tier("trained") is None
+    assert rule.why_without("trained") == "the crew have a by-law of their own"
+    assert rule.why_without("public") == ""
+    assert rule.currents == ()
     assert rule.uncovered_fields("public", 7.1e6) == ("magnetic",)
     assert rule.uncovered_fields("trained", 7.1e6) == ("electric", "magnetic")
     assert rule.holds_until is None
@@ -141,6 +150,10 @@ def test_a_segment_lacking_a_key_is_refused(key: str) -> None:
         ('name = "harbour"', 'name = "quay"', "name 'quay' must be that of the file"),
         ('"2020-01"', '"January"', "a date must look like 2021-05-03, 2021-05 or 2021"),
         ('who = "public"\nown', 'who = "trained"\nown', "no [[tier]] says who public is"),
+        ('who = "trained"\nwhy', 'who = "crew"\nwhy', "who must be one of trained, public"),
+        ("why = ", 'wy = "x"\nwhy = ', "unknown key wy (nearest: why)"),
+        ('who = "trained"\nwhy', 'who = "public"\nwhy', "[[without]] says there is no limit for public"),
+        ('who = "trained"\nwhy', 'who = "public"\nwhy', "no judged limit for trained, and no [[without]] says why"),
         ("segments = [", "judged = false\nsegments = [", "why_not_judged goes with judged"),
         ("segments = [", 'judged = "no"\nsegments = [', "judged must be true or false"),
         ("segments = [", 'why_not_judged = "x"\nsegments = [', "why_not_judged goes with judged"),
@@ -170,6 +183,63 @@ def test_doubled_rows_and_tiers_are_refused() -> None:
     assert problems_of(SOUND + row) == ("two rows for public, electric, thermal whole-body",)
     tier = "[[tier]]" + SOUND.split("[[tier]]")[1].split("[[limit]]", maxsplit=1)[0]
     assert problems_of(SOUND + tier) == ("tier public is described twice",)
+    without = "[[without]]" + SOUND.split("[[without]]")[1].split("[[tier]]", maxsplit=1)[0]
+    assert problems_of(SOUND + without) == ("without trained is given twice",)
+
+
+def test_a_tier_of_which_every_row_is_set_aside_needs_its_reason() -> None:
+    """A row that is only shown limits nobody: such a tier is one without limits."""
+    text = SOUND.replace("segments = [", 'judged = false\nwhy_not_judged = "x"\nsegments = [')
+    assert problems_of(text) == ("no judged limit for public, and no [[without]] says why",)
+
+
+CURRENT = """
+[[current]]
+who = "public"
+kind = "limb"
+unit = "mA"
+averaging_time = "6 min"
+source = "Harbour by-law 1, table 2"
+provenance = "memory"
+provenance_detail = "not read"
+segments = [
+  { band = ["1 MHz", "2 MHz"], coefficient = 40, exponent = 0 },
+  { band = ["2 MHz", "30 MHz"], coefficient = 76, exponent = -1, provenance = "verified", provenance_detail = "it" },
+]
+"""
+
+
+def test_a_current_is_read_and_limits_no_field() -> None:
+    rule = parse(SOUND + CURRENT)
+    (current,) = rule.currents
+    assert (current.who, current.kind, current.averaging_time, current.averaged) == ("public", "limb", 360.0, True)
+    assert [current.at(f) for f in (1e6, 2e6, 4e6, 31e6)] == [40.0, 38.0, 19.0, None]
+    assert [each.provenance for each in current.segments] == ["memory", "verified"]
+    assert rule.limits("public") == parse(SOUND).limits("public")
+
+
+@pytest.mark.parametrize("line", [line for line in CURRENT.splitlines() if " = " in line and "[" not in line])
+def test_a_current_lacking_a_key_is_refused(line: str) -> None:
+    key = line.split(" = ", maxsplit=1)[0]
+    assert f"head, current 1: {key} is missing" in problems_of(SOUND + CURRENT.replace(line + "\n", ""))
+
+
+@pytest.mark.parametrize(
+    ("right", "wrong", "told"),
+    [
+        ('"mA"', '"A"', "unit of a current must be mA"),
+        ('"limb"', '"foot"', "kind must be one of contact"),
+        ('"6 min"', '"0 s"', "averaging_time must be longer than zero"),
+        ('"2 MHz", "30 MHz"', '"3 MHz", "30 MHz"', "segments must rise and meet"),
+        ('"memory"', '"hearsay"', "provenance must be one of"),
+        ("unit =", 'basis = "x"\nunit =', "unknown key basis"),
+        (CURRENT, CURRENT + CURRENT, "two currents for public, limb"),
+    ],
+)
+def test_an_unfit_current_is_refused(right: str, wrong: str, told: str) -> None:
+    assert right in CURRENT
+    problems = problems_of(SOUND + CURRENT.replace(right, wrong, 1))
+    assert any(told in each for each in problems), problems
 
 
 def test_what_is_no_toml_is_refused_with_its_name() -> None:
@@ -194,12 +264,40 @@ def test_the_files_shipped_are_sound_and_hashed() -> None:
         rule = load_rule(name)
         assert rule.sha256 == sha256((FOLDER / "limits" / rule.file).read_bytes()).hexdigest()
         assert load_rule(name) is rule
-        for who in ("trained", "public"):
-            assert rule.uncovered_fields(who, 7.1e6) == ()
+        tiers: tuple[Who, ...] = ("trained", "public")
+        for who in tiers:
+            assert bool(rule.limits(who)) != bool(rule.why_without(who))
+            assert rule.uncovered_fields(who, 7.1e6) == (() if rule.limits(who) else ("electric", "magnetic"))
+            assert (rule.tier(who) is None) == bool(rule.why_without(who))
+
+
+def test_the_tiers_that_a_rule_does_not_know() -> None:
+    found = {(name, each.who) for name in rule_names() for each in load_rule(name).without}
+    assert found == {
+        ("eu-1999-519", "trained"),
+        ("de-26bimschv", "trained"),
+        ("jp", "trained"),
+        ("eu-2013-35", "public"),
+        ("jp-1990", "public"),
+    }
+
+
+def test_the_rules_are_covered_on_every_amateur_band_but_the_fccs_lowest() -> None:
+    """Both fields have a judged level wherever amateurs transmit; below 300 kHz the FCC has none."""
+    gaps = {
+        (name, band.name)
+        for name in rule_names()
+        for band in bands()
+        for who in ("trained", "public")
+        for edges in band.regions
+        for edge in edges
+        if load_rule(name).limits(who) and load_rule(name).uncovered_fields(who, edge)
+    }
+    assert gaps == {("us-fcc", "2200 m")}
 
 
 def test_rows_not_judged_are_shown_but_not_among_the_limits() -> None:
-    for name, count in (("us-fcc", 2), ("icnirp-2020", 4)):
+    for name, count in (("us-fcc", 2), ("icnirp-2020", 8), ("eu-2013-35", 2), ("ieee-c951-2019", 3)):
         rule = load_rule(name)
         aside = [row for row in rule.rows if not row.judged]
         assert len(aside) == count
@@ -209,9 +307,11 @@ def test_rows_not_judged_are_shown_but_not_among_the_limits() -> None:
 def test_an_unknown_rule_names_the_nearest() -> None:
     with pytest.raises(UnknownRule) as refused:
         load_rule("ICNIRP-2002")
-    assert refused.value.nearest == ("icnirp-2020",)
+    assert refused.value.nearest == ("icnirp-2020", "icnirp-1998")
     assert isinstance(refused.value, LookupError)
-    assert str(refused.value) == (f"no rule 'ICNIRP-2002'; nearest: icnirp-2020; known: {', '.join(rule_names())}")
+    assert str(refused.value) == (
+        f"no rule 'ICNIRP-2002'; nearest: icnirp-2020, icnirp-1998; known: {', '.join(rule_names())}"
+    )
     with pytest.raises(UnknownRule, match="nothing resembles it"):
         load_rule("../modes")
 
