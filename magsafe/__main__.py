@@ -1,5 +1,6 @@
 """The console script. `--version` is answered before anything else is imported."""
 
+import errno
 import gc
 import os
 import sys
@@ -43,6 +44,9 @@ def main() -> None:
     except Exception as fault:
         if debug:
             raise
+        if isinstance(fault, OSError) and fault.errno in (errno.ENOSPC, errno.EIO):
+            say(f"magsafe: the output could not be written ({fault.strerror}). Nothing was proven.\n")
+            sys.exit(2)
         kind = type(fault).__name__
         say(
             f"magsafe: a fault of the program, not of the design ({kind}: {fault}).\n"

@@ -14,9 +14,9 @@ from scipy.constants import c, mu_0
 from magsafe.analysis.flow import Flow, inductance
 from magsafe.analysis.losses import Corner, Loss, capacitor_loss, conductor_loss, joint_loss
 from magsafe.analysis.surroundings import State, Surroundings, surroundings
-from magsafe.analysis.wires import electrical_radius
+from magsafe.analysis.wires import electrical_radius, extent
 from magsafe.design.model import Design
-from magsafe.design.shape import Outline, extent, outline
+from magsafe.design.shape import Outline, outline
 from magsafe.physics import small_loop, tuned_circuit
 from magsafe.spread import Spread
 
@@ -276,7 +276,7 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
     return Chain(
         frequency=frequency,
         line=line,
-        extent=extent(design.loop),
+        extent=extent(design),
         conductor_radius=radius,
         corner_error=(corner_constant(design) * mu_0 * radius + crowded_inductance(design)) / external,
         power=power,

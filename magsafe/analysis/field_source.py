@@ -9,8 +9,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.design.model import Design, Loop
-from magsafe.design.shape import extent
+from magsafe.analysis.wires import extent
+from magsafe.design.model import Design
 from magsafe.physics import near_field
 from magsafe.physics.arrays import Array
 from magsafe.physics.near_field import SegmentCurrents
@@ -50,7 +50,7 @@ class FieldSource:
     @property
     def reach(self) -> float:
         """How far the conductor reaches from the loop's centre [m]."""
-        return extent(self.design.loop)
+        return extent(self.design)
 
     @property
     def grounded(self) -> bool:
@@ -78,7 +78,17 @@ class FieldSource:
         return np.stack([0.5 * (wire.start[0] + wire.end[0]) for wire in self.wires])
 
     def strongest(self, points: Array) -> Squares:
-        """Return the strongest field at points outside the conductor [m], shape (point, 3), z >= 0 over a plane."""
+        """Return the strongest field at points outside the conductor [m], shape (point, 3), z >= 0 over a plane.
+
+        Nothing tells which way round a winding is wound, so a point counts with its mirror image.
+        """
+        if self.design.loop.turns > 1:
+            mirror = np.array([-1.0, 1.0, 1.0] if self.design.loop.plane == "vertical" else [1.0, -1.0, 1.0])
+            one, other = self._strongest(points), self._strongest(points * mirror)
+            return Squares(np.maximum(one.electric, other.electric), np.maximum(one.magnetic, other.magnetic))
+        return self._strongest(points)
+
+    def _strongest(self, points: Array) -> Squares:
         electric, magnetic = np.zeros(len(points)), np.zeros(len(points))
         frequency = self.point.transmission.frequency
         for case, currents in zip(self.point.ground_cases, self.currents, strict=True):
@@ -109,9 +119,9 @@ def field_source(design: Design, point: OperatingPoint, nodes: int) -> FieldSour
     return FieldSource(design, point, tuple(currents), tuple(wires.values()), nodes)
 
 
-def touch_distance(loop: Loop) -> float:
+def touch_distance(design: Design) -> float:
     """Return the distance from the centre within which somebody could touch the loop [m]: its reach and 1 m."""
-    return extent(loop) + 1.0
+    return extent(design) + 1.0
 
 
 def at_bearings(points: Array, bearings: Array) -> Array:

@@ -2,7 +2,7 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass, fields
-from math import pi
+from math import pi, sqrt
 
 import numpy as np
 from scipy.constants import c
@@ -59,6 +59,7 @@ class Figures:
     coupling_loop_diameter: Figure
     terminal_resistance: Figure
     terminal_reactance: Figure
+    terminal_peak_voltage: Figure
     swr_at_50_ohm: Figure
     nearest_resonance: Figure
 
@@ -137,6 +138,8 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
     every = chain.terminals()
     likely = complex(chain.resistance("likely", chain.likely), chain.likely.reactance)
     swr = [tuned_circuit.standing_wave_ratio(each, 50.0) for each in every]
+    crest = _crest(likely, chain.power.likely or 0.0)
+    volts = [[crest, *(_crest(each, power or 0.0) for each in every)] for power in (chain.power.low, chain.power.high)]
     resonance = nearest_resonance(design, chain.frequency)
     open_end, say = not chain.most, _say(chain)
     resistance = Spread(
@@ -163,6 +166,14 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
         "terminal_reactance": Figure(
             reactance, "ohm", f"of a port of any usual width{say}", _LOOP_SOURCE, _no_height(chain)
         ),
+        "terminal_peak_voltage": Figure(
+            # More resistance may mean more volts or less, so soil leaves both ends open.
+            Spread(None, crest, None) if open_end else Spread(min(volts[0]), crest, max(volts[1])),
+            "V",
+            f"crest of the RF at the crest of the envelope, all of the power in the loop{say}",
+            _LOOP_SOURCE,
+            _SOIL_WIDENS if open_end else "",
+        ),
         "swr_at_50_ohm": Figure(
             found,
             "1",
@@ -178,6 +189,11 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
             "none within half the frequency either way" if resonance is None else "",
         ),
     }
+
+
+def _crest(impedance: complex, power: float) -> float:
+    """Return the crest of the voltage across an impedance [ohm] that takes a power [W]."""
+    return sqrt(2.0 * power / impedance.real) * abs(impedance)
 
 
 def _answer(chain: Chain, ask: Question, error: float, unit: str, method: str, source: str) -> Figure:
@@ -202,6 +218,7 @@ def _unit(name: str) -> str:
         "swr2_bandwidth": "Hz",
         "nearest_resonance": "Hz",
         "capacitor_peak_voltage": "V",
+        "terminal_peak_voltage": "V",
         "capacitor_rms_current": "A",
         "largest_current": "A",
         "capacitor_dissipation": "W",
@@ -311,7 +328,8 @@ def _reactance(chain: Chain) -> Figure:
 
 
 def _inductance(chain: Chain) -> Figure:
-    found = Spread.exact(chain.inductance).widened(chain.reactance_error, chain.reactance_error)
+    error = REACTANCE_ERROR + chain.corner_error
+    found = Spread.exact(chain.inductance).widened(error, error)
     return Figure(found, "H", "low frequency, in free space, internal part included", _LOOP_SOURCE)
 
 

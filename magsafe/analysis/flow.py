@@ -7,14 +7,21 @@ import numpy as np
 from scipy.constants import c, mu_0
 
 from magsafe.analysis.wires import Shape, positions, potentials, shape_of, wire_of
-from magsafe.design.model import Design
+from magsafe.design import tables
+from magsafe.design.model import Conductor, Design
 from magsafe.design.shape import outline
 from magsafe.physics import thin_wire
 from magsafe.physics.arrays import Array
+from magsafe.physics.conductor import skin_depth
 from magsafe.physics.near_field import SegmentCurrents
 from magsafe.physics.thin_wire import LoopCurrents
 
 TUNING_SCAN = np.linspace(0.04, 0.62, 21)  # lengths of the conductor in wavelengths: one turn's limit is near 0.45
+# What a row of straight conductors says of crowding, to be multiplied: least, likely, most (coaxial and nested rings,
+# thin skin, computed: 0.87 for eight tight coaxial turns; 1.7 to 2.4 for four to eight nested ones).
+HELIX = (0.8, 1.0, 1.1)
+SPIRAL_GROWTH = (0.0, 0.117, 0.233)  # of these for each nested turn beyond the second
+THIN_SKIN, THICK_SKIN = 2.0, 1.2  # radius over skin depth below which nothing is credited; what is lost above it
 RESONANCE_SCAN = np.linspace(0.5, 1.5, 41)  # times the frequency, about the nearest resonance
 
 
@@ -25,7 +32,8 @@ class Flow:
     `radiation` is the resistance that stands for what leaves [ohm], over a plane with the image's part; `reactance`
     that of the perfect conductor [ohm], and `slope` its derivative by the angular frequency times that frequency [ohm].
     `conductor_length` is the length that a conductor carrying 1 A throughout would need for the same loss [m], each
-    turn with its proximity factor; `internal_length` the same for the internal reactance [m]. `mean_square` and
+    turn with its proximity factor, `least_length` and `most_length` the ends of it; `internal_length` the same for the
+    internal reactance [m]. `mean_square` and
     `opposite_square` are squares of the current, on average and opposite the port; `largest` is the largest current.
     """
 
@@ -36,6 +44,8 @@ class Flow:
     reactance: float
     slope: float
     conductor_length: float
+    least_length: float
+    most_length: float
     internal_length: float
     mean_square: float
     opposite_square: float
@@ -56,7 +66,8 @@ def flow(design: Design, frequency: float, position: str | None, image: bool, he
     if height is not None:
         shape = replace(shape, height=height)
     currents = _solved(shape, highest(design), np.array([frequency]), image)
-    square, factors = currents.square[0], turn_factors(design)[currents.wire.turn]
+    square = currents.square[0]
+    low, factors, high = (each[currents.wire.turn] for each in turn_factors(design, frequency))
     omega = 2.0 * np.pi * frequency
     return Flow(
         shape=shape,
@@ -66,6 +77,8 @@ def flow(design: Design, frequency: float, position: str | None, image: bool, he
         reactance=float(currents.reactance[0]),
         slope=omega * float(currents.slope[0]),
         conductor_length=float((factors * square).sum()),
+        least_length=float((low * square).sum()),
+        most_length=float((high * square).sum()),
         internal_length=float((factors * currents.complex_square[0]).sum().real),
         mean_square=float(square.sum() / currents.wire.length.sum()),
         opposite_square=float(np.abs(currents.opposite()[0]) ** 2),
@@ -73,16 +86,36 @@ def flow(design: Design, frequency: float, position: str | None, image: bool, he
     )
 
 
-def turn_factors(design: Design) -> Array:
-    """Return the loss of each turn over that of a lone conductor [1], and last, at index `LINK`, that of the link."""
-    loop = design.loop
-    factors = np.ones(loop.turns + 1)
-    if loop.turns > 1:
-        from magsafe.physics.proximity import row_proximity  # noqa: PLC0415  (only for turns: slow to import)
+def turn_factors(design: Design, frequency: float) -> tuple[Array, Array, Array]:
+    """Return the loss of each turn over that of a lone conductor [1] at a frequency [Hz]: least, likely, most.
 
-        across = loop.conductor.outer_diameter or 0.0
-        factors[: loop.turns] = row_proximity(loop.turns, loop.turn_spacing or 0.0, across).loss_factor
-    return factors
+    Shape (turns + 1,) each, the last, at index `LINK`, that of the closing link. The row of straight conductors stands
+    for a helix; in a spiral the inner turns lie in the field of all others. Where the skin is not thin the current
+    crowds less.
+    """
+    loop = design.loop
+    if loop.turns == 1:
+        return np.ones(2), np.ones(2), np.ones(2)
+    from magsafe.physics.proximity import row_proximity  # noqa: PLC0415  (only for turns: slow to import)
+
+    across = loop.conductor.outer_diameter or 0.0
+    crowded = np.append(row_proximity(loop.turns, loop.turn_spacing or 0.0, across).loss_factor - 1.0, 0.0)
+    depth = float(skin_depth(frequency, poorest_conductivity(loop.conductor)))
+    thick = across / 2.0 / depth
+    thin = 0.0 if thick < THIN_SKIN else 1.0 / (1.0 + THICK_SKIN / thick)
+    more = loop.turns - 2 if loop.turn_arrangement == "nested" else 0
+    low, likely, high = (
+        1.0 + (share + growth * more) * crowded for share, growth in zip(HELIX, SPIRAL_GROWTH, strict=True)
+    )
+    return 1.0 + (low - 1.0) * thin, likely, high
+
+
+def poorest_conductivity(made_of: Conductor) -> float:
+    """Return the least conductivity that the conductor may have [S/m], for the depth of its skin."""
+    if made_of.conductivity is not None:
+        return made_of.conductivity
+    row = tables.materials()[made_of.material or ""]
+    return row.conductivity * (1.0 - row.scatter)
 
 
 def inductance(design: Design, frequency: float) -> float:

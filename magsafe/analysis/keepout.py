@@ -83,7 +83,7 @@ def shells(source: FieldSource, weight: float) -> Shells:
     source : the loop as wires
     weight : the largest `reach_weight` that will be asked for: the search goes no further out than it must
     """
-    nearest = touch_distance(source.design.loop)
+    nearest = touch_distance(source.design)
     # Over a plane, direct and mirrored field make lobes whose number grows with the height in wavelengths.
     lobes = 2.0 * pi * source.point.transmission.frequency / c * source.height if source.grounded else 0.0
     farthest = _bounded(source, lobes, weight)
@@ -115,7 +115,7 @@ def shells(source: FieldSource, weight: float) -> Shells:
 
 def _bounded(source: FieldSource, lobes: float, weight: float) -> float:
     """Return a distance from which on all spheres that were tried stay below half of the power at the limit [m]."""
-    tried = np.geomspace(FARTHEST, touch_distance(source.design.loop), 10)
+    tried = np.geomspace(FARTHEST, touch_distance(source.design), 10)
     points = _sphere(tried, source.height, lobes, _half_turn(source))
     flat = points.reshape(-1, 3)
     there = flat[:, 2] >= 0.0 if source.grounded else np.ones(len(flat), dtype=bool)
@@ -128,7 +128,9 @@ def _bounded(source: FieldSource, lobes: float, weight: float) -> float:
 
 
 def _half_turn(source: FieldSource) -> tuple[float, float]:
-    """Return the bearings that all others mirror [rad]."""
+    """Return the bearings that all others mirror [rad]: a winding with its link, or a free outline, has none."""
+    if source.design.loop.turns > 1 or source.design.loop.shape == "outline":
+        return -pi, pi
     if source.design.loop.plane == "horizontal":
         return 0.0, pi
     return (0.0, pi / 2.0) if source.mirrors else (-pi / 2.0, pi / 2.0)
@@ -151,9 +153,9 @@ def _families(source: FieldSource, floors: tuple[float, ...], lobes: float) -> d
     height = source.height
     vertical = source.design.loop.plane == "vertical"
     if vertical:
-        bearings = {"along_axis": [0.0], "in_plane": [pi / 2.0] if source.mirrors else [pi / 2.0, -pi / 2.0]}
+        bearings = {"along_axis": [0.0, pi], "in_plane": [pi / 2.0, -pi / 2.0]}
     else:
-        bearings = {"in_plane": [0.0, pi], "across": [pi / 2.0]}
+        bearings = {"in_plane": [0.0, pi], "across": [pi / 2.0, -pi / 2.0]}
     if source.design.loop.rotates:
         every = list(np.radians(np.arange(0.0, 360.0, 10.0)))
         bearings = dict.fromkeys(bearings, every)

@@ -52,11 +52,12 @@ class Corner:
         inner = self.internal * flow.internal_length
         return (flow.slope + flow.reactance + 1.5 * inner) * self.growth
 
-    def weight(self, where: Where) -> float:
-        """Return by what a part's own value is multiplied to be seen at the port."""
+    def weight(self, where: Where, end: str) -> float:
+        """Return by what a part's own value is multiplied to be seen at the port, at one end of what is known."""
         flow = self.state.flow
+        lengths = {"low": flow.least_length, "bare": flow.least_length, "high": flow.most_length}
         along = {
-            "conductor": flow.conductor_length,
+            "conductor": lengths.get(end, flow.conductor_length),
             "spread": flow.mean_square,
             "opposite": flow.opposite_square,
         }
@@ -83,7 +84,7 @@ class Loss:
     def at(self, end: str, corner: Corner) -> float:
         """Return the resistance at one end, as the port sees it at a corner [ohm]."""
         value: float = getattr(self, end)
-        return value * corner.weight(self.where)
+        return value * corner.weight(self.where, end)
 
 
 def conductivity(made_of: Conductor, coldest: float) -> Spread:

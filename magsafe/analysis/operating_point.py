@@ -11,7 +11,7 @@ from magsafe.analysis.closed_form import SecondOpinion, second_opinion
 from magsafe.analysis.figures import Figures, figures_of, unknown_figures
 from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
 from magsafe.analysis.losses import conductivity
-from magsafe.analysis.wires import electrical_radius, positions, shape_of, shortest_side, wire_of
+from magsafe.analysis.wires import clearance, electrical_radius, positions, shape_of, shortest_side, wire_of
 from magsafe.design.model import Design, Loop, Transmission
 from magsafe.design.shape import Outline, outline
 from magsafe.physics.conductor import skin_depth
@@ -93,6 +93,7 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         bound_ratio=made.bound_ratio() if tuned else UNKNOWN,
         opinion=second_opinion(design, made) if tuned else None,
         ground_cases=made.ground_cases(),
+        field_error=made.voltage_error,
     )
 
 
@@ -163,9 +164,15 @@ def _place_reasons(design: Design, frequency: float) -> Iterator[str]:
     shapes = [shape_of(design.loop, frequency, position) for position in positions(design)]
     try:
         lowest = min(float(wire_of(shape).nodes[:, 2].min()) for shape in shapes)
+        apart = min(clearance(wire_of(shape)) for shape in shapes)
     except ValueError as error:
         yield str(error)
         return
+    if apart < 0.99 * TURN_SPACING:  # chords of round turns lie a little nearer than the turns
+        yield (
+            f"the conductor comes within {apart:.3g} of its diameters of itself, axis to axis; how its current crowds "
+            "is not computed"
+        )
     if design.ground_name == "none" or design.loop.centre_height is None:
         return
     if lowest < LOWEST * shapes[0].radius:

@@ -5,22 +5,24 @@ from functools import lru_cache
 from math import pi, sin
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.constants import c
 
 from magsafe.design.model import Conductor, Design, Loop
 from magsafe.design.shape import Outline, outline
 from magsafe.physics import geometry, thin_wire
 from magsafe.physics.arrays import Array
-from magsafe.physics.geometry import Turn, Wire
+from magsafe.physics.geometry import LINK, Turn, Wire
 from magsafe.physics.thin_wire import Potentials
 
 PER_TURN = {1: 48, 2: 48}  # segments of one turn; doubling them moves no figure by 0.3 %
 PER_TURN_OF_MANY = 24  # the same for three turns and more: 0.5 %
 PER_WAVELENGTH = 20
 LEAST_LENGTH = 3.0  # conductor radii
-GAP = (4.0, 0.01)  # width of the port that is computed, in conductor radii and in perimeters: the wider of both
-POSITIONS = ("top", "bottom", "side")
-_ANGLES = {"top": pi / 2.0, "bottom": -pi / 2.0, "side": 0.0}
+BEND = 12.0  # conductor radii of its way, within which a conductor may come near itself in a bend
+GAP = (4.0, 0.01, 0.06)  # width of the port: so many conductor radii, or of perimeters up to so many metres
+POSITIONS = ("top", "bottom", "side", "other side")
+_ANGLES = {"top": pi / 2.0, "bottom": -pi / 2.0, "side": 0.0, "other side": pi}
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +66,7 @@ def electrical_radius(made_of: Conductor) -> float:
 
 
 def positions(design: Design) -> tuple[str | None, ...]:
-    """Return where the capacitor may be: where it is stated, or at the top, the bottom or the side."""
+    """Return where the capacitor may be: where it is stated, or at the top, the bottom or either side."""
     if design.loop.plane == "horizontal":
         return (None,)
     return (design.capacitor.position,) if design.capacitor.position else POSITIONS
@@ -75,7 +77,7 @@ def shape_of(loop: Loop, frequency: float, position: str | None) -> Shape:
     line, radius = outline(loop), electrical_radius(loop.conductor)
     pieces = PER_TURN.get(loop.turns, PER_TURN_OF_MANY)
     longest = max(min(line.perimeter / pieces, c / frequency / PER_WAVELENGTH), LEAST_LENGTH * radius)
-    gap = max(GAP[0] * radius, GAP[1] * line.perimeter)
+    gap = max(GAP[0] * radius, min(GAP[1] * line.perimeter, GAP[2]))
     corners, side, angle = _corners(loop, line, position)
     if corners:
         own = np.array(corners, dtype=np.float64)
@@ -124,7 +126,8 @@ def _port_side(corners: Array, position: str | None) -> int:
     """Return the side whose middle lies furthest towards the position; of equal ones the longest or rightmost."""
     following = np.roll(corners, -1, axis=0)
     middle, length = 0.5 * (corners + following), np.linalg.norm(following - corners, axis=1)
-    towards = {"top": middle[:, 1], "bottom": -middle[:, 1]}.get(position or "side", middle[:, 0])
+    known = {"top": middle[:, 1], "bottom": -middle[:, 1], "other side": -middle[:, 0]}
+    towards = known.get(position or "side", middle[:, 0])
     size = float(length.sum())
     return int(np.argmax(np.round(towards / size, 6) + 1e-7 * length / size + 1e-9 * middle[:, 0] / size))
 
@@ -150,6 +153,52 @@ def crowding(shape: Shape) -> Array | None:
     from magsafe.physics.proximity import crowded_coefficients  # noqa: PLC0415  (only for turns: slow to import)
 
     return crowded_coefficients(shape.turns, shape.spacing, 2.0 * shape.radius)
+
+
+def extent(design: Design) -> float:
+    """Return how far the conductor's axis reaches from the loop's centre [m], with all turns and their closing link."""
+    if design.loop.turns == 1:
+        return outline(design.loop).reach
+    centre = np.array([0.0, 0.0, design.loop.centre_height or 0.0])
+    frequency = design.transmission[0].frequency
+    reached = [
+        float(np.linalg.norm(wire_of(shape_of(design.loop, frequency, position)).nodes - centre, axis=1).max())
+        for position in positions(design)
+    ]
+    return max(outline(design.loop).reach, *reached)
+
+
+def clearance(wire: Wire) -> float:
+    """Return how near a conductor comes to itself, axis to axis, in diameters; along its own way it may bend."""
+    middle = np.cumsum(wire.length) - 0.5 * wire.length
+    way = np.abs(middle[:, None] - middle)
+    way = np.minimum(way, float(wire.length.sum()) - way) - 0.5 * (wire.length[:, None] + wire.length)
+    # The link that closes a winding is nobody's measure.
+    elsewhere = (way > BEND * wire.radius) & np.outer(wire.turn != LINK, wire.turn != LINK)
+    first, second = np.nonzero(np.triu(elsewhere))
+    return float(_apart(wire, first, second).min(initial=np.inf)) / (2.0 * wire.radius)
+
+
+def _apart(wire: Wire, first: NDArray[np.intp], second: NDArray[np.intp]) -> Array:
+    """Return the least distance of pairs of segments [m]: of an end from the other, or where they pass each other."""
+    start, end = wire.nodes, wire.ends
+
+    def off(points: Array, segment: NDArray[np.intp]) -> Array:
+        offset = points - start[segment]
+        along = np.clip(np.einsum("pi,pi->p", offset, wire.direction[segment]), 0.0, wire.length[segment])
+        return np.asarray(np.linalg.norm(offset - along[:, None] * wire.direction[segment], axis=1))
+
+    least = np.minimum.reduce(
+        [off(start[first], second), off(end[first], second), off(start[second], first), off(end[second], first)]
+    )
+    u, v, between = wire.direction[first], wire.direction[second], start[second] - start[first]
+    cosine = np.einsum("pi,pi->p", u, v)
+    sine = np.maximum(1.0 - cosine**2, 1e-12)
+    p, q = np.einsum("pi,pi->p", between, u), np.einsum("pi,pi->p", between, v)
+    s, t = (p - cosine * q) / sine, (cosine * p - q) / sine
+    passing = (s > 0.0) & (s < wire.length[first]) & (t > 0.0) & (t < wire.length[second])
+    apart = np.linalg.norm(between + t[:, None] * v - s[:, None] * u, axis=1)
+    return np.asarray(np.where(passing, np.minimum(least, apart), least))
 
 
 def shortest_side(loop: Loop) -> float | None:

@@ -7,7 +7,7 @@ from magsafe.analysis.operating_point import OperatingPoint
 def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, ...]:
     """Return the cautions, the computed volts in the first of them."""
     return (
-        f"RF burns. {_volts(points) if tuned else _FULL_WAVE} A touch burns deeply, without the warning of a shock. "
+        f"RF burns. {_volts(points, tuned=tuned)} A touch burns deeply, without the warning of a shock. "
         "Fence the loop, keep people, pets and dry or flammable things a metre and more from conductor and capacitor, "
         "also at a few watts.",
         "Tuning. Never turn the capacitor by hand at the loop under power. Tune at 5 W or less from a distance, then "
@@ -27,11 +27,14 @@ def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, .
     )
 
 
-_FULL_WAVE = "A full-wave loop carries its highest volts where its current is least, hundreds of them at 100 W."
-
-
-def _volts(points: tuple[OperatingPoint, ...]) -> str:
-    found = [(point.figures.capacitor_peak_voltage.spread.high or 0.0, point.power) for point in points]
+def _volts(points: tuple[OperatingPoint, ...], *, tuned: bool) -> str:
+    figures = [
+        point.figures.capacitor_peak_voltage if tuned else point.figures.terminal_peak_voltage for point in points
+    ]
+    found = [
+        (figure.spread.high or figure.spread.likely or 0.0, point.power)
+        for figure, point in zip(figures, points, strict=True)
+    ]
     volts, power = max(found)
     if volts == 0.0:
         return "The loop carries kilovolts even at a few watts."

@@ -9,6 +9,7 @@ from magsafe.analysis.field_source import FAR, field_source
 from magsafe.analysis.keepout import Distances, Shells, keep_out, reach_weight, shells
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.people import Strongest, at_places
+from magsafe.analysis.wires import extent
 from magsafe.checks.judge import Check, judge, unproven
 from magsafe.checks.sheet import (
     BasisRecord,
@@ -20,7 +21,6 @@ from magsafe.checks.sheet import (
 )
 from magsafe.design.consistency import slug
 from magsafe.design.model import Design, Place
-from magsafe.design.shape import extent
 from magsafe.rules.limit import WHO, Limit, Rule, Who, load_rule
 from magsafe.spread import Spread
 
@@ -121,7 +121,7 @@ def _unknown(design: Design, point: OperatingPoint) -> str:
 
 def _metal(design: Design) -> str:
     """Return why computed fields do not hold near metal; empty where none is that near."""
-    near, across = design.site.metal_within, 2.0 * extent(design.loop)
+    near, across = design.site.metal_within, 2.0 * extent(design)
     if near is None or near >= across:
         return ""
     return f"metal is within {near:.3g} m, nearer than one loop diameter ({across:.3g} m): fields there are not proven"

@@ -12,6 +12,8 @@ from magsafe.physics.thin_wire import FULL_WAVE
 from magsafe.rules.duty import mode_named
 from magsafe.spread import Spread
 
+MOST_SWR = 10.0  # of a full-wave loop at 50 ohm: beyond it the match carries more volts than the loop (common practice)
+
 _SIZE = Check(
     "loop.size",
     "Is the loop of a size that can be used and computed?",
@@ -59,8 +61,17 @@ def size(design: Design, point: OperatingPoint) -> Finding:
         return unproven(_SIZE, "; ".join(point.out_of_range), value=value, limit=FULL_WAVE.high)
     found = value.likely or 0.0
     if design.capacitor.kind == "none":
-        resonance = point.figures.nearest_resonance.spread.likely
+        resonance, swr = point.figures.nearest_resonance.spread.likely, point.figures.swr_at_50_ohm.spread.likely or 0.0
         near = "" if resonance is None else f", its nearest resonance at {words.amount(resonance, 'Hz', 'MHz')}"
+        if resonance is None or swr > MOST_SWR:
+            text = f"without a capacitor a loop of {found:.3g} wavelengths has an SWR of {swr:.3g} at 50 ohm{near}"
+            volts = words.amount(point.figures.terminal_peak_voltage.spread.likely or 0.0, "V", qualifier="peak")
+            return unproven(
+                _SIZE,
+                f"{text}; a match would carry {volts}, and none is computed",
+                value=value,
+                do="use it near a resonance, or give it a capacitor",
+            )
         return holds(_SIZE, value, FULL_WAVE.high, f"a full-wave loop of {found:.3g} wavelengths{near}")
     named = "small" if UNIFORM_CURRENT.holds(found) else "medium"
     text = f"a {named} loop: its perimeter is {found:.3g} wavelengths"

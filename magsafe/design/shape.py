@@ -42,16 +42,6 @@ def outline(loop: Loop) -> Outline:
     return _outline_of_points([(x, y) for x, y in loop.points or []])
 
 
-def extent(loop: Loop) -> float:
-    """Return how far the conductor's axis reaches from the loop's centre [m], with all turns and their closing link."""
-    reach, spacing = outline(loop).reach, loop.turn_spacing or 0.0
-    if loop.turns == 1:
-        return reach
-    if loop.turn_arrangement == "nested":
-        return hypot(reach + spacing / 2.0, spacing)
-    return hypot(reach + spacing, loop.turns * spacing / 2.0)
-
-
 def drop(loop: Loop) -> float:
     """Return how far the conductor's axis reaches below the loop's centre [m], wherever the capacitor sits."""
     spacing = (loop.turn_spacing or 0.0) if loop.turns > 1 else 0.0

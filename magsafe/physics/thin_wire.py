@@ -251,7 +251,7 @@ def solve(
     ValueError : a frequency that is not positive or above that for which `parts` were made, matrices of another wire,
         `internal` of another shape
 
-    Valid     perimeters of 0.005 to 3 wavelengths, 20 segments or more per wavelength; thin conductors.
+    Valid     `FULL_WAVE`, 20 segments or more per wavelength; thin conductors.
     Source    Harrington, Field Computation by Moment Methods (1968) (memory).
     """
     asked = np.asarray(frequency, dtype=np.float64)

@@ -168,6 +168,7 @@ FULL_WAVE_ROWS = (
     Row("ground_resistance", "Ground resistance, Ω", "ohm", "Ω"),
     Row("terminal_resistance", "Terminal resistance, Ω", "ohm", "Ω"),
     Row("terminal_reactance", "Terminal reactance, Ω", "ohm", "Ω"),
+    Row("terminal_peak_voltage", "Terminal voltage, kV peak", "V", "kV"),
     Row("swr_at_50_ohm", "SWR at 50 Ω", "1", ""),
     Row("nearest_resonance", "Nearest resonance, MHz", "Hz", "MHz"),
     Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),

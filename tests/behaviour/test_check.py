@@ -225,7 +225,7 @@ def ceiling_at(design: MakeDesign, watts: float, **changes: Any) -> tuple[float,
     return sheet.power_ceiling.value, sheet.power_ceiling.at_limit
 
 
-@settings(max_examples=30)
+@settings(max_examples=30, deadline=None)
 @given(watts=st.floats(0.01, 9000.0))
 def test_the_ceiling_does_not_depend_on_the_power_given(watts: float) -> None:
     from designs import plain_design

@@ -87,7 +87,7 @@ class Case:
         """Where the capacitor may be; the likely place first."""
         if self.plane == "horizontal":
             return (None,)
-        return (self.position,) if self.position else ("top", "bottom", "side")
+        return (self.position,) if self.position else ("top", "bottom", "side", "other side")
 
     @property
     def open_ended(self) -> bool:

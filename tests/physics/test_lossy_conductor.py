@@ -12,7 +12,7 @@ from magsafe.analysis.chain import LOSSY_BEND, Chain, chain
 from magsafe.analysis.operating_point import operating_point
 from magsafe.analysis.wires import potentials, shape_of, wire_of
 from magsafe.design.shape import outline
-from magsafe.physics import conductor, thin_wire
+from magsafe.physics import conductor, inductance, thin_wire
 from magsafe.spread import Spread
 
 COPPER, STAINLESS = 58e6, 1.39e6  # S/m
@@ -83,3 +83,37 @@ def test_a_conductor_that_bends_its_current_is_unproven_by_name(
     if not computed:
         assert "too much for a current that is solved without loss" in point.out_of_range[0]
         assert not point.beyond_tuning
+
+
+@pytest.mark.parametrize(("form", "factor"), [("rod", 1.0), ("braid", 2.0)])
+def test_the_share_is_the_likely_resistance_over_the_reactance_of_the_inductance(form: str, factor: float) -> None:
+    """Maxwell's ring with its inside (memory); a braid loses twice what a rod does (common practice)."""
+    frequency = 0.1 * c / pi
+    made = chain_of(
+        loop__conductor={"form": form, "outer_diameter": "4 mm", "conductivity": "58 MS/m"},
+        transmission__0__frequency=f"{frequency / 1e6:.6f} MHz",
+    )
+    inside = complex(conductor.rod_impedance(frequency, COPPER, 2e-3)) * pi
+    outside = 2.0 * pi * frequency * float(inductance.circle_inductance(0.5, 2e-3))
+    assert made.lossy_share == pytest.approx(factor * inside.real / (outside + inside.imag), rel=0.01)
+
+
+@pytest.mark.parametrize(
+    ("size", "share", "bend", "computed"),
+    [(0.02, 0.031, 0.0, False), (0.02, 0.029, 0.0, True), (0.35, 0.0, 0.0052, False), (0.35, 0.0, 0.0048, True)],
+)
+def test_up_to_three_percent_of_the_reactance_and_half_a_percent_of_bend(
+    size: float, share: float, bend: float, computed: bool
+) -> None:
+    """Of a thin rod of a metal poor enough, by the root of its conductivity; just within and just beyond."""
+
+    def of(conductivity: float) -> Chain:
+        return chain_of(**loop(0.6, conductivity, size))
+
+    conductivity = STAINLESS
+    for _ in range(6):
+        made = of(conductivity)
+        reached = made.lossy_share / share if share else made.lossy_share * (made.steepness - 1.0) / bend
+        conductivity *= reached**2
+    assert reached == pytest.approx(1.0, rel=1e-3)
+    assert of(conductivity).current_is_perfect == computed

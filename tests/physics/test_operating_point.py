@@ -8,27 +8,13 @@ import pytest
 from designs import MakeDesign, plain_design
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from points import RODS, STRIP, likely, point, polygon, rectangle
 from scipy.constants import c, mu_0
 
-from magsafe import words
 from magsafe.analysis.chain import QUALITY_ERROR, REACTANCE_ERROR, RESISTANCE_ERROR, VOLTAGE_ERROR
-from magsafe.analysis.figures import Figures
-from magsafe.analysis.flow import flow
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
 from magsafe.analysis.wires import shape_of, wire_of
 from magsafe.physics import conductor, inductance, small_loop, thin_wire
-
-
-def point(**changes: Any) -> OperatingPoint:
-    made = plain_design(**changes)
-    return operating_point(made, made.transmission[0])
-
-
-def likely(found: OperatingPoint, name: str) -> float:
-    value: float | None = getattr(found.figures, name).spread.likely
-    assert value is not None
-    return value
-
 
 FULL_WAVE = [
     # frequency, figure, value: full-wave values computed independently of this project
@@ -164,76 +150,6 @@ def test_a_polygon_is_nearly_the_circle_of_its_area() -> None:
     )
 
 
-STRIP = {"form": "strip", "width": "40 mm", "thickness": "1 mm", "conductivity": "58 MS/m"}
-RODS = {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"}
-THIN_PLATED = {
-    "form": "tube",
-    "outer_diameter": "22 mm",
-    "wall": "0.06 mm",
-    "conductivity": "58 MS/m",
-    "plating": {"material": "silver", "thickness": "5 um"},
-}
-
-OUT_OF_RANGE = [
-    # what is changed, a word of the reason; the range on its other side is held below
-    ({"transmission__0__frequency": "286.5 MHz", "capacitor": {"kind": "none"}}, "3 wavelengths long"),
-    ({"transmission__0__frequency": "0.19 MHz", "loop__diameter": "0.5 m"}, "0.000996 wavelengths long"),
-    ({"loop__conductor__outer_diameter": "60.2 mm"}, "0.0602 of the loop's"),
-    ({"loop__turns": 2, "loop__turn_spacing": "22.4 mm"}, "1.02 diameters"),
-    ({"loop__conductor": STRIP, "loop__turns": 2, "loop__turn_spacing": "80 mm"}, "turns of a strip"),
-    ({"loop__conductor": THIN_PLATED}, "2.42 skin depths"),
-]
-JUST_IN_RANGE: list[dict[str, Any]] = [
-    {"transmission__0__frequency": "286 MHz", "capacitor": {"kind": "none"}},
-    {"transmission__0__frequency": "0.192 MHz", "loop__diameter": "0.5 m"},
-    {"loop__conductor__outer_diameter": "59.9 mm"},
-    {"loop__turns": 2, "loop__turn_spacing": "22.5 mm", "transmission__0__frequency": "3.6 MHz"},
-    {"loop__conductor": STRIP},
-    {"loop__conductor": {**THIN_PLATED, "wall": "0.075 mm"}},
-    {"loop__conductor": {"form": "tube", "outer_diameter": "22 mm", "wall": "0.06 mm", "conductivity": "58 MS/m"}},
-]
-
-
-def nothing_is_computed(found: OperatingPoint) -> bool:
-    told = ("perimeter_in_wavelengths",)
-    names = [each for each in Figures.__dataclass_fields__ if each not in told]
-    known = [name for name in names if getattr(found.figures, name).spread.known]
-    return not known and found.bare_voltage is None and found.bare_current is None and not found.ground_cases
-
-
-@pytest.mark.parametrize(("changes", "word"), OUT_OF_RANGE, ids=[word for _, word in OUT_OF_RANGE])
-def test_beyond_every_method_nothing_is_stretched(changes: dict[str, Any], word: str) -> None:
-    found = point(**changes)
-    assert len(found.out_of_range) == 1
-    assert word in found.out_of_range[0]
-    assert nothing_is_computed(found)
-    assert word in found.figures.capacitor_peak_voltage.why
-    assert found.figures.perimeter_in_wavelengths.spread.known
-    assert not found.beyond_tuning
-
-
-@pytest.mark.parametrize("changes", JUST_IN_RANGE)
-def test_just_within_its_range_a_loop_is_computed(changes: dict[str, Any]) -> None:
-    found = point(**changes)
-    assert not found.out_of_range
-    assert found.figures.radiation_resistance.spread.known
-
-
-def test_the_length_of_all_turns_counts() -> None:
-    """Six turns of 0.524 wavelengths are 3.1 long; five are 2.6."""
-    turns = {"loop__turn_spacing": "100 mm", "transmission__0__frequency": "50 MHz", "capacitor": {"kind": "none"}}
-    assert "3.14 wavelengths" in point(loop__turns=6, **turns).out_of_range[0]
-    assert not point(loop__turns=5, **turns).out_of_range
-
-
-def test_two_reasons_are_both_told() -> None:
-    found = point(
-        transmission__0__frequency="0.19 MHz", loop__diameter="0.5 m", loop__conductor__outer_diameter="80 mm"
-    )
-    assert len(found.out_of_range) == 2
-    assert all(reason in found.figures.unloaded_q.why for reason in found.out_of_range)
-
-
 POWERS = st.floats(0.01, 5000.0)
 MILLIOHMS = st.floats(0.0, 500.0)
 
@@ -293,20 +209,6 @@ def test_more_loss_never_raises_a_voltage_or_an_efficiency(
             assert low <= high * (1.0 + 1e-9), (name, end)
 
 
-@settings(max_examples=30, deadline=None)
-@given(diameter=st.floats(0.3, 3.0), share=st.floats(0.01, 0.25), thick=st.floats(0.001, 0.05))
-def test_every_spread_is_in_order_over_the_whole_range(diameter: float, share: float, thick: float) -> None:
-    frequency = share * 299.792458 / (3.14159265 * diameter)
-    if not 0.1 < frequency < 300.0:
-        return
-    found = point(
-        loop__diameter=f"{diameter:.6f} m",
-        loop__conductor__outer_diameter=f"{max(diameter * thick * 1000.0, 0.1):.4f} mm",
-        transmission__0__frequency=f"{frequency:.6f} MHz",
-    )
-    assert not [reason for reason in found.out_of_range if "wavelengths" not in reason]
-
-
 def test_a_line_loss_of_one_value_lowers_no_volts(design: MakeDesign) -> None:
     single = point(feed={"line_loss": "3 dB"})
     stated = point(feed={"line_loss": {"low": "3 dB", "likely": "3 dB", "high": "3 dB"}})
@@ -331,201 +233,6 @@ def test_am_reaches_four_times_its_carrier() -> None:
     found = point(transmission__0={"frequency": "7.1 MHz", "carrier_power": "25 W", "mode": "AM"})
     assert found.power == pytest.approx(100.0)
     assert likely(found, "capacitor_peak_voltage") == pytest.approx(likely(point(), "capacitor_peak_voltage"))
-
-
-def polygon(sides: int, perimeter: float, conductor: float) -> dict[str, Any]:
-    return {
-        "shape": "polygon",
-        "sides": sides,
-        "perimeter": f"{perimeter} m",
-        "conductor": {"form": "rod", "outer_diameter": f"{1e3 * conductor} mm", "conductivity": "58 MS/m"},
-    }
-
-
-def rectangle(width: float, height: float) -> dict[str, Any]:
-    return {"shape": "rectangle", "width": f"{width} m", "height": f"{height} m", "conductor": RODS}
-
-
-SHORT_SIDES = [
-    # loop, its shortest side in conductor radii
-    (polygon(12, 3.1416, 0.0880), 5.95),
-    (rectangle(1.5, 0.0655), 5.95),
-    (
-        {
-            "shape": "outline",
-            "points": [["0 m", "0 m"], ["1 m", "0 m"], ["1 m", "1 m"], ["0.0655 m", "1 m"], ["0 m", "1 m"]],
-            "conductor": RODS,
-        },
-        5.95,
-    ),
-]
-
-
-@pytest.mark.parametrize(("loop", "radii"), SHORT_SIDES)
-def test_a_side_that_a_corner_fills_is_named_and_nothing_is_guessed(loop: dict[str, Any], radii: float) -> None:
-    found = point(loop=loop)
-    assert any(f"a side is {radii:.3g} times as long" in reason for reason in found.out_of_range)
-    assert nothing_is_computed(found)
-
-
-@pytest.mark.parametrize(
-    "loop", [polygon(12, 3.1416, 0.0590), rectangle(1.5, 0.0665), rectangle(0.9, 0.7), polygon(3, 3.0, 0.02)]
-)
-def test_a_side_just_long_enough_is_computed(loop: dict[str, Any]) -> None:
-    found = point(loop=loop)
-    assert not found.out_of_range
-    assert found.bare_voltage is not None
-
-
-def test_no_series_capacitor_tunes_above_the_anti_resonance() -> None:
-    """A line of half the perimeter, short-circuited, is open at a quarter wavelength: 0.5 round, less by the gap."""
-    plain = point()
-    limit = plain.tuning_limit
-    assert limit is not None
-    assert 0.42 < np.pi * limit / c < 0.5
-    at = f"{words.amount(limit, 'Hz', 'MHz')}"
-    above = point(transmission__0__frequency=f"{limit * 1.001 / 1e6:.6f} MHz")
-    assert above.beyond_tuning
-    assert above.tuning_limit == pytest.approx(limit, rel=1e-3)
-    assert nothing_is_computed(above)
-    assert above.out_of_range == (f"no series capacitor tunes this loop above its anti-resonance at {at}",)
-    assert "anti-resonance" in above.figures.capacitor_peak_voltage.why
-    near = point(transmission__0__frequency=f"{limit * 0.99 / 1e6:.6f} MHz")
-    assert not near.beyond_tuning
-    assert nothing_is_computed(near)
-    assert f"anti-resonance at {at}" in near.out_of_range[0]
-    assert "gap decides" in near.out_of_range[0]
-    below = point(transmission__0__frequency=f"{limit * 0.85 / 1e6:.6f} MHz")
-    assert not below.out_of_range
-    assert below.bare_voltage is not None
-    again = point(transmission__0__frequency="110 MHz")  # above its first resonance it is inductive once more
-    assert again.beyond_tuning
-    assert nothing_is_computed(again)
-
-
-def test_a_plane_that_moves_the_anti_resonance_below_the_frequency_stops_the_figures() -> None:
-    """Close below its capacitor a plane loads the port: capacitive there, and inductive yet in free space."""
-    changes = {
-        "loop__conductor__outer_diameter": "5 mm",
-        "transmission__0__frequency": "40 MHz",
-        "capacitor__position": "bottom",
-    }
-    over = {"site__ground": "perfect", "loop__centre_height": "0.506 m"}
-    design = plain_design(**changes, **over)
-    assert flow(design, 40e6, "bottom", image=False).reactance > 2000.0
-    assert flow(design, 40e6, "bottom", image=True).reactance < -2000.0
-    assert point(**changes).bare_voltage is not None
-    found = point(**changes, **over)
-    assert not found.beyond_tuning
-    assert "gap decides" in found.out_of_range[0]
-    assert nothing_is_computed(found)
-
-
-@pytest.mark.parametrize(("height", "computed"), [("0.521 m", False), ("0.525 m", True)])
-def test_a_conductor_nearer_to_the_ground_than_its_diameter_is_not_computed(height: str, computed: bool) -> None:
-    found = point(loop__centre_height=height, site__ground="average")
-    assert (not found.out_of_range) == computed
-    assert computed or "nearer to the ground than its own diameter" in found.out_of_range[0]
-    assert computed or nothing_is_computed(found)
-    assert not point(loop__centre_height=height).out_of_range
-
-
-@pytest.mark.parametrize("megahertz", [1.0, 7.1, 21.0, 40.0])
-def test_the_tuning_limit_is_the_loop_s_and_not_the_frequency_s(megahertz: float) -> None:
-    """At the limit the reactance jumps from above to below zero."""
-    found = point(transmission__0__frequency=f"{megahertz} MHz").tuning_limit
-    assert found is not None
-    design = plain_design(transmission__0__frequency="46 MHz")
-    below, above = (flow(design, share * found, "top", image=False).reactance for share in (0.998, 1.002))
-    assert below > 3000.0
-    assert above < -3000.0
-
-
-def test_close_turns_have_a_tuning_limit_too() -> None:
-    """Two turns 1.2 diameters apart are a line of their own: the reactance jumps between 9 and 9.5 MHz."""
-    changes = {"loop__turns": 2, "loop__turn_spacing": "12 mm", "loop__conductor__outer_diameter": "10 mm"}
-    found = point(transmission__0__frequency="12 MHz", **changes)
-    assert found.tuning_limit is not None
-    assert found.beyond_tuning
-
-
-def fed(megahertz: float, **changes: Any) -> OperatingPoint:
-    """A loop without a capacitor, of 3.2 mm wire, fed as it is."""
-    wire = {"form": "rod", "outer_diameter": "3.2 mm", "conductivity": "58 MS/m"}
-    return point(
-        capacitor={"kind": "none"}, loop__conductor=wire, transmission__0__frequency=f"{megahertz} MHz", **changes
-    )
-
-
-def test_a_loop_without_a_capacitor_has_the_figures_of_its_terminals() -> None:
-    """A wavelength round: some 100 to 150 ohm and resonant at 1.03 to 1.1 wavelengths (common practice)."""
-    found = fed(95.4)
-    resonance = likely(found, "nearest_resonance")
-    assert 1.03 < np.pi * resonance / c < 1.10
-    there = fed(resonance / 1e6)
-    assert likely(there, "nearest_resonance") == pytest.approx(resonance, rel=1e-4)
-    assert abs(likely(there, "terminal_reactance")) < 3.0
-    ohms = likely(there, "terminal_resistance")
-    assert 100.0 < ohms < 150.0
-    assert likely(there, "swr_at_50_ohm") == pytest.approx(ohms / 50.0, rel=0.01)
-    assert ohms == pytest.approx(likely(there, "total_resistance"))
-    assert likely(there, "terminal_reactance") == likely(there, "port_reactance")
-    assert likely(there, "conductor_efficiency") > 0.99
-    for name in ("capacitor_peak_voltage", "capacitor_rms_current", "unloaded_q", "tuning_capacitance"):
-        figure = getattr(found.figures, name)
-        assert not figure.spread.known
-        assert "no capacitor" in figure.why
-    assert found.bare_voltage is None
-    assert found.bare_current == pytest.approx((100.0 / likely(found, "total_resistance")) ** 0.5, rel=0.02)
-    assert not found.beyond_tuning
-    assert found.opinion is None
-    assert not found.bound_ratio.known
-
-
-@pytest.mark.parametrize("megahertz", [60.0, 95.4, 110.0])
-def test_the_swr_is_that_of_the_terminals(megahertz: float) -> None:
-    """(|Z + Z0| + |Z - Z0|) / (|Z + Z0| - |Z - Z0|): any textbook; its ends over those of the losses."""
-    found = fed(megahertz)
-    z = complex(likely(found, "terminal_resistance"), likely(found, "terminal_reactance"))
-    total, less = abs(z + 50.0), abs(z - 50.0)
-    swr = found.figures.swr_at_50_ohm.spread
-    assert swr.likely == pytest.approx((total + less) / (total - less), rel=1e-9)
-    assert (swr.low or 0.0) <= (swr.likely or 0.0) <= (swr.high or 0.0)
-
-
-def test_a_fed_loop_over_soil_keeps_its_open_ends() -> None:
-    found = fed(100.0, site__ground="average", loop__centre_height="3 m").figures
-    assert found.terminal_resistance.spread.high is None
-    assert "soil" in found.terminal_resistance.why
-    assert found.swr_at_50_ohm.spread.low is None
-    assert found.swr_at_50_ohm.spread.high is None
-    assert "soil" in found.swr_at_50_ohm.why
-    tall = fed(100.0, site__ground="perfect", loop__centre_height="3 m").figures
-    assert tall.terminal_resistance.spread.high is not None
-    assert tall.swr_at_50_ohm.spread.high is not None
-    tuned = point().figures
-    for name in ("terminal_resistance", "terminal_reactance", "swr_at_50_ohm", "nearest_resonance"):
-        assert not getattr(tuned, name).spread.known
-        assert "full-wave" in getattr(tuned, name).why
-
-
-def test_far_from_any_resonance_none_is_told() -> None:
-    found = fed(30.0).figures.nearest_resonance
-    assert not found.spread.known
-    assert "half the frequency" in found.why
-
-
-def test_directivities_of_small_and_large_loops() -> None:
-    """A small loop's 1.5 in its plane and nothing along its axis; a wavelength round some 2.2 along it (Kraus; memory).
-
-    Up to a third of a decibel for the feed: a loop of one wavelength, Balanis, Antenna Theory, chapter 5 (memory).
-    """
-    small = point(transmission__0__frequency="1 MHz")
-    assert likely(small, "directivity_in_plane") == pytest.approx(1.5, rel=0.02)
-    assert likely(small, "directivity_along_axis") < 0.01
-    large = fed(95.4)
-    assert likely(large, "directivity_along_axis") == pytest.approx(2.2, rel=0.1)
-    assert likely(large, "directivity_in_plane") < likely(large, "directivity_along_axis")
 
 
 @pytest.mark.parametrize("sides", [3, 4, 8])
@@ -625,13 +332,6 @@ def test_a_thin_strip_has_the_inductance_of_a_rod_of_half_its_width() -> None:
     assert flat == pytest.approx(round_one, rel=0.004)
 
 
-def test_no_efficiency_is_more_than_all() -> None:
-    spread = fed(95.4).figures.conductor_efficiency.spread
-    assert spread.likely is not None
-    assert 0.996 < spread.likely < 1.0
-    assert spread.high == 1.0
-
-
 def test_q_is_held_against_the_bound_of_the_sphere_that_holds_the_conductor() -> None:
     """McLean 1996 (memory): Q at least the efficiency times 1/(kr)^3 + 1/(kr), r to the conductor's outside."""
     found = point(capacitor__series_resistance="20 mohm", transmission__0__frequency="14.2 MHz")
@@ -714,3 +414,65 @@ def test_soil_of_low_permittivity_takes_more_away() -> None:
     true = total - (1.0 - 0.851) * radiation
     volts = likely(free, "capacitor_peak_voltage") * (total / true) ** 0.5
     assert worst_volts(found) >= volts
+
+
+LONG = {"shape": "rectangle", "width": "1.6 m", "height": "0.5 m", "conductor": RODS}
+
+
+@pytest.mark.parametrize("site", [{}, {"site__ground": "perfect", "loop__centre_height": "0.6 m"}])
+def test_a_capacitor_of_no_stated_place_is_held_wherever_it_may_be(site: dict[str, Any]) -> None:
+    """Of a rectangle the place matters: every end holds those of all places, and is that of one of them."""
+    changes = {"transmission__0__frequency": "21 MHz", "capacitor__series_resistance": "20 mohm", **site}
+    anywhere = point(loop=LONG, **changes).figures
+    there = [point(loop=LONG, capacitor__position=each, **changes).figures for each in ("top", "bottom", "side")]
+    told = (
+        "capacitor_peak_voltage",
+        "conductor_resistance",
+        "radiation_resistance",
+        "total_resistance",
+        "conductor_efficiency",
+        "port_reactance",
+        "unloaded_q",
+    )
+    for name in told:
+        lows = [getattr(each, name).spread.low for each in there]
+        highs = [getattr(each, name).spread.high for each in there]
+        # The stated error of the reactance is that of the likely place, steeper or flatter.
+        near = 0.01 if name == "port_reactance" else 1e-6
+        assert getattr(anywhere, name).spread.low == pytest.approx(min(lows), rel=near), name
+        assert getattr(anywhere, name).spread.high == pytest.approx(max(highs), rel=near), name
+        assert max(highs) > 1.001 * min(highs) or name == "conductor_efficiency", name
+
+
+def test_the_typical_loss_of_a_kind_counts_in_the_best_efficiency() -> None:
+    """Q of a vacuum variable is 10000 at most (common practice); nothing proves it, and the figure has it."""
+    found = point(capacitor__series_resistance=None, transmission__0__frequency="14.2 MHz").figures
+    sent, along = found.radiation_resistance.spread.likely or 0.0, found.conductor_resistance.spread.likely or 0.0
+    along *= 1.0 - 0.044 / pi  # there may be no conductor in the port
+    own = (found.port_reactance.spread.likely or 0.0) / 10000.0
+    assert own > 0.02 * (sent + along)
+    best = (1.0 + RESISTANCE_ERROR) * sent / (sent + along + own)
+    assert found.conductor_efficiency.spread.high == pytest.approx(best, rel=3e-3)
+
+
+def test_one_stated_resistance_of_a_capacitor_has_the_typical_low_end_by_the_loop_s_reactance() -> None:
+    """A Q of 10000 at most (common practice): the reactance over it, less than the 50 mohm stated."""
+    found = point(capacitor__series_resistance="50 mohm", transmission__0__frequency="14.2 MHz").figures
+    reactance = found.port_reactance.spread.likely or 0.0
+    assert found.capacitor_resistance.spread.low == pytest.approx(reactance / 10000.0, rel=1e-6)
+    assert found.capacitor_resistance.spread.high == pytest.approx(0.05, rel=1e-6)
+
+
+def test_size_and_thickness_are_as_they_are_defined() -> None:
+    """Perimeter over wavelength, and Storer's 2 ln(perimeter / conductor radius) (memory)."""
+    found = point(loop__turns=2, loop__turn_spacing="80 mm")
+    assert likely(found, "perimeter_in_wavelengths") == pytest.approx(pi * 7.1e6 / c, rel=1e-12)
+    assert likely(found, "thickness_parameter") == pytest.approx(2.0 * np.log(pi / 0.011), rel=1e-12)
+
+
+def test_of_two_turns_the_port_takes_a_share_of_the_whole_conductor() -> None:
+    """Four conductor radii of two turns may have no conductor in them; the stated error comes on top."""
+    changes = {"loop__turns": 2, "loop__turn_spacing": "80 mm", "transmission__0__frequency": "0.5 MHz"}
+    spread = point(**changes).figures.conductor_resistance.spread
+    share = (1.0 - 0.044 / (2.0 * pi)) * (1.0 - RESISTANCE_ERROR)
+    assert (spread.low or 0.0) / (spread.likely or 1.0) == pytest.approx(share, rel=3e-4)
