@@ -108,3 +108,39 @@ def test_crowding_raises_the_internal_reactance_as_it_raises_the_loss(turns: int
     found = flow(design, 0.3e6, "top", image=False)
     assert found.internal_length == pytest.approx(found.conductor_length, rel=1e-3)
     assert found.conductor_length > 1.1 * turns * outline(design.loop).perimeter * found.mean_square
+
+
+def port_of(points: list[tuple[float, float]], place: str) -> tuple[float, float]:
+    """Where the middle of the port lies, from the corner of the outline's box that is lowest and leftmost [m]."""
+    corners = [[f"{across} m", f"{up} m"] for across, up in points]
+    design = plain_design(loop={"shape": "outline", "points": corners, "conductor": THIN}, capacitor__position=place)
+    wire = wire_of(shape_of(design.loop, 7.1e6, place))
+    middle = 0.5 * (wire.nodes[0] + wire.nodes[1]) - wire.nodes.min(axis=0)
+    return float(middle[1]), float(middle[2])
+
+
+def test_of_sides_as_high_the_longest_holds_the_port_and_of_equal_ones_the_rightmost() -> None:
+    """Two towers with a notch between them; and the same upside down, and lying on its side."""
+    for left in (1.0, 1.2):
+        towers = [(0.0, 0.0), (3.0, 0.0), (3.0, 1.0), (2.0, 1.0), (1.6, 0.4), (left, 1.0), (0.0, 1.0)]
+        wanted = 2.5 if left == 1.0 else left / 2.0
+        assert port_of(towers, "top") == pytest.approx((wanted, 1.0), abs=1e-3)
+        hanging = [(across, 1.0 - up) for across, up in towers]
+        assert port_of(hanging, "bottom") == pytest.approx((wanted, 0.0), abs=1e-3)
+    lying = [(up, across) for across, up in towers]
+    assert port_of(lying, "side") == pytest.approx((1.0, 0.6), abs=1e-3)
+
+
+@pytest.mark.parametrize(("place", "side"), [("side", 0.07), ("top", 1.5)])
+def test_a_port_takes_no_more_than_half_of_its_side(place: str, side: float) -> None:
+    """Four conductor radii are 44 mm; of a side of 70 mm half is less."""
+    design = plain_design(
+        loop={
+            "shape": "rectangle",
+            "width": "1.5 m",
+            "height": "70 mm",
+            "conductor": {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"},
+        }
+    )
+    wire = wire_of(shape_of(design.loop, 7.1e6, place))
+    assert float(wire.length[0]) == pytest.approx(min(0.044, side / 2.0), rel=1e-6)

@@ -257,6 +257,45 @@ def test_plating_that_is_poorer_than_its_base_is_held_at_every_pair_of_ends() ->
     assert found.high == pytest.approx(1.1 * max(tried), rel=1e-6)
 
 
+@pytest.mark.parametrize("name", ["brass", "aluminium 6061-T6"])
+def test_each_material_warms_and_cools_by_its_own_coefficient(name: str) -> None:
+    """The skin's resistance goes as the root of the resistivity, which is linear (Dellinger 1911, memory)."""
+    row = tables.materials()[name]
+    assert row.coefficient != pytest.approx(losses.COPPER_COEFFICIENT, rel=0.02)
+    keys = {"form": "rod", "outer_diameter": "22 mm", "material": name}
+    cool, hot = (conductor_of(**keys, temperature=each) for each in ("20 degC", "80 degC"))
+    assert per_metre(hot).likely / per_metre(cool).likely == pytest.approx((1.0 + 60.0 * row.coefficient) ** 0.5, 1e-3)
+    cold = per_metre(cool, coldest=253.15)
+    assert cold.low / per_metre(cool).low == pytest.approx((1.0 - 40.0 * row.coefficient) ** 0.5, 1e-3)
+
+
+def test_a_thick_layer_warms_cools_and_scatters_as_its_own_metal() -> None:
+    """Twelve skin depths of silver on copper are silver: every end is that of a silver rod."""
+    silver = {"form": "rod", "outer_diameter": "22 mm", "material": "silver"}
+    plated = {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"}
+    layer = {"material": "silver", "thickness": "200 um"}
+    for temperature, coldest in (("20 degC", 293.15), ("80 degC", 353.15), ("20 degC", 253.15), ("20 degC", 333.15)):
+        found = per_metre(conductor_of(**plated, plating=layer, temperature=temperature), coldest=coldest)
+        wanted = per_metre(conductor_of(**silver, temperature=temperature), coldest=coldest)
+        assert ends_of(found) == pytest.approx(ends_of(wanted), rel=2e-3), (temperature, coldest)
+
+
+def test_between_thin_and_thick_the_larger_error_of_a_strip_counts() -> None:
+    """At eight skin depths the stated error grows with conductivity, and the material scatters: all three are held."""
+    row = tables.materials()["copper tube"]
+    thickness = 8.0 * float(conductor.skin_depth(FREQUENCY, row.conductivity))
+    made_of = conductor_of(form="strip", width="20 mm", thickness=f"{1e3 * thickness:.9f} mm", material="copper tube")
+    better, likely, worse = (
+        strip.strip_impedance(FREQUENCY, row.conductivity * (1.0 + share * row.scatter), 0.020, thickness)
+        for share in (1.0, 0.0, -1.0)
+    )
+    error = max(each.above for each in (better, likely, worse))
+    assert error > 1.03 * min(each.above for each in (better, likely, worse))
+    found = per_metre(made_of)
+    assert found.bare == pytest.approx(better.impedance.real * (1.0 - error), rel=1e-9)
+    assert found.high == pytest.approx(1.1 * worse.impedance.real * (1.0 + error), rel=1e-9)
+
+
 def solved(megahertz: float, **changes: Any) -> OperatingPoint:
     made = plain_design(transmission__0__frequency=f"{megahertz} MHz", **changes)
     return operating_point(made, made.transmission[0])
@@ -409,5 +448,5 @@ def test_where_each_part_sits_is_what_the_file_says() -> None:
 
 
 def test_capacitors_without_a_kind_of_wiper_ignore_it() -> None:
-    part = Capacitor(kind="vacuum variable")
+    part = Capacitor.model_construct(kind="vacuum variable", wiper=True)
     assert losses.capacitor_typical(part) == tables.capacitor_quality_factor("vacuum variable")

@@ -351,6 +351,19 @@ def test_q_is_held_against_the_bound_of_the_sphere_that_holds_the_conductor() ->
     assert over.bound_ratio == found.bound_ratio  # the bound is that of free space
 
 
+def test_the_sphere_of_a_winding_holds_all_its_turns_and_its_link() -> None:
+    """McLean 1996 (memory); two turns a metre apart, whose nodes tell how far the conductor reaches."""
+    changes = {"loop__turns": 2, "loop__turn_spacing": "1 m", "capacitor__series_resistance": "20 mohm"}
+    design = plain_design(**changes)
+    nodes = wire_of(shape_of(design.loop, 7.1e6, "top")).nodes
+    reach = float(np.linalg.norm(nodes, axis=1).max())
+    assert reach > 1.5
+    kr = 2.0 * np.pi * 7.1e6 / c * (reach + 0.011)
+    found = point(**changes)
+    bound = likely(found, "conductor_efficiency") * (1.0 / kr**3 + 1.0 / kr)
+    assert found.bound_ratio.likely == pytest.approx(likely(found, "unloaded_q") / bound, rel=0.02)
+
+
 @pytest.mark.parametrize("megahertz", [2.0, 14.2, 24.0, 33.0, 40.0])
 def test_no_loop_is_better_than_the_bound(megahertz: float) -> None:
     found = point(transmission__0__frequency=f"{megahertz} MHz")
@@ -471,8 +484,8 @@ def test_size_and_thickness_are_as_they_are_defined() -> None:
 
 
 def test_of_two_turns_the_port_takes_a_share_of_the_whole_conductor() -> None:
-    """Four conductor radii of two turns may have no conductor in them; the stated error comes on top."""
-    changes = {"loop__turns": 2, "loop__turn_spacing": "80 mm", "transmission__0__frequency": "0.5 MHz"}
+    """Four conductor radii of two turns may have no conductor in them; a metre apart, they do not crowd."""
+    changes = {"loop__turns": 2, "loop__turn_spacing": "1 m", "transmission__0__frequency": "0.5 MHz"}
     spread = point(**changes).figures.conductor_resistance.spread
     share = (1.0 - 0.044 / (2.0 * pi)) * (1.0 - RESISTANCE_ERROR)
     assert (spread.low or 0.0) / (spread.likely or 1.0) == pytest.approx(share, rel=3e-4)

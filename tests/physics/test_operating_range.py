@@ -275,8 +275,8 @@ def test_the_ends_of_the_terminals_are_the_extremes_of_the_circuit(megahertz: fl
     Losses as at their ends: 1.1 for roughness and oxide (common practice), at least no conductor in the port.
     """
     frequency = megahertz * 1e6
-    sleeves = {"low": "0 ohm", "likely": "10 ohm", "high": "30 ohm"}
-    found = fed(megahertz, loop__joint=[{"name": "sleeves", "at": "spread", "resistance": sleeves}])
+    sleeves = {"low": "0 ohm", "likely": "2 ohm", "high": "7.5 ohm"}
+    found = fed(megahertz, loop__joint=[{"name": "sleeves", "at": "spread", "count": 4, "resistance": sleeves}])
     wire = {"form": "rod", "outer_diameter": "3.2 mm", "conductivity": "58 MS/m"}
     design = plain_design(
         capacitor={"kind": "none"}, loop__conductor=wire, transmission__0__frequency=f"{megahertz} MHz"

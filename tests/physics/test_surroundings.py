@@ -378,3 +378,13 @@ def test_the_port_is_where_the_capacitor_is_said_to_be(loop: dict[str, Any], up:
     there["loop"]["plane"] = "horizontal"
     wire = around(**there).free[0].segments()
     assert 0.5 * (wire.start[0] + wire.end[0]) == pytest.approx(np.array([across, 0.0, 3.0]), abs=2e-3)
+
+
+def test_a_missing_height_goes_below_every_height_of_a_large_loop() -> None:
+    """Above 0.38 wavelengths the dipole proves nothing: all that the image adds may be lost at any height."""
+    changes: dict[str, Any] = {"site__ground": "average", "capacitor__position": "side"}
+    for megahertz in (38.0, 100.0):
+        anywhere = min(shares(around(megahertz, **changes)))
+        for metres in (0.6, 0.9, 1.5, 2.5, 3.9):
+            there = around(megahertz, loop__centre_height=f"{metres} m", **changes)
+            assert anywhere <= min(shares(there)) + 1e-12, (megahertz, metres)
