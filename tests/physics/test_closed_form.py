@@ -87,6 +87,31 @@ def test_the_opinion_is_sharp_where_it_can_be(sides: int | None, share: float) -
         assert abs(each.ratio - 1.0) < 0.02 + grown / 2.0
 
 
+@pytest.mark.parametrize("sides", [None, 3, 8])
+@pytest.mark.parametrize("thickness", [0.002, 0.03])
+def test_what_is_allowed_is_the_study_s_error_at_a_quarter_wave_and_its_square_below(
+    sides: int | None, thickness: float
+) -> None:
+    """And of a tiny loop what both methods leave open anyway: a hundredth, and the corners' inductance."""
+    error = small_loop.closed_form_error(sides)
+    design = made(sides, thickness, 0.002)
+    corner = chain_of(design).corner_error
+    assert (corner > 1e-4) == (sides is not None)
+    for share in (0.002, 0.125, 0.2499):
+        found, grown, x = by_name(opinion_of(made(sides, thickness, share))), (share / 0.25) ** 2, np.pi * share
+        shunts = (error.least_shunt, small_loop.largest_shunt(thickness))
+        less, more = (taken / (1.0 - taken) for taken in (shunt * x * np.tan(x) for shunt in shunts))
+        wanted = {
+            "volts": (error.voltage_below * grown, error.voltage_above * grown, 0.008),
+            "Q": (error.quality_below * grown, error.quality_above * grown, 0.012),
+            "efficiency": (0.0, error.efficiency_above * grown, 0.010),
+            "reactance": (-min(less, 0.0), more, 0.007),
+        }
+        for name, (below, above, anyway) in wanted.items():
+            assert 1.0 - found[name].least == pytest.approx(below + anyway + corner, abs=8e-4), (share, name)
+            assert found[name].most - 1.0 == pytest.approx(above + anyway + corner, abs=8e-4), (share, name)
+
+
 @pytest.mark.parametrize("sides", [None, 3, 4, 12])
 @pytest.mark.parametrize("wrong", [0.9, 1.1])
 def test_a_wrong_size_is_seen(sides: int | None, wrong: float) -> None:

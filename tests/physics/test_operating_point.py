@@ -489,3 +489,11 @@ def test_of_two_turns_the_port_takes_a_share_of_the_whole_conductor() -> None:
     spread = point(**changes).figures.conductor_resistance.spread
     share = (1.0 - 0.044 / (2.0 * pi)) * (1.0 - RESISTANCE_ERROR)
     assert (spread.low or 0.0) / (spread.likely or 1.0) == pytest.approx(share, rel=3e-4)
+
+
+@pytest.mark.parametrize("sides", [3, 4])
+def test_what_rests_on_nothing_typical_is_as_uncertain_as_the_figure(sides: int) -> None:
+    """With every loss stated the bare volts are the high end of the volts, corners and all; so are the amperes."""
+    found = point(loop=polygon(sides, 3.1416, 0.022), transmission__0__frequency="14.2 MHz")
+    assert found.bare_voltage == pytest.approx(worst_volts(found), rel=1e-9)
+    assert found.bare_current == pytest.approx(found.figures.capacitor_rms_current.spread.high, rel=1e-9)

@@ -28,7 +28,7 @@ THIN_PLATED = {
 }
 # The innermost turn ends two and a half spacings inside the outermost one: a quarter of a metre from the centre.
 RODS_30 = {**RODS, "outer_diameter": "30.2 mm"}
-SPIRAL = {"loop__turn_arrangement": "nested"}
+SPIRAL, NESTED = {"loop__turn_arrangement": "nested"}, {"turn_arrangement": "nested"}
 
 OUT_OF_RANGE = [
     # what is changed, a word of the reason; the range on its other side is held below
@@ -39,6 +39,7 @@ OUT_OF_RANGE = [
     ({"loop__conductor": STRIP, "loop__turns": 2, "loop__turn_spacing": "80 mm"}, "turns of a strip"),
     ({"loop__conductor": THIN_PLATED}, "2.98 skin depths"),
     ({"loop__conductor": {**STRIP, "width": "60.5 mm"}}, "0.121 of the loop's radius wide"),
+    ({"loop": {**rectangle(1.6, 0.5), "conductor": {**STRIP, "width": "82 mm"}}}, "0.123 of the loop's radius wide"),
     ({"loop__conductor": RODS_30, "loop__turns": 3, "loop__turn_spacing": "100 mm", **SPIRAL}, "0.0604 of the loop's"),
 ]
 JUST_IN_RANGE: list[dict[str, Any]] = [
@@ -49,6 +50,10 @@ JUST_IN_RANGE: list[dict[str, Any]] = [
     {"loop__conductor": STRIP},
     {"loop__conductor": {**THIN_PLATED, "wall": "0.075 mm"}},
     {"loop__conductor": {**STRIP, "width": "59.5 mm"}},
+    {
+        "loop": {**rectangle(1.6, 0.5), "conductor": {**STRIP, "width": "79 mm"}},
+        "transmission__0__frequency": "7.1 MHz",
+    },
     {
         "loop__conductor": {**RODS_30, "outer_diameter": "29.8 mm"},
         "loop__turns": 3,
@@ -213,6 +218,41 @@ def test_a_conductor_nearer_to_the_ground_than_its_diameter_is_not_computed(heig
     assert not point(loop__centre_height=height).out_of_range
 
 
+def test_the_lowest_conductor_of_all_places_of_the_capacitor_decides() -> None:
+    """A hexagon with its port at the bottom stands on a side, with its port at the side on a corner."""
+    hexagon = {"shape": "polygon", "sides": 6, "across_flats": "1 m", "centre_height": "0.59 m", "conductor": RODS}
+    over = {"loop": hexagon, "site__ground": "perfect"}
+    assert "nearer to the ground" in point(**over).out_of_range[0]
+    assert not point(**over, capacitor__position="bottom").out_of_range
+
+
+def test_where_no_anti_resonance_is_found_a_loop_is_computed_as_far_as_it_was_looked_for() -> None:
+    """Fed in the middle of its long side, a flat rectangle is two shorted lines, each a quarter of its length."""
+    thin = {"form": "rod", "outer_diameter": "8 mm", "conductivity": "58 MS/m"}
+    flat = {"loop": {**rectangle(6.0, 0.06), "conductor": thin}, "capacitor__position": "top"}
+    perimeter = 12.12
+    for size, computed in ((0.5, True), (0.7, False)):
+        found = point(**flat, transmission__0__frequency=f"{size * c / perimeter / 1e6:.6f} MHz")
+        assert found.tuning_limit is None
+        assert not found.beyond_tuning
+        assert (not found.out_of_range) == computed, found.out_of_range
+    assert found.out_of_range == ("the conductor is 0.7 wavelengths long; what a capacitor tunes is computed to 0.62",)
+    assert nothing_is_computed(found)
+
+
+def test_a_spiral_without_room_for_its_innermost_turn_says_so() -> None:
+    corners = [["0 m", "0 m"], ["1 m", "0 m"], ["1 m", "1 m"], ["0 m", "1 m"]]
+    thin = {"form": "rod", "outer_diameter": "4 mm", "conductivity": "58 MS/m"}
+    spiral = {"shape": "outline", "points": corners, "turn_spacing": "100 mm", "conductor": thin, **NESTED}
+    found = point(loop={**spiral, "turns": 8}, transmission__0__frequency="1 MHz")
+    assert found.out_of_range == ("there is no room for the innermost turn",)
+
+
+@pytest.mark.parametrize(("ground", "left_out"), [("none", False), ("perfect", False), ("average", True)])
+def test_only_soil_is_left_out(ground: str, left_out: bool) -> None:
+    assert point(site__ground=ground, loop__centre_height="3 m").ground_left_out == left_out
+
+
 @pytest.mark.parametrize("megahertz", [1.0, 7.1, 21.0, 40.0])
 def test_the_tuning_limit_is_the_loop_s_and_not_the_frequency_s(megahertz: float) -> None:
     """At the limit the reactance jumps from above to below zero."""
@@ -237,6 +277,9 @@ def test_a_loop_without_a_capacitor_has_the_figures_of_its_terminals() -> None:
     found = fed(95.4)
     resonance = likely(found, "nearest_resonance")
     assert 1.03 < np.pi * resonance / c < 1.10
+    told = found.figures.nearest_resonance.spread
+    for end, sign in ((told.low, -1.0), (told.high, 1.0)):
+        assert end == pytest.approx(resonance * (1.0 + sign * REACTANCE_ERROR), rel=1e-6)
     there = fed(resonance / 1e6)
     assert likely(there, "nearest_resonance") == pytest.approx(resonance, rel=1e-4)
     assert abs(likely(there, "terminal_reactance")) < 3.0
@@ -350,20 +393,22 @@ def test_a_flat_loop_has_its_axis_upright() -> None:
     assert likely(flat, "directivity_in_plane") == pytest.approx(1.5, rel=0.02)
 
 
-def test_of_a_spiral_the_larger_side_is_told() -> None:
+@pytest.mark.parametrize(("spacing", "megahertz", "larger"), [(300.0, 60.0, 1.0), (200.0, 120.0, -1.0)])
+def test_of_a_spiral_the_larger_side_is_told(spacing: float, megahertz: float, larger: float) -> None:
     """Its closing link lies beside the plane of its turns, and a loop that large sends more to one side of it."""
     changes = {
         "capacitor": {"kind": "none"},
         "loop__turns": 2,
-        "loop__turn_spacing": "300 mm",
+        "loop__turn_spacing": f"{spacing} mm",
         "loop__conductor__outer_diameter": "3 mm",
         "loop__turn_arrangement": "nested",
-        "transmission__0__frequency": "60 MHz",
+        "transmission__0__frequency": f"{megahertz} MHz",
     }
-    far = FarField.of(flow(plain_design(**changes), 60e6, "top", image=False).segments(), 60e6)
-    sides = [far.directivity_along(np.array([way, 0.0, 0.0])) for way in (-1.0, 1.0)]
-    assert max(sides) > 1.05 * min(sides)
-    assert likely(point(**changes), "directivity_along_axis") == pytest.approx(max(sides), rel=1e-6)
+    frequency = megahertz * 1e6
+    far = FarField.of(flow(plain_design(**changes), frequency, "top", image=False).segments(), frequency)
+    there, behind = (far.directivity_along(np.array([way, 0.0, 0.0])) for way in (larger, -larger))
+    assert there > 1.04 * behind
+    assert likely(point(**changes), "directivity_along_axis") == pytest.approx(there, rel=1e-6)
 
 
 def test_no_efficiency_is_more_than_all() -> None:

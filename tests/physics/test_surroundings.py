@@ -388,3 +388,13 @@ def test_a_missing_height_goes_below_every_height_of_a_large_loop() -> None:
         for metres in (0.6, 0.9, 1.5, 2.5, 3.9):
             there = around(megahertz, loop__centre_height=f"{metres} m", **changes)
             assert anywhere <= min(shares(there)) + 1e-12, (megahertz, metres)
+
+
+@pytest.mark.parametrize("plane", PLANES)
+def test_without_a_height_no_image_stands_anywhere_and_the_fields_are_those_of_its_absence(plane: str) -> None:
+    """As strong as with the least resistance of any height; where an image would be nobody has said."""
+    found = around(21.0, site__ground="average", loop__plane=plane)
+    assert [state.flow for state in found.fields] == list(found.free)
+    least = min(state.radiated for state in found.least)
+    assert all(state.radiated == least for state in found.fields)
+    assert any(state.flow.image for state in found.least)

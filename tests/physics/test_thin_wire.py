@@ -1,5 +1,6 @@
 """The method of moments: convergence, derivatives, what is read off the current, the static kernel, errors."""
 
+from dataclasses import replace
 from itertools import pairwise
 
 import numpy as np
@@ -308,6 +309,14 @@ def test_a_frequency_above_the_highest_is_refused() -> None:
         thin_wire.solve(wire, np.array([5e6, 10.1e6]), parts)
 
 
+@pytest.mark.parametrize("height", [0.3, -0.6])
+def test_a_wire_that_reaches_down_to_the_plane_is_refused(height: float) -> None:
+    """Half-way through it or all below it; alone it may be anywhere."""
+    with pytest.raises(ValueError, match="reaches down to the plane"):
+        thin_wire.potentials(ring(height), 1e6, image=True)
+    thin_wire.potentials(ring(height), 1e6)
+
+
 # --- close turns ------------------------------------------------------------------------------
 
 
@@ -341,3 +350,15 @@ def test_crowding_is_that_of_the_wire() -> None:
     for turns in (2, 4):
         with pytest.raises(ValueError, match=f"{turns} turns"):
             thin_wire.potentials(wire, 1e6, crowding=crowded_coefficients(turns, 0.012, 0.01))
+    first = int(np.flatnonzero(wire.turn == 1)[0])
+    uneven = replace(wire, turn=np.where(np.arange(len(wire.turn)) == first, 0, wire.turn))
+    with pytest.raises(ValueError, match="the wire's turns are others"):
+        thin_wire.potentials(uneven, 1e6, crowding=crowded_coefficients(3, 0.012, 0.01))
+
+
+def test_the_image_of_close_turns_does_not_crowd_them() -> None:
+    """Crowding is between turns a spacing apart, and the plane is further away than that."""
+    wire = geometry.upright(cut(SHAPES["circle"], 5e-3, 24, 3, 0.012), 1.0)
+    crowding = crowded_coefficients(3, 0.012, 0.01)
+    even, crowded = (thin_wire.potentials(wire, 1e6, image=True, crowding=each).static for each in (None, crowding))
+    np.testing.assert_array_equal(crowded, even)
