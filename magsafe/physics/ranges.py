@@ -2,6 +2,10 @@
 
 from dataclasses import dataclass
 
+import numpy as np
+
+from magsafe.physics.arrays import Array, Values
+
 
 @dataclass(frozen=True, slots=True)
 class Range:
@@ -15,3 +19,12 @@ class Range:
     def holds(self, value: float) -> bool:
         """Return whether the method may be used at this value (NaN never)."""
         return self.low <= value <= self.high
+
+    def within(self, values: Values) -> Array:
+        """Return values as an array; raise ValueError if one of them lies outside, or is not a number."""
+        given = np.asarray(values, dtype=np.float64)
+        inside = (given >= self.low) & (given <= self.high)
+        if not inside.all():
+            first = given[~inside].flat[0]
+            raise ValueError(f"{self.quantity} {first:g} is outside {self.low:g} to {self.high:g} ({self.source})")
+        return given

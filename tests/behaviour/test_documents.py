@@ -33,7 +33,7 @@ def test_a_formula_has_its_identity_card(room: str, node: ast.FunctionDef, doc: 
     assert re.search(r"^Source", doc, re.M), "no Source"
     listed = doc.split("----------\n")[1].split("\nReturns", maxsplit=1)[0]
     names = [n for line in listed.splitlines() if (m := re.match(r"([\w, ]+) : ", line)) for n in m[1].split(", ")]
-    arguments = [a.arg for a in node.args.args]
+    arguments = [a.arg for a in (*node.args.args, *node.args.kwonlyargs)]
     assert names == arguments
     for line in listed.splitlines():
         if re.match(r"[\w, ]+ : ", line) and not any(t in line for t in ("currents", "field :")):
