@@ -8,7 +8,19 @@ from rich.text import Text
 
 from magsafe.errors import CommandError
 from magsafe.reports.terminal import console_on_output, put
-from magsafe.rules import Current, Limit, Rule, Segment, UnknownRule, Who, load_rule, rule_names
+from magsafe.rules import (
+    BodyMean,
+    Current,
+    Exemption,
+    Limit,
+    Rule,
+    Segment,
+    Summation,
+    UnknownRule,
+    Who,
+    load_rule,
+    rule_names,
+)
 from magsafe.rules.limit import WHO
 
 
@@ -37,9 +49,55 @@ def show_rule(name: str, console: Console | None = None) -> None:
     console = console or console_on_output()
     put(console, Text(rule.title, style="bold"), f"{rule.standard}\n{_edition(rule)}\n")
     put(console, f"How E and H are judged: {rule.how_judged}\n")
+    put(console, f"Several transmissions: {_added(rule.summation)}", f"{_rests(rule.summation)}\n")
+    put(console, f"Mean over the body: {_meant(rule.body)}", f"{_rests(rule.body)}\n")
     for who in WHO:
         _show_tier(console, rule, who)
+    _show_exemptions(console, rule)
     put(console, f"{rule.notes}\nFile {rule.file}, sha256 {rule.sha256}")
+
+
+def _added(summation: Summation) -> str:
+    said = {
+        "apart": "on a basis that is averaged, the squares of E over their limits come to no more than 1, and so do "
+        "those of H.",
+        "larger": "on a basis that is averaged, the larger of the squares of E and of H over their limits, added for "
+        "all, comes to no more than 1.",
+        "together": "on a basis that is averaged, the squares of E and of H over their limits, added for all, come to "
+        "no more than 1 together.",
+    }[summation.fields]
+    if summation.together_up_to is None:
+        return said
+    return f"{said} So up to {summation.together_up_to / 1e6:g} MHz; above, the larger of the two counts."
+
+
+def _meant(body: BodyMean) -> str:
+    if not body.mean:
+        return "does not count; the largest field over the body does."
+    near = "" if body.nearest is None else f", no nearer to the source than {body.nearest:g} m"
+    local = f" Left unjudged then: {body.local}." if body.local else ""
+    return f"of the square, where it is asked for, on {', '.join(body.bases)}{near}.{local}"
+
+
+def _rests(part: Summation | BodyMean | Exemption) -> str:
+    return f"Source: {part.source} ({part.provenance}): {part.provenance_detail}."
+
+
+def _show_exemptions(console: Console, rule: Rule) -> None:
+    for each in rule.exemptions:
+        counted = "the mean" if each.averaged else "the crest of the envelope"
+        title = f"Exempt from evaluation, not from the limits: {each.jurisdiction}, {each.name}"
+        put(console, Text(title, style="bold"))
+        if each.threshold is not None:
+            edge = "at or below" if each.included else "below"
+            put(console, f"{each.kind} {edge} {each.threshold:g} W; {counted} counts.")
+        else:
+            put(console, f"{each.kind}, R in m; {counted} counts. It holds from R = {each.valid_beyond} on.")
+            table = _table("MHz", "threshold, f in MHz")
+            for segment in each.segments:
+                table.add_row(_band(segment), _power_law("R^2 W", segment.coefficient, segment.exponent))
+            put(console, table)
+        put(console, _rests(each), *([each.notes] if each.notes else []), "")
 
 
 def _edition(rule: Rule) -> str:

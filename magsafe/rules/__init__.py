@@ -4,6 +4,7 @@ SI floats and the standard library only. Field limits are RMS, power is that of 
 crest unless it says "averaged", times are in seconds, shares are fractions 0..1.
 """
 
+from magsafe.rules.body import BodyMean
 from magsafe.rules.current import Current, Who
 from magsafe.rules.duty import (
     Mode,
@@ -21,23 +22,26 @@ from magsafe.rules.duty import (
     worst_window_share,
     worst_window_share_of_shorter_overs,
 )
+from magsafe.rules.exemption import Exemption
 from magsafe.rules.limit import (
     FieldKind,
     Limit,
     Rule,
     RuleFileError,
-    Tier,
     UnknownRule,
-    Without,
     load_rule,
     parse_rule,
     rule_names,
 )
 from magsafe.rules.segment import Provenance, Segment
+from magsafe.rules.summation import Summation
 from magsafe.rules.table import TableError, UnknownName
+from magsafe.rules.tier import Tier, Without
 
 __all__ = [
+    "BodyMean",
     "Current",
+    "Exemption",
     "FieldKind",
     "Limit",
     "Mode",
@@ -48,6 +52,7 @@ __all__ = [
     "Rule",
     "RuleFileError",
     "Segment",
+    "Summation",
     "TableError",
     "Tier",
     "TuneUp",

@@ -13,7 +13,9 @@ from hashlib import sha256
 from pathlib import Path
 from typing import Literal
 
+from magsafe.rules.body import BodyMean, read_body
 from magsafe.rules.current import WHO, Current, Who, read_current
+from magsafe.rules.exemption import Exemption, read_exemption
 from magsafe.rules.segment import (
     NOT_AVERAGED,
     PROVENANCES,
@@ -24,7 +26,9 @@ from magsafe.rules.segment import (
     read_averaging_time,
     read_segments,
 )
+from magsafe.rules.summation import Summation, read_summation
 from magsafe.rules.table import Entries, TableError, UnknownName, parse_toml
+from magsafe.rules.tier import Tier, Without, read_tier, read_without
 
 __all__ = [
     "FIELD_KINDS",
@@ -120,31 +124,13 @@ class Limit:
 
 
 @dataclass(frozen=True, slots=True)
-class Tier:
-    """Whom a tier means: in the rule's own words, and what that says, told in ours."""
-
-    who: Who
-    own_words: str
-    meaning: str
-    provenance: Provenance
-    provenance_detail: str
-
-
-@dataclass(frozen=True, slots=True)
-class Without:
-    """A tier for which a rule has no limits, and where to look instead."""
-
-    who: Who
-    why: str
-
-
-@dataclass(frozen=True, slots=True)
 class Rule:
     """One edition of a published exposure rule.
 
     `holds_from` and `holds_until` are ISO dates or their leading part; `holds_until` is None as
     long as no later edition is known. `sha256` is that of the bytes of `file`. A tier has rows, or stands in
-    `without`. `currents` are shown, never judged.
+    `without`. `summation` and `body` say how several transmissions add up, and whether a mean over the body counts.
+    `currents` and `exemptions` are shown, never judged.
     """
 
     name: str
@@ -159,7 +145,10 @@ class Rule:
     tiers: tuple[Tier, ...]
     rows: tuple[Limit, ...]
     without: tuple[Without, ...]
+    summation: Summation
+    body: BodyMean
     currents: tuple[Current, ...]
+    exemptions: tuple[Exemption, ...]
     file: str
     sha256: str
 
@@ -211,10 +200,13 @@ def parse_rule(content: bytes, file: str) -> Rule:
         holds_until=head.text("holds_until", default="") or None,
         how_judged=head.text("how_judged"),
         notes=head.text("notes", default=""),
-        tiers=tuple(_read_tier(each) for each in head.tables("tier")),
+        tiers=tuple(read_tier(each) for each in head.tables("tier")),
         rows=tuple(_read_limit(each, edition) for each in head.tables("limit")),
-        without=tuple(_read_without(each) for each in _optional(head, "without")),
-        currents=tuple(read_current(each) for each in _optional(head, "current")),
+        without=tuple(read_without(each) for each in head.optional_tables("without")),
+        summation=read_summation(head.table("summation")),
+        body=read_body(head.table("body")),
+        currents=tuple(read_current(each) for each in head.optional_tables("current")),
+        exemptions=tuple(read_exemption(each) for each in head.optional_tables("exemption")),
         file=file,
         sha256=sha256(content).hexdigest(),
     )
@@ -246,35 +238,20 @@ def _contradictions(rule: Rule) -> list[str]:
             problems.append(f"[[without]] says there is no limit for {who}, and there is one")
     currents = [f"{each.who}, {each.kind}" for each in rule.currents]
     problems += [f"two currents for {each}" for each in _repeated(currents)]
+    averaged = {row.basis for row in rule.rows if row.judged and row.averaged}
+    problems += [
+        f"[body] names {each}, which is no judged basis that is averaged"
+        for each in rule.body.bases
+        if each not in averaged
+    ]
+    problems += [f"[body] names {each} twice" for each in _repeated(rule.body.bases)]
+    problems += [f"two exemptions named {each}" for each in _repeated([each.name for each in rule.exemptions])]
     rows = [f"{row.who}, {row.field}, {row.basis}" for row in rule.rows]
     return problems + [f"two rows for {row}" for row in _repeated(rows)]
 
 
 def _repeated(names: Sequence[str]) -> list[str]:
     return [name for name in dict.fromkeys(names) if names.count(name) > 1]
-
-
-def _optional(head: Entries, key: str) -> tuple[Entries, ...]:
-    """The tables of a key that may be left out."""
-    return head.tables(key) if head.has(key) else ()
-
-
-def _read_without(entries: Entries) -> Without:
-    without = Without(who=entries.word("who", WHO), why=entries.text("why"))
-    entries.refuse_leftover()
-    return without
-
-
-def _read_tier(entries: Entries) -> Tier:
-    tier = Tier(
-        who=entries.word("who", WHO),
-        own_words=entries.text("own_words"),
-        meaning=entries.text("meaning"),
-        provenance=entries.word("provenance", PROVENANCES),
-        provenance_detail=entries.text("provenance_detail"),
-    )
-    entries.refuse_leftover()
-    return tier
 
 
 def _read_limit(entries: Entries, edition: str) -> Limit:

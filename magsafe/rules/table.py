@@ -12,6 +12,8 @@ FREQUENCY_UNITS: Mapping[str, Decimal] = {
     "MHz": Decimal(10) ** 6,
 }
 TIME_UNITS: Mapping[str, Decimal] = {"s": Decimal(1), "min": Decimal(60)}
+LENGTH_UNITS: Mapping[str, Decimal] = {"m": Decimal(1), "cm": Decimal("0.01")}
+POWER_UNITS: Mapping[str, Decimal] = {"W": Decimal(1), "mW": Decimal("0.001")}
 SHARE_UNITS: Mapping[str, Decimal] = {"%": Decimal("0.01")}
 
 Word = TypeVar("Word", bound=str)
@@ -120,15 +122,25 @@ class Entries:
         self.note(f"{key} must be one of {', '.join(allowed)}, found {value!r}")
         return allowed[0]
 
-    def flag(self, key: str, default: bool) -> bool:
-        """A true or false that may be left out."""
-        value = self._take(key, required=False)
+    def flag(self, key: str, default: bool | None = None) -> bool:
+        """A true or false; `default` where the key may be left out."""
+        value = self._take(key, required=default is None)
         if value is None:
-            return default
+            return bool(default)
         if not isinstance(value, bool):
             self.note(f"{key} must be true or false, found {value!r}")
-            return default
+            return bool(default)
         return value
+
+    def texts(self, key: str) -> tuple[str, ...]:
+        """A list of texts that are not empty, at least one; empty where the key is left out."""
+        value = self._take(key, required=False)
+        if value is None:
+            return ()
+        texts = [each for each in value if isinstance(each, str) and each.strip()] if isinstance(value, list) else []
+        if not texts or not isinstance(value, list) or len(texts) != len(value):
+            self.note(f"{key} must be a list of texts, at least one, found {value!r}")
+        return tuple(texts)
 
     def number(self, key: str) -> float:
         """A finite number."""
@@ -177,6 +189,17 @@ class Entries:
         return tuple(
             Entries(f"{self.where}, {key} {index}", each, self._problems) for index, each in enumerate(value, start=1)
         )
+
+    def table(self, key: str) -> "Entries":
+        """One table; what must be in it is missing where it is left out."""
+        value = self._take(key, required=False)
+        if not isinstance(value, dict):
+            self.note(f"[{key}] is missing" if value is None else f"{key} must be a table, found {value!r}")
+        return Entries(f"{self.where}, {key}", value if isinstance(value, dict) else {}, self._problems)
+
+    def optional_tables(self, key: str) -> tuple["Entries", ...]:
+        """A list of tables that may be left out."""
+        return self.tables(key) if self.has(key) else ()
 
     def refuse_leftover(self) -> None:
         """Note every key that nobody asked for, with the nearest known one."""

@@ -173,8 +173,8 @@ def test_a_window_many_times_as_long_averages_no_worse(pattern: Pattern | None, 
 def test_the_local_levels_of_icnirp_2020_ask_no_more_than_those_for_the_whole_body(
     pattern: Pattern | None, who: Who, megahertz: float
 ) -> None:
-    """Why they are not judged: where one largest field is held against both, heat is at its limit
-    for the whole body first, to 1.5 % of field strength (three-figure rounding of the tables).
+    """Where one largest field is held against both, heat is at its limit for the whole body first, to 1.5 % of
+    field strength (three-figure rounding of the tables): the local levels bind beside a mean over the body.
     """
     rows = [each for each in load_rule("icnirp-2020").rows if each.who == who]
     for field in ("electric", "magnetic"):
