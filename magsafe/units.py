@@ -30,13 +30,17 @@ def registry() -> "pint.UnitRegistry[float]":
 
 @dataclass(frozen=True, slots=True)
 class Kind:
-    """What a field measures: its name with article, SI unit, accepted spellings, an example."""
+    """What a field measures: its name with article, SI unit, accepted spellings, an example.
+
+    `instead` is what to answer to the unit of something else that people write here: (pattern of the unit, advice).
+    """
 
     name: str
     si: str
     units: tuple[str, ...]
     example: str
     signed: bool = False
+    instead: tuple[tuple[str, str], ...] = ()
 
 
 LENGTH = Kind("a length", "m", ("m", "cm", "mm", "um", "µm", "km", "in", "ft"), "22 mm")
@@ -54,6 +58,32 @@ RESISTANCE = Kind(
 )
 CAPACITANCE = Kind("a capacitance", "F", ("pF", "nF", "uF", "µF", "F"), "47 pF")
 CONDUCTIVITY = Kind("a conductivity", "S/m", ("S/m", "MS/m", "mS/m", "kS/m"), "58 MS/m")
+_NOT_A_FIELD = (
+    (r"dB.*", "write the field itself, not decibels over something"),
+    (r".?W.*", "write the field that the probe senses, not a power density"),
+)
+ELECTRIC_FIELD = Kind(
+    "an electric field",
+    "V/m",
+    ("V/m", "mV/m", "kV/m"),
+    "12 V/m",
+    instead=(
+        (r".?(A/m|T|G)|.*([Tt]esla|[Gg]auss)", "that is a magnetic field: write it as magnetic, in A/m"),
+        *_NOT_A_FIELD,
+    ),
+)
+MAGNETIC_FIELD = Kind(
+    "a magnetic field",
+    "A/m",
+    ("A/m", "mA/m", "uA/m", "µA/m"),
+    "0.05 A/m",
+    instead=(
+        (r".?T|.*[Tt]esla", "that is a flux density: write the field in A/m, 1 uT is 0.796 A/m"),
+        (r".?G|.*[Gg]auss", "that is a flux density: write the field in A/m, 1 G is 79.6 A/m"),
+        (r".?V/m", "that is an electric field: write it as electric"),
+        *_NOT_A_FIELD,
+    ),
+)
 TEMPERATURE = Kind("a temperature", "K", ("degC", "°C", "K"), "20 degC", signed=True)
 DURATION = Kind("a time", "s", ("s", "min", "h"), "3 min")
 SHARE = Kind("a share", "1", ("%",), "40 %")
@@ -165,6 +195,9 @@ def _advice(text: str, kind: Kind) -> str:
 def _unit_advice(number: str, unit: str, kind: Kind) -> str:
     if unit.upper() in ("AWG", "SWG"):
         return 'write the diameter instead of the gauge, such as "2.05 mm"'
+    for pattern, advice in kind.instead:
+        if re.fullmatch(pattern, unit):
+            return advice
     by_case = [u for u in kind.units if u.casefold() == unit.casefold()]
     if unit[:1] == "M" and by_case and by_case[0][:1] == "m":
         return "M is mega, a million: check the unit"

@@ -84,6 +84,11 @@ def floor_two_digits(value: float) -> str:
     return f"{floored:.{max(1 - exponent, 0)}f}"
 
 
+def duration(seconds: float) -> str:
+    """Return a time span in whole minutes where it is that, else in seconds: `6 min`."""
+    return f"{seconds / 60.0:g} min" if seconds % 60.0 == 0.0 else f"{seconds:.3g} s"
+
+
 def short(text: str, most: int = 40) -> str:
     """Return a name that is too long for a line cut, with a mark that it is."""
     return text if len(text) <= most else f"{text[: most - 3]}..."
@@ -92,3 +97,9 @@ def short(text: str, most: int = 40) -> str:
 def frequency(hertz: float) -> str:
     """Return a frequency in MHz with all its digits: `7.1 MHz`."""
     return f"{magnitude(hertz, 'Hz', 'MHz'):.9g} MHz"
+
+
+def slug(name: str) -> str:
+    """Return a name as it stands in the id of a finding: letters, digits and hyphens, lower case."""
+    kept = "".join(c if c.isalnum() else " " for c in name.casefold())
+    return "-".join(kept.split())

@@ -188,10 +188,25 @@ class Chain:
         """Return radiation resistance over that and the losses, of a corner in free space."""
         return corner.radiated / self.resistance(end, corner)
 
-    def capacitor_heat(self, own: str, others: str, corner: Corner, power: float) -> float:
-        """Return the heat in the capacitor [W], its own loss at one end, all others at another."""
-        rest = self.resistance(others, corner) - self.capacitor.at(others, corner)
-        mine = self.capacitor.at(own, corner)
+    def heat_in(self, part: Loss, own: str, others: str, corner: Corner, power: float) -> float:
+        """Return the heat in one of the losses [W], that loss at one end, all others at another."""
+        rest = self.resistance(others, corner) - part.at(others, corner)
+        mine = part.at(own, corner)
+        return power * mine / (rest + mine)
+
+    def heat_spread(self, part: Loss, share: float = 1.0) -> Spread:
+        """Return the heat in a part, or in a share of it that may be at its high end alone [W], key-down."""
+        power = self.power
+        low = min(
+            (share * self.heat_in(part, "low", "high", each, power.low or 0.0) for each in self.most), default=None
+        )
+        likely = share * self.heat_in(part, "likely", "likely", self.likely, power.likely or 0.0)
+        high = max(self._heat_alone(part, share, each, power.high or 0.0) for each in self.least)
+        return Spread(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR)
+
+    def _heat_alone(self, part: Loss, share: float, corner: Corner, power: float) -> float:
+        mine = share * part.at("high", corner)
+        rest = self.resistance("low", corner) - share * part.at("low", corner)
         return power * mine / (rest + mine)
 
     def terminals(self) -> list[complex]:

@@ -46,6 +46,15 @@ def bases(rule: Rule, who: Who, frequency: float) -> tuple[Basis, ...]:
 
 
 @dataclass(frozen=True, slots=True)
+class Filling:
+    """What fills a share of a window, 0..1: its mean power while it lasts [W], and whether the envelope scales that."""
+
+    power: float
+    time: float
+    scales: bool
+
+
+@dataclass(frozen=True, slots=True)
 class Use:
     """How a transmission fills time: envelope power [W], duty while keyed, pattern of overs, tune-up carrier.
 
@@ -65,6 +74,14 @@ class Use:
             share = window_share(TuneUp(self.tune_up_time), averaging_time)
             return averaged_power(self.tune_up_power, 1.0, share)
         return self._always(self.envelope, averaging_time)
+
+    def fillings(self, averaging_time: float, when: When) -> tuple[Filling, ...]:
+        """Return what fills a window of a rule that averages: the overs and the tune-up, or the tune-up alone."""
+        tuned = (Filling(self.tune_up_power, min(1.0, self.tune_up_time / averaging_time), scales=False),)
+        if when == "tuning":
+            return tuned
+        overs = Filling(self.envelope * self.duty, window_share(self.pattern, averaging_time), scales=True)
+        return (overs, *(tuned if self.tune_up_time else ()))
 
     def _always(self, envelope: float, averaging_time: float) -> float:
         if averaging_time == 0.0:

@@ -372,12 +372,8 @@ def _bandwidth(chain: Chain, quality: Spread, factor: float, method: str) -> Fig
 
 
 def _dissipation(chain: Chain) -> Figure:
-    power = chain.power
-    low = min((chain.capacitor_heat("low", "high", corner, power.low or 0.0) for corner in chain.most), default=None)
-    likely = chain.capacitor_heat("likely", "likely", chain.likely, power.likely or 0.0)
-    high = max(chain.capacitor_heat("high", "low", corner, power.high or 0.0) for corner in chain.least)
     return Figure(
-        Spread(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR),
+        chain.heat_spread(chain.capacitor),
         "W",
         f"key-down; its high end with its own loss high and every other low{_say(chain)}",
         _LOOP_SOURCE,

@@ -225,6 +225,11 @@ def _sphere(distances: Array, height: float, lobes: float, bearings: tuple[float
     return np.asarray(np.concatenate([made, ring], axis=1) + np.array([0.0, 0.0, height]))
 
 
+# A share of the limit against distance, with the field and the basis that it is of.
+Curve = tuple[str, str, Array]
+Curves = Callable[[str], list[Curve]]
+
+
 def keep_out(
     found: Shells, bases: tuple[Basis, ...], use: Use, at_loop: float, margin: float, vertical: bool
 ) -> Distances:
@@ -242,8 +247,21 @@ def keep_out(
     # Without credit for typical losses, as every distance that people rely on.
     weighed = list(weights(bases, use, at_loop * margin**2 * found.bare_factor))
 
+    def curves(name: str) -> list[Curve]:
+        return [
+            (field, basis.name, squares[name] * weight)
+            for basis, by_electric, by_magnetic in weighed
+            for field, squares, weight in (("E", found.electric, by_electric), ("H", found.magnetic, by_magnetic))
+        ]
+
+    return in_all_directions(found, found.distances, curves, vertical)
+
+
+def in_all_directions(found: Shells, distances: Array, curves: Curves, vertical: bool) -> Distances:
+    """Return the outermost crossings of curves at `distances`, by direction and floor."""
+
     def one(name: str) -> Distance:
-        return _outermost(found.distances, found.electric[name], found.magnetic[name], weighed)
+        return _outermost(distances, curves(name))
 
     sides = ("along_axis", "in_plane") if vertical else ("in_plane", "across")
 
@@ -271,24 +289,21 @@ def keep_out(
     )
 
 
-def _outermost(
-    distances: Array, electric: Array, magnetic: Array, weighed: list[tuple[Basis, float, float]]
-) -> Distance:
-    """Return the outermost distance at which any basis is reached."""
+def _outermost(distances: Array, curves: list[Curve]) -> Distance:
+    """Return the outermost distance at which any curve comes to 1."""
     touch = Distance(round_up(float(distances[0])), "touch", "")
     found = [touch]
-    for basis, by_electric, by_magnetic in weighed:
-        for name, squares, weight in (("E", electric, by_electric), ("H", magnetic, by_magnetic)):
-            reached = np.flatnonzero(squares * weight >= 1.0)
-            if not len(reached):
-                continue
-            last = int(reached[-1])
-            if last == len(distances) - 1:
-                return Distance(None, name, basis.name)
-            here, there = float(squares[last] * weight), float(squares[last + 1] * weight)
-            share = log(here) / log(here / there) if there > 0.0 else 1.0
-            crossing = float(distances[last] * (distances[last + 1] / distances[last]) ** share)
-            found.append(Distance(round_up(crossing * _PAD), name, basis.name))
+    for field, basis, shares in curves:
+        reached = np.flatnonzero(shares >= 1.0)
+        if not len(reached):
+            continue
+        last = int(reached[-1])
+        if last == len(distances) - 1:
+            return Distance(None, field, basis)
+        here, there = float(shares[last]), float(shares[last + 1])
+        share = log(here) / log(here / there) if there > 0.0 else 1.0
+        crossing = float(distances[last] * (distances[last + 1] / distances[last]) ** share)
+        found.append(Distance(round_up(crossing * _PAD), field, basis))
     return max(found, key=lambda each: each.distance or 0.0)
 
 

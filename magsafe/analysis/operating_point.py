@@ -37,7 +37,7 @@ class OperatingPoint:
     practice that were used. `out_of_range` tells why nothing is computed of this loop; then most figures are unknown.
     `tuning_limit` is the frequency above which no series capacitor tunes the loop [Hz], `beyond_tuning` says that the
     transmission lies above it. `bound_ratio` is Q over efficiency times the lower bound on Q. `opinion` is what the
-    closed forms say, None where they do not reach.
+    closed forms say, None where they do not reach. `chain` is what answers further questions, None with `out_of_range`.
     """
 
     transmission: Transmission
@@ -55,6 +55,7 @@ class OperatingPoint:
     opinion: SecondOpinion | None = None
     ground_cases: tuple[GroundCase, ...] = ()
     field_error: float = VOLTAGE_ERROR
+    chain: Chain | None = None
 
 
 def operating_point(design: Design, transmission: Transmission) -> OperatingPoint:
@@ -94,6 +95,7 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         opinion=second_opinion(design, made) if tuned else None,
         ground_cases=made.ground_cases(),
         field_error=made.voltage_error,
+        chain=made,
     )
 
 

@@ -1,6 +1,6 @@
 """The strongest field where somebody can be: columns, points and fences."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import ceil, hypot
 
 import numpy as np
@@ -23,12 +23,26 @@ _FENCE_PAD = 1.02**2  # on squares, for what lies between the points on a fence
 
 
 @dataclass(frozen=True, slots=True)
+class BodyMeans:
+    """Means of the squares over a body's height for each watt at the loop, on the worst upright line of its column."""
+
+    electric: float
+    magnetic: float
+
+
+@dataclass(frozen=True, slots=True)
 class Strongest:
-    """Squares of the strongest RMS fields at a place for each watt at the loop, and why one is not to be trusted."""
+    """Squares of the strongest RMS fields at a place for each watt at the loop, and why one is not to be trusted.
+
+    `means` are those of a posture, None for a point and for a fence. `nearest` is how near the place comes to the
+    conductor's surface [m].
+    """
 
     electric: float
     magnetic: float
     doubts: tuple[str, ...] = ()
+    means: BodyMeans | None = None
+    nearest: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,12 +84,13 @@ def search(source: FieldSource, places: tuple[Place, ...]) -> tuple[Strongest, .
     grids = [_fence(source, place) if place.fence else _grid(own) for place, own in zip(places, boxes, strict=True)]
     owners = np.repeat(np.arange(len(places)), [len(grid) for grid in grids])
     found = _Search(source, len(places))
-    found.look(np.concatenate(grids), owners)
+    squares = found.look(np.concatenate(grids), owners)
+    means = [_means(own, squares[:, owners == index]) for index, own in enumerate(boxes)]
     step = np.array([_ACROSS, _ACROSS, _UP])
     for _ in range(_REFINEMENTS):
         step = step / 2.0
         found.look(*_about(found, boxes, step))
-    return tuple(found.result(index, place) for index, place in enumerate(places))
+    return tuple(replace(found.result(index, place), means=means[index]) for index, place in enumerate(places))
 
 
 class _Search:
@@ -90,8 +105,9 @@ class _Search:
         self.buried = np.zeros(count, dtype=bool)
         self.radius = source.wires[0].radius
 
-    def look(self, points: Array, owners: np.ndarray[tuple[int], np.dtype[np.intp]]) -> None:
-        """Evaluate points, each for the place that owns it."""
+    def look(self, points: Array, owners: np.ndarray[tuple[int], np.dtype[np.intp]]) -> Array:
+        """Evaluate points, each for the place that owns it; return the squares, shape (field, point), 0 if unknown."""
+        seen = np.zeros((2, len(points)))
         axis, port = self.source.clearance(points)
         np.minimum.at(self.axis, owners, axis)
         np.minimum.at(self.port, owners, port)
@@ -100,16 +116,18 @@ class _Search:
         sound = (axis >= self.radius) & ~below
         points, owners, axis, port = points[sound], owners[sound], axis[sound], port[sound]
         if not len(points):
-            return
+            return seen
         squares = self.source.strongest(points)
         trusted = (axis >= ELECTRIC_NEAR_CONDUCTOR) & (port >= ELECTRIC_NEAR_CAPACITOR)
         for kind, values in enumerate((np.where(trusted, squares.electric, 0.0), squares.magnetic)):
+            seen[kind, sound] = values
             for owner in np.unique(owners):
                 own = np.flatnonzero(owners == owner)
                 top = own[np.argmax(values[own])]
                 if values[top] > self.best[kind, owner]:
                     self.best[kind, owner] = values[top]
                     self.where[kind, owner] = points[top]
+        return seen
 
     def result(self, index: int, place: Place) -> Strongest:
         """Return what was found for a place."""
@@ -126,7 +144,12 @@ class _Search:
         if place.fence and place.fence < self.source.reach:
             doubts.append("the fence is inside the loop's outline")
         pad = _FENCE_PAD if place.fence else 1.0
-        return Strongest(float(self.best[0, index]) * pad, float(self.best[1, index]) * pad, tuple(doubts))
+        return Strongest(
+            float(self.best[0, index]) * pad,
+            float(self.best[1, index]) * pad,
+            tuple(doubts),
+            nearest=max(0.0, float(self.axis[index]) - self.radius),
+        )
 
 
 def _boxes(design: Design, place: Place) -> list[_Box]:
@@ -156,17 +179,43 @@ def _grid(boxes: list[_Box]) -> Array:
     return np.concatenate([_surface(box) for box in boxes])
 
 
-def _surface(box: _Box) -> Array:
-    """Return points on all faces of a box, and on its one upright line where it has no width."""
+def _means(boxes: list[_Box], squares: Array) -> BodyMeans | None:
+    """Return the means over the height on the worst upright line of the boxes' sides; None where there is no height.
+
+    `squares` are those of the boxes' surfaces, shape (field, point). A field without sources inside is strongest on
+    the surface, and so is its mean over the height but for what the two ends do.
+    """
+    if not boxes or boxes[0].high[2] == boxes[0].low[2]:
+        return None
+    steps = len(_steps_up(boxes[0]))
+    own = squares.reshape(2, len(boxes), -1)
+    sides = int(_grid_across(boxes[0])[1].sum())
+    lines = own[:, :, : sides * steps].reshape(2, -1, steps)
+    means = (lines.sum(axis=2) - 0.5 * (lines[:, :, 0] + lines[:, :, -1])) / (steps - 1)
+    return BodyMeans(*(float(each) for each in means.max(axis=1)))
+
+
+def _steps_up(box: _Box) -> Array:
+    height = box.high[2] - box.low[2]
+    return np.linspace(box.low[2], box.high[2], max(1, ceil(height / _UP)) + 1) if height > 0.0 else box.low[2:3]
+
+
+def _grid_across(box: _Box) -> tuple[Array, np.ndarray[tuple[int, int], np.dtype[np.bool_]]]:
+    """Return horizontal positions, shape (x, y, 2), and which of them lie on the rim."""
     size = box.high - box.low
-    up = np.linspace(box.low[2], box.high[2], max(1, ceil(size[2] / _UP)) + 1) if size[2] > 0.0 else box.low[2:3]
-    if size[0] == 0.0:
-        return _stacked(box.low[None, :2], up)
     side = np.linspace(0.0, 1.0, round(size[0] / _ACROSS) + 1)
     x, y = np.meshgrid(side, side)
     rim = (x == 0.0) | (x == 1.0) | (y == 0.0) | (y == 1.0)
-    inside, across = ~rim, np.stack([x, y], axis=2) * size[:2] + box.low[:2]
-    return np.concatenate([_stacked(across[rim], up), _stacked(across[inside], up[[0, -1]])])
+    return np.stack([x, y], axis=2) * size[:2] + box.low[:2], rim
+
+
+def _surface(box: _Box) -> Array:
+    """Return points on all faces of a box, its sides first, and on its one upright line where it has no width."""
+    size, up = box.high - box.low, _steps_up(box)
+    if size[0] == 0.0:
+        return _stacked(box.low[None, :2], up)
+    across, rim = _grid_across(box)
+    return np.concatenate([_stacked(across[rim], up), _stacked(across[~rim], up[[0, -1]])])
 
 
 def _stacked(across: Array, up: Array) -> Array:

@@ -131,7 +131,15 @@ def _people(design: Design) -> Iterator[str]:
         if design.ground_name != "none"
         else "Fields are of the loop alone in free space, with nobody present, RMS over all components."
     )
-    yield "A person is judged at the worst point of a column 0.3 m either way of the place, not at the body's mean."
+    if design.site.over_the_body == "mean of squares":
+        yield (
+            "Where a rule averages over the body, a posture is judged by the mean of squares on the worst upright "
+            "line of a column 0.3 m either way of the place, as site.over_the_body asks, elsewhere at its worst "
+            "point; keep-out distances and fences rest on the worst point."
+        )
+    else:
+        yield "A person is judged at the worst point of a column 0.3 m either way of the place, not at the body's mean."
+    yield from _turns(design)
     if design.site.metal_within is None:
         yield "site.metal_within is not given: no metal is taken to be nearer than one loop diameter."
     if design.loop.plane == "vertical" and design.capacitor.position is None:
@@ -148,6 +156,20 @@ def _people(design: Design) -> Iterator[str]:
             )
         if transmission.tune_up is not None:
             yield (f"{title}: one tune-up in any averaging time, beside the overs.")
+
+
+def _turns(design: Design) -> Iterator[str]:
+    """Yield what is taken of transmissions that follow one another."""
+    together = {name for names in design.site.sessions for name in names}
+    if together:
+        yield (
+            "In a session one transmitter works one transmission at a time. Within any averaging time each may fill "
+            "its own largest share, all of them the whole of it, and the worst division counts, each with the fields "
+            "at its own worst point."
+        )
+    if len(design.transmission) > 1 and len(together) < len(design.transmission):
+        what = "These transmissions are" if not together else "Transmissions that no session lists are"
+        yield f"{what} taken to be worked an averaging time apart: list in site.sessions what is worked in turn."
 
 
 def _methods(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:

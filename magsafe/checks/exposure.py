@@ -1,25 +1,25 @@
 """Where may people be: each place under each rule, and silence is never clear."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from math import sqrt
 
-from magsafe.analysis.exposure import Basis, Use, bases, key_down, use_of
-from magsafe.analysis.field_source import FAR, field_source
-from magsafe.analysis.keepout import Distances, Shells, keep_out, reach_weight, shells
-from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.analysis.people import Strongest, at_places
-from magsafe.analysis.wires import extent
+from magsafe import words
+from magsafe.analysis.exposure import Basis, Use, key_down
+from magsafe.analysis.keepout import Distances, Shells, keep_out
+from magsafe.analysis.people import Strongest
 from magsafe.checks.judge import Check, judge, unproven
 from magsafe.checks.sheet import (
     BasisRecord,
     DistanceRecord,
+    DistancesRecord,
     ExposureRecord,
     Finding,
     KeepoutRecord,
     PlaceRecord,
+    TimeRecord,
 )
-from magsafe.design.consistency import slug
+from magsafe.checks.view import View, allows_mean, counts_mean, judged_squares
 from magsafe.design.model import Design, Place
 from magsafe.rules.limit import WHO, Limit, Rule, Who, load_rule
 from magsafe.spread import Spread
@@ -47,11 +47,10 @@ def no_rules(design: Design) -> tuple[Finding, ...]:
     return (unproven(check, "site.rules is missing or empty: nothing says how strong a field may be"),)
 
 
-def exposure(design: Design, point: OperatingPoint) -> tuple[tuple[ExposureRecord, ...], tuple[Finding, ...]]:
+def exposure(view: View) -> tuple[tuple[ExposureRecord, ...], tuple[Finding, ...]]:
     """Return what each rule says of people during one transmission, and the findings."""
-    view = _view(design, point)
     records, findings = [], []
-    rules = [load_rule(name) for name in design.site.rules]
+    rules = [load_rule(name) for name in view.design.site.rules]
     for rule in rules:
         for who in WHO:
             if rule.limits(who):
@@ -64,75 +63,10 @@ def exposure(design: Design, point: OperatingPoint) -> tuple[tuple[ExposureRecor
     return tuple(records), tuple(findings)
 
 
-@dataclass(frozen=True, slots=True)
-class _View:
-    """One transmission with the fields about it, computed once for all rules."""
-
-    design: Design
-    point: OperatingPoint
-    use: Use
-    unknown: str
-    doubt: str
-    strongest: dict[str, Strongest]
-    around: Shells | None
-    bare_factor: float
-    likely_factor: float
-
-    @property
-    def at_loop(self) -> float:
-        """Most power at the loop for each watt at the transmitter."""
-        return (self.point.power_at_loop.high or 0.0) / self.point.power
-
-    @property
-    def margin(self) -> float:
-        return self.design.margins.exposure_ratio
-
-
-def _view(design: Design, point: OperatingPoint) -> _View:
-    unknown = _unknown(design, point)
-    doubt, use = _metal(design), use_of(point.transmission)
-    if unknown or not design.site.rules:
-        return _View(design, point, use, unknown, doubt, {}, None, 1.0, 1.0)
-    far = field_source(design, point, FAR)
-    found = at_places(design, point, tuple(design.place))
-    strongest = {place.name: each for place, each in zip(design.place, found, strict=True)}
-    view = _View(design, point, use, unknown, doubt, strongest, None, far.bare_factor, far.likely_factor)
-    heaviest = max(
-        reach_weight(
-            bases(load_rule(name), who, point.transmission.frequency), each, view.at_loop, view.margin, far.bare_factor
-        )
-        for name in design.site.rules
-        for who in WHO
-        for each in (use, key_down(point.power))
-    )
-    return replace(view, around=shells(far, heaviest))
-
-
-def _unknown(design: Design, point: OperatingPoint) -> str:
-    """Return why no field is known; empty where it is."""
-    if point.out_of_range:
-        return "; ".join(point.out_of_range)
-    if design.loop.centre_height is None and design.ground_name != "none":
-        return "loop.centre_height is not given"
-    if design.loop.centre_height is None and design.place:
-        return "loop.centre_height is not given, and places have their heights above ground"
-    return ""
-
-
-def _metal(design: Design) -> str:
-    """Return why computed fields do not hold near metal; empty where none is that near."""
-    near, across = design.site.metal_within, 2.0 * extent(design)
-    if near is None or near >= across:
-        return ""
-    return f"metal is within {near:.3g} m, nearer than one loop diameter ({across:.3g} m): fields there are not proven"
-
-
-def _tier(view: _View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Finding]]:
-    frequency = view.point.transmission.frequency
-    found = bases(rule, who, frequency)
-    uncovered = rule.uncovered_fields(who, frequency)
+def _tier(view: View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Finding]]:
+    found = view.bases(rule, who)
     places = [place for place in view.design.place if place.who == who]
-    gap = f"{rule.name} has no {' and no '.join(uncovered)} limit at this frequency" if uncovered else ""
+    gap = gap_of(view, rule, who)
     findings: list[Finding] = []
     records: list[PlaceRecord] = []
     if not any(place.when == "always" for place in places):
@@ -148,7 +82,13 @@ def _tier(view: _View, rule: Rule, who: Who) -> tuple[ExposureRecord, list[Findi
     ), findings
 
 
-def _without(view: _View, rule: Rule, who: Who, *, elsewhere: bool) -> tuple[ExposureRecord, list[Finding]]:
+def gap_of(view: View, rule: Rule, who: Who) -> str:
+    """Return which field a rule does not limit at this frequency; empty where it limits both."""
+    uncovered = rule.uncovered_fields(who, view.point.transmission.frequency)
+    return f"{rule.name} has no {' and no '.join(uncovered)} limit at this frequency" if uncovered else ""
+
+
+def _without(view: View, rule: Rule, who: Who, *, elsewhere: bool) -> tuple[ExposureRecord, list[Finding]]:
     """Return what a rule that does not know a tier says of it: nothing, which only another rule may fill."""
     why = f"{rule.name} has no limits for {_PEOPLE[who]}: {rule.why_without(who)}"
     places = [] if elsewhere else [place for place in view.design.place if place.who == who]
@@ -163,7 +103,10 @@ def _without(view: _View, rule: Rule, who: Who, *, elsewhere: bool) -> tuple[Exp
     if not elsewhere and not places:
         found = [unproven(check, f"{why}; no other rule in site.rules has any, and silence is not clear")]
     records = tuple(PlaceRecord(name=place.name, verdict="unproven", when=place.when) for place in places)
-    return ExposureRecord(rule=rule.name, edition=rule.edition, who=who, keepout=None, places=records, why=why), found
+    record = ExposureRecord(
+        rule=rule.name, edition=rule.edition, who=who, keepout=None, places=records, why=why, without=True
+    )
+    return record, found
 
 
 def _no_place(rule: Rule, who: Who, *, tuning: bool) -> Finding:
@@ -181,14 +124,24 @@ def _no_place(rule: Rule, who: Who, *, tuning: bool) -> Finding:
     return unproven(check, f'No place with who = "{who}" is given, and silence is not clear')
 
 
-def _keepout(view: _View, around: Shells, found: tuple[Basis, ...]) -> KeepoutRecord:
-    vertical = view.design.loop.plane == "vertical"
-
-    def distances(use: Use) -> Distances:
-        return keep_out(around, found, use, view.at_loop, view.margin, vertical)
-
-    averaged, carrier = distances(view.use), distances(key_down(view.point.power))
+def _keepout(view: View, around: Shells, found: tuple[Basis, ...]) -> KeepoutRecord:
+    carrier = _distances(view, around, found, key_down(view.point.power))
+    averaged = averaged_keep_out(view, around, found)
     return KeepoutRecord.model_validate({**_as_dict(averaged), "key_down": _as_dict(carrier)})
+
+
+def averaged_keep_out(view: View, around: Shells, found: tuple[Basis, ...]) -> Distances:
+    """Return the distances of a transmission as its rule averages it."""
+    return _distances(view, around, found, view.use)
+
+
+def _distances(view: View, around: Shells, found: tuple[Basis, ...], use: Use) -> Distances:
+    return keep_out(around, found, use, view.at_loop, view.margin, view.design.loop.plane == "vertical")
+
+
+def as_record(found: Distances) -> DistancesRecord:
+    """Return distances as the sheet has them."""
+    return DistancesRecord.model_validate(_as_dict(found))
 
 
 def _as_dict(found: Distances) -> dict[str, object]:
@@ -214,7 +167,10 @@ def _as_dict(found: Distances) -> dict[str, object]:
 
 @dataclass(frozen=True, slots=True)
 class _Judged:
-    """One field of one basis at a place."""
+    """One field of one basis at a place.
+
+    `mean` tells that `field` is the mean over the body, `body_mean` is that mean where the rule allows one.
+    """
 
     basis: Basis
     kind: str
@@ -222,6 +178,8 @@ class _Judged:
     field: float
     limit: float
     judged: float
+    mean: bool
+    body_mean: float | None
 
     @property
     def share(self) -> float:
@@ -230,7 +188,7 @@ class _Judged:
 
 def _place_check(rule: Rule, place: Place, do: str) -> Check:
     return Check(
-        f"exposure.{rule.name}.{place.who}.{slug(place.name)}",
+        f"exposure.{rule.name}.{place.who}.{words.slug(place.name)}",
         f"Is {place.name} within the limits of {rule.name} for {place.who} people?",
         do,
         f"{rule.standard}, {rule.edition}",
@@ -238,9 +196,7 @@ def _place_check(rule: Rule, place: Place, do: str) -> Check:
     )
 
 
-def _place(
-    view: _View, rule: Rule, found: tuple[Basis, ...], place: Place, unknown: str
-) -> tuple[PlaceRecord, Finding]:
+def _place(view: View, rule: Rule, found: tuple[Basis, ...], place: Place, unknown: str) -> tuple[PlaceRecord, Finding]:
     check = _place_check(rule, place, _KEEP)
     tuning = place.when == "tuning"
     if tuning and view.use.tune_up_time == 0.0:
@@ -249,7 +205,7 @@ def _place(
         record = PlaceRecord(name=place.name, verdict="unproven", when=place.when)
         return record, unproven(check, unknown, place=place.name)
     strongest = view.strongest[place.name]
-    judged = _judged(view, found, strongest, tuning)
+    judged = _judged(view, rule, found, strongest, tuning)
     binding = max(judged, key=lambda each: each.share)
     records = tuple(_basis_record(basis, judged) for basis in found)
     powers = _powers(view, judged, tuning)
@@ -269,11 +225,11 @@ def _place(
         bare_end=binding.field * sqrt(view.bare_factor),
         power=None if tuning else view.point.power,
         powers=(None, None) if tuning else powers,
-        thin=_thin(judged),
+        thin="; ".join(filter(None, (unread(_rows(judged)), unjudged(rule, mean=binding.mean)))),
         provenance=binding.row.provenance_at(binding.basis.frequency) or "none",
         place=place.name,
     )
-    finding = _doubted(finding, (*strongest.doubts, *([view.doubt] if view.doubt else [])))
+    finding = doubted(finding, (*strongest.doubts, *([view.doubt] if view.doubt else [])))
     if place.fence:
         text = f"{finding.because}; for people on the floors, above them the keep-out holds"
         finding = finding.model_copy(update={"because": text})
@@ -287,6 +243,7 @@ def _place(
             at_limit=None if finding.doubt else powers[1],
             when=place.when,
             bases=records,
+            times=() if finding.doubt else _times(view, judged, tuning),
         ),
         finding,
     )
@@ -296,7 +253,7 @@ _DO_PLACE = "keep people out of this place"
 _DO_TUNE_UP = "lower the tune_up, which alone is too much here, or keep people out of this place"
 
 
-def _doubted(finding: Finding, doubts: Sequence[str]) -> Finding:
+def doubted(finding: Finding, doubts: Sequence[str]) -> Finding:
     """Return a finding that proves nothing because part of the field is not known; a stop stays one.
 
     The power that it allows by what is known stays too: more is certainly too much, whatever the verdict.
@@ -310,19 +267,22 @@ def _doubted(finding: Finding, doubts: Sequence[str]) -> Finding:
     return finding.model_copy(update=update)
 
 
-def _judged(view: _View, found: tuple[Basis, ...], strongest: Strongest, tuning: bool) -> list[_Judged]:
+def _judged(view: View, rule: Rule, found: tuple[Basis, ...], strongest: Strongest, tuning: bool) -> list[_Judged]:
     made = []
     for basis in found:
         power = view.use.judged(basis.averaging_time, "tuning" if tuning else "always")
-        for kind, square, row in (
-            ("E", strongest.electric, basis.electric),
-            ("H", strongest.magnetic, basis.magnetic),
+        at_loop, mean = power * view.at_loop, counts_mean(view, rule, basis, strongest)
+        electric, magnetic = judged_squares(view, rule, basis, strongest)
+        means = strongest.means if allows_mean(rule, basis, strongest) else None
+        for kind, square, row, body in (
+            ("E", electric, basis.electric, None if means is None else means.electric),
+            ("H", magnetic, basis.magnetic, None if means is None else means.magnetic),
         ):
             limit = None if row is None else row.at(basis.frequency)
             if row is not None and limit is not None:
-                field = sqrt(square * power * view.at_loop)
                 likely = power * (view.point.power_at_loop.likely or 0.0) / view.point.power
-                made.append(_Judged(basis, kind, row, field, limit, likely))
+                over_body = None if body is None else sqrt(body * at_loop)
+                made.append(_Judged(basis, kind, row, sqrt(square * at_loop), limit, likely, mean, over_body))
     return made
 
 
@@ -342,10 +302,40 @@ def _basis_record(basis: Basis, judged: Sequence[_Judged]) -> BasisRecord:
         judged_power=binding.judged,
         averaging_time=basis.averaging_time,
         provenance=binding.row.provenance_at(basis.frequency) or "none",
+        judged_on="mean over the body" if binding.mean else "worst point",
+        body_mean_share=max(
+            ((each.body_mean / each.limit) ** 2 for each in own.values() if each.body_mean is not None), default=None
+        ),
     )
 
 
-def _powers(view: _View, judged: Sequence[_Judged], tuning: bool) -> tuple[float, float]:
+def _times(view: View, judged: Sequence[_Judged], tuning: bool) -> tuple[TimeRecord, ...]:
+    """Return how long one may transmit at full power in each averaging time, the margin kept.
+
+    In time of the mode as it is keyed, and of an unbroken carrier; a place while tuning has the tune-up's carrier only.
+    Not at all where a basis that does not average is exceeded.
+    """
+    use, times = view.use, dict.fromkeys(each.basis.averaging_time for each in judged if each.basis.averaging_time)
+    strict = view.margin**2 * view.bare_factor
+    if any(each.share * strict > 1.0 for each in judged if not each.basis.averaging_time):
+        return tuple(TimeRecord(averaging_time=time, keyed=None if tuning else 0.0, carrier=0.0) for time in times)
+    made = []
+    for time in times:
+        allowed = []
+        for carrier in (False, True):
+            power = use.tune_up_power if tuning else use.envelope * (1.0 if carrier else use.duty)
+            rest = []
+            for each in judged:
+                if each.basis.averaging_time == time and each.share > 0.0:
+                    for_each_watt = each.share * strict / use.judged(time, "tuning" if tuning else "always")
+                    beside = 0.0 if tuning else use.tune_up_power * min(1.0, use.tune_up_time / time)
+                    rest.append(max(0.0, 1.0 - beside * for_each_watt) / (power * for_each_watt))
+            allowed.append(min(1.0, *rest, 1.0) * time)
+        made.append(TimeRecord(averaging_time=time, keyed=None if tuning else allowed[0], carrier=allowed[1]))
+    return tuple(made)
+
+
+def _powers(view: View, judged: Sequence[_Judged], tuning: bool) -> tuple[float, float]:
     """Return the power [W] that keeps the margin on every basis, and the one that reaches a limit.
 
     While tuning it is the carrier's power that is told, else the envelope power.
@@ -368,11 +358,20 @@ def _powers(view: _View, judged: Sequence[_Judged], tuning: bool) -> tuple[float
     return found[0], found[1]
 
 
-def _thin(judged: Sequence[_Judged]) -> str:
-    """Return which limits nobody has read in their source; empty if all were."""
-    unread = [
-        f"{each.kind} {each.limit:.4g} {_UNITS[each.kind]} ({each.basis.name})"
-        for each in judged
-        if each.row.provenance_at(each.basis.frequency) == "memory"
-    ]
-    return f"from memory and read by nobody in the standard: {', '.join(unread)}" if unread else ""
+def _rows(judged: Sequence[_Judged]) -> list[tuple[Limit, float]]:
+    return [(each.row, each.basis.frequency) for each in judged]
+
+
+def unread(rows: Sequence[tuple[Limit, float]]) -> str:
+    """Return which limits, each at its frequency [Hz], nobody has read in their source; empty if all were."""
+    named = dict.fromkeys(
+        f"{'E' if row.field == 'electric' else 'H'} {row.at(frequency):.4g} {row.unit} ({row.basis})"
+        for row, frequency in rows
+        if row.provenance_at(frequency) == "memory"
+    )
+    return f"from memory and read by nobody in the standard: {', '.join(named)}" if named else ""
+
+
+def unjudged(rule: Rule, *, mean: bool) -> str:
+    """Return what is left unjudged where the mean over the body decides; empty if nothing is."""
+    return f"by the mean over the body; {rule.body.local}" if mean and rule.body.local else ""

@@ -1,7 +1,7 @@
 """The one place where a verdict is born."""
 
 from dataclasses import dataclass
-from math import inf
+from math import inf, log10
 from typing import Literal
 
 from magsafe import words
@@ -173,6 +173,64 @@ def judge_between(check: Check, value: Spread, least: float, most: float, *, loo
     )
     made = _finding(check, value, verdict, text, most if max(ends) > most else least)
     return made.model_copy(update={"provenance": "stated in the design"})
+
+
+def judge_reading(
+    check: Check,
+    reading: float,
+    uncertainty: float,
+    computed: float,
+    *,
+    faint: float,
+    field: str,
+    when: str,
+    place: str,
+) -> Finding:
+    """Hold what an instrument read against the most that is computed. No power changes what they are to each other.
+
+    What an instrument certainly read, its reading over its uncertainty, is the end that is held against the limit.
+
+    Parameters
+    ----------
+    check : what is asked
+    reading : what the instrument read, in the check's unit
+    uncertainty : of the instrument, as a ratio of 1 or more
+    computed : the most that is computed, which a reading that agrees does not exceed
+    faint : the share of `computed` below which a reading is sooner a fault of the instrument: narrow
+    field, when, place : what was read, when, and where
+    """
+    least, decibels = reading / uncertainty, f"{20.0 * log10(uncertainty):.3g} dB"
+    verdict: Verdict = "clear"
+    because = "it is no stronger than computed"
+    if least > computed:
+        verdict = "stop"
+        because = (
+            f"it is stronger than computed by more than the instrument's {decibels}: the model or an input is wrong, "
+            "and all distances are too short"
+        )
+    elif reading > computed:
+        verdict = "narrow"
+        because = f"it reads higher than computed, by no more than the instrument's {decibels}"
+    elif reading < faint * computed:
+        verdict = "narrow"
+        because = (
+            f"it is less than {100.0 * faint:.3g} % of that, which a wrong range, orientation or probe would read too, "
+            "and hide a danger"
+        )
+    text = (
+        f"{field} reads {words.amount(reading, check.unit, check.shown, check.qualifier)} {when}, computed at most "
+        f"{words.amount(computed, check.unit, check.shown)}"
+    )
+    made = _finding(check, Spread(least, reading, reading * uncertainty), verdict, f"{text}: {because}", computed)
+    return made.model_copy(
+        update={
+            "place": place,
+            "margin_asked": uncertainty,
+            "margin_found": computed / least,
+            "provenance": "stated in the design",
+            "thin": verdict == "narrow",
+        }
+    )
 
 
 def holds(check: Check, value: Spread, limit: float, because: str) -> Finding:

@@ -15,6 +15,7 @@ def keepout(sheet: Sheet) -> KeepoutSheet:
             power_ceiling=ceiling((*found, *shared), index),
             findings=found,
             exposure=point.exposure,
+            exemptions=point.exemptions,
         )
         for index, point in enumerate(sheet.operating_points)
         for found in [tuple(f for f in point.findings if _is_of_people(f))]
@@ -28,6 +29,7 @@ def keepout(sheet: Sheet) -> KeepoutSheet:
         verdict=worst(tuple(finding.verdict for finding in everything)),
         power_ceiling=least([point.power_ceiling for point in points]),
         operating_points=points,
+        sessions=sheet.sessions,
         cautions=sheet.cautions,
     )
 

@@ -1,5 +1,6 @@
 """The main job: a design in, a sheet out."""
 
+from collections.abc import Sequence
 from dataclasses import fields
 from datetime import date
 
@@ -11,8 +12,11 @@ from magsafe.checks import capacitor, loop
 from magsafe.checks.assumptions import assumptions
 from magsafe.checks.cautions import cautions
 from magsafe.checks.ceiling import ceiling, least
+from magsafe.checks.exemption import exemptions
 from magsafe.checks.exposure import exposure, no_rules
 from magsafe.checks.later import later
+from magsafe.checks.probe import probes
+from magsafe.checks.session import sessions
 from magsafe.checks.sheet import (
     DesignRecord,
     FigureRecord,
@@ -21,6 +25,7 @@ from magsafe.checks.sheet import (
     Sheet,
     worst,
 )
+from magsafe.checks.view import View, view_of
 from magsafe.design.model import Design
 
 
@@ -34,7 +39,9 @@ def check(design: Design, on: date | None = None) -> Sheet:
     """
     points = tuple(operating_point(design, transmission) for transmission in design.transmission)
     shared = (*no_rules(design), *later(design))
-    records = tuple(_record(design, i, point, shared) for i, point in enumerate(points))
+    views = tuple(view_of(design, point, _worked_with(design, i)) for i, point in enumerate(points))
+    worked, summed = sessions(design, views)
+    records = tuple(_record(i, view, summed.get(i, []), shared) for i, view in enumerate(views))
     everything = (*shared, *(finding for record in records for finding in record.findings))
     return Sheet(
         magsafe=__version__,
@@ -46,12 +53,19 @@ def check(design: Design, on: date | None = None) -> Sheet:
         verdict=worst(tuple(finding.verdict for finding in everything)),
         power_ceiling=least([record.power_ceiling for record in records]),
         operating_points=records,
+        sessions=worked,
         cautions=cautions(points, tuned=design.capacitor.kind != "none"),
     )
 
 
-def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Finding, ...]) -> OperatingPointRecord:
-    people, exposed = exposure(design, point)
+def _worked_with(design: Design, index: int) -> int:
+    """Return how many transmissions the largest session holds that a transmission is worked in; 1 where in none."""
+    return max((len(names) for names in design.site.sessions if design.titles[index] in names), default=1)
+
+
+def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Finding, ...]) -> OperatingPointRecord:
+    design, point = view.design, view.point
+    people, exposed = exposure(view)
     tuned = (
         capacitor.voltage(design, point),
         capacitor.current(design, point),
@@ -66,6 +80,8 @@ def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Fin
         *([agreed] if agreed else ()),
         *(resonant if has_capacitor else ()),
         *exposed,
+        *summed,
+        *probes(design, index, point),
     )
     transmission = point.transmission
     return OperatingPointRecord(
@@ -79,6 +95,7 @@ def _record(design: Design, index: int, point: OperatingPoint, shared: tuple[Fin
         figures=_figures(point),
         findings=findings,
         exposure=people,
+        exemptions=exemptions(view),
     )
 
 

@@ -7,6 +7,7 @@ from pydantic import BaseModel, ConfigDict, Field
 SCHEMA = "magsafe.sheet/1"
 
 Verdict = Literal["stop", "unproven", "narrow", "clear"]
+JudgedOn = Literal["worst point", "mean over the body"]
 ORDER: tuple[Verdict, ...] = ("stop", "unproven", "narrow", "clear")
 
 
@@ -48,7 +49,8 @@ class Finding(Record):
     """One question, its figure, its limit, its verdict.
 
     `power_at_margin` and `power_at_limit` are the envelope powers at the transmitter [W] up to which this finding
-    keeps the margin asked for and the bare limit; null where no power changes it. `thin` tells that its evidence allows
+    keeps the margin asked for and the bare limit; null where no power changes it. `session` is the number of the
+    session that it is about, from 1. `thin` tells that its evidence allows
     narrow at best, `doubt` what part of its figure is not known: then it proves nothing, and a stop stays a stop.
     """
 
@@ -68,6 +70,7 @@ class Finding(Record):
     power_at_limit: float | None = None
     thin: bool = False
     doubt: str | None = None
+    session: int | None = None
 
 
 class PowerCeiling(Record):
@@ -98,7 +101,9 @@ class DesignRecord(Record):
 class BasisRecord(Record):
     """What one basis of a rule says of a place: RMS fields at the power it judges, at their dangerous end.
 
-    `set_by` is the field that decides, E or H; null values are fields that the basis does not limit.
+    `set_by` is the field that decides, E or H; null values are fields that the basis does not limit. `judged_on` tells
+    whether the fields are those of the worst point or the root of the mean of squares over the body; `body_mean_share`
+    is the share of the limit by that mean, null where the rule has none or the place is no posture.
     """
 
     electric: float | None
@@ -112,6 +117,19 @@ class BasisRecord(Record):
     judged_power: float
     averaging_time: float
     provenance: str
+    judged_on: JudgedOn = "worst point"
+    body_mean_share: float | None = None
+
+
+class TimeRecord(Record):
+    """How long one may transmit at full power within an averaging time, the margin kept [s].
+
+    `keyed` is in the mode as it is keyed, `carrier` as an unbroken carrier; `keyed` is null while tuning.
+    """
+
+    averaging_time: float
+    keyed: float | None
+    carrier: float
 
 
 class PlaceRecord(Record):
@@ -133,11 +151,14 @@ class PlaceRecord(Record):
     judged_power: float | None = None
     averaging_time: float | None = None
     provenance: str | None = None
+    judged_on: JudgedOn = "worst point"
+    body_mean_share: float | None = None
     verdict: Verdict
     power_ceiling: float | None = None
     at_limit: float | None = None
     when: str
     bases: tuple[BasisRecord, ...] = ()
+    times: tuple[TimeRecord, ...] = ()
 
 
 class DistanceRecord(Record):
@@ -177,13 +198,104 @@ class KeepoutRecord(DistancesRecord):
 
 
 class ExposureRecord(Record):
-    """One rule and tier: distances and places. `why` tells why there are no distances, or what they leave out."""
+    """One rule and tier: distances and places. `why` tells why there are no distances, or what they leave out.
+
+    `without` tells that the rule has no limits for the tier; `why` then says where to look.
+    """
 
     rule: str
     edition: str
     who: str
     keepout: KeepoutRecord | None
     places: tuple[PlaceRecord, ...]
+    why: str | None = None
+    without: bool = False
+
+
+class SessionTerm(Record):
+    """What one transmission adds at the worst division of a window: share of its time, and of the limit."""
+
+    transmission: int
+    share_of_window: float
+    share_of_limit: float
+
+
+class SessionPlace(Record):
+    """A place under one rule while a session is worked: the worst sum over any averaging time.
+
+    `power_factor` is what the powers of all its transmissions may be multiplied by with the margin kept, `at_limit` to
+    the bare limit; null where no power changes the sum, or where it proves nothing.
+    """
+
+    name: str
+    verdict: Verdict
+    share_of_limit: float | None = None
+    field_ratio: float | None = None
+    set_by: str | None = None
+    basis: str | None = None
+    averaging_time: float | None = None
+    judged_on: JudgedOn = "worst point"
+    terms: tuple[SessionTerm, ...] = ()
+    power_factor: float | None = None
+    at_limit: float | None = None
+
+
+class SessionExposure(Record):
+    """One rule and tier during a session: distances, each at least those of its transmissions, and places."""
+
+    rule: str
+    edition: str
+    who: str
+    keepout: DistancesRecord | None
+    places: tuple[SessionPlace, ...]
+    why: str | None = None
+
+
+class SessionRecord(Record):
+    """Transmissions that are worked in turn within one averaging time, by their indices; sessions count from 1."""
+
+    number: int
+    name: str
+    transmissions: tuple[int, ...]
+    exposure: tuple[SessionExposure, ...]
+
+
+class ExemptionPlace(Record):
+    """A place of the public: how near it comes to the loop [m], and the threshold there [W].
+
+    `why` tells why there is no threshold; an evaluation is required then.
+    """
+
+    name: str
+    distance: float | None = None
+    threshold: float | None = None
+    exempt: bool | None = None
+    why: str | None = None
+
+
+class ExemptionRecord(Record):
+    """Whether a rule asks for an evaluation: information, in no verdict and no ceiling.
+
+    `power` is what `kind` names, at its dangerous end [W]: the mean over `averaging_time`, 0 where the crest counts.
+    `threshold` is that at any distance, else each of `places` has its own, which holds from `nearest` [m] on.
+    `axis_field_ratio` is the magnetic field over the public limit on the loop's own axis, in free space, at that
+    threshold and that distance from its nearest part.
+    """
+
+    rule: str
+    jurisdiction: str
+    name: str
+    kind: str
+    power: float | None
+    averaging_time: float
+    threshold: float | None
+    exempt: bool | None
+    nearest: float
+    places: tuple[ExemptionPlace, ...]
+    axis_field_ratio: float | None
+    warning: str
+    source: str
+    provenance: str
     why: str | None = None
 
 
@@ -200,6 +312,7 @@ class OperatingPointRecord(Record):
     figures: dict[str, FigureRecord]
     findings: tuple[Finding, ...]
     exposure: tuple[ExposureRecord, ...] = ()
+    exemptions: tuple[ExemptionRecord, ...] = ()
 
 
 class Sheet(Record):
@@ -215,6 +328,7 @@ class Sheet(Record):
     verdict: Verdict
     power_ceiling: PowerCeiling
     operating_points: tuple[OperatingPointRecord, ...]
+    sessions: tuple[SessionRecord, ...] = ()
     cautions: tuple[str, ...]
 
     def all_findings(self) -> tuple[Finding, ...]:
@@ -236,6 +350,7 @@ class KeepoutPoint(Record):
     power_ceiling: PowerCeiling
     findings: tuple[Finding, ...]
     exposure: tuple[ExposureRecord, ...]
+    exemptions: tuple[ExemptionRecord, ...] = ()
 
 
 class KeepoutSheet(Record):
@@ -249,6 +364,7 @@ class KeepoutSheet(Record):
     verdict: Verdict
     power_ceiling: PowerCeiling
     operating_points: tuple[KeepoutPoint, ...]
+    sessions: tuple[SessionRecord, ...] = ()
     cautions: tuple[str, ...]
 
     def to_json(self) -> str:

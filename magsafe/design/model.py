@@ -4,6 +4,7 @@ Keys that only make sense together (a size for each shape, a wall for a tube) ar
 `consistency`; here each key stands for itself.
 """
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Annotated, Any, Literal, get_args
 
@@ -25,8 +26,10 @@ from magsafe.units import (
     CURRENT,
     DECIBEL,
     DURATION,
+    ELECTRIC_FIELD,
     FREQUENCY,
     LENGTH,
+    MAGNETIC_FIELD,
     POSITION,
     POWER,
     REACTIVE_POWER,
@@ -322,6 +325,8 @@ class Site(Block):
     air_temperature: Temperature | None = None
     metal_within: Annotated[float, Quantity(LENGTH, 0.0, 1000.0)] | None = None
     rules: Annotated[list[RuleName], Field(max_length=20)] = []
+    sessions: Annotated[list[Annotated[list[Name], Field(min_length=2, max_length=100)]], Field(max_length=20)] = []
+    over_the_body: Literal["worst point", "mean of squares"] = "worst point"
 
 
 class Place(Block):
@@ -337,6 +342,35 @@ class Place(Block):
     height: Height | None = None
     fence: Annotated[float, Quantity(LENGTH, 0.1, 1000.0)] | None = None
     when: Literal["always", "tuning"] = "always"
+
+
+class Probe(Block):
+    """What a field probe read, RMS of all components, while a steady carrier of this power at the transmitter was on.
+
+    `uncertainty` is the instrument's expanded one, in decibels of field.
+    """
+
+    name: Name | None = None
+    place: Name | None = None
+    along_axis: PlaceDistance | None = None
+    in_plane: PlaceDistance | None = None
+    across: PlaceDistance | None = None
+    height: Height | None = None
+    transmission: Name | None = None
+    power: Power
+    electric: Annotated[float, Quantity(ELECTRIC_FIELD, 1e-3, 100e3)] | None = None
+    magnetic: Annotated[float, Quantity(MAGNETIC_FIELD, 1e-6, 1e3)] | None = None
+    uncertainty: Annotated[float, Quantity(DECIBEL, 0.1, 10.0)]
+    date: Name | None = None
+
+    @property
+    def uncertainty_ratio(self) -> float:
+        """The uncertainty as a ratio of fields."""
+        return float(10.0 ** (self.uncertainty / 20.0))
+
+    def label(self, index: int) -> str:
+        """Return what the probe at this index in the file is called: its name, its place, or its number."""
+        return self.name or self.place or f"probe {index + 1}"
 
 
 class Margins(Block):
@@ -385,8 +419,15 @@ class DesignFile(Block):
     transmission: Annotated[list[Transmission], Field(min_length=1, max_length=100)]
     site: Site = Site()
     place: Annotated[list[Place], Field(max_length=200)] = []
+    probe: Annotated[list[Probe], Field(max_length=200)] = []
     margins: Margins = Margins()
     measured: Annotated[list[Measured], Field(max_length=100), BeforeValidator(_as_list)] = []
+
+
+def titles_of(transmissions: Sequence[tuple[str | None, float]]) -> tuple[str, ...]:
+    """Return what transmissions with these names and frequencies [Hz] are called."""
+    plain = [name or f"{frequency / 1e6:.6g} MHz" for name, frequency in transmissions]
+    return tuple(title if plain.count(title) == 1 else f"{title} ({index})" for index, title in enumerate(plain, 1))
 
 
 @dataclass(frozen=True, slots=True)
@@ -406,8 +447,7 @@ class Design(DesignFile):
     @property
     def titles(self) -> tuple[str, ...]:
         """What each transmission is called: its name, or its frequency; numbered where that is not its own."""
-        plain = [each.name or f"{each.frequency / 1e6:.6g} MHz" for each in self.transmission]
-        return tuple(title if plain.count(title) == 1 else f"{title} ({index})" for index, title in enumerate(plain, 1))
+        return titles_of([(each.name, each.frequency) for each in self.transmission])
 
     @property
     def ground_name(self) -> str | None:

@@ -12,7 +12,7 @@ from magsafe.checks.sheet import KeepoutSheet
 from magsafe.design.model import Design
 from magsafe.physics.arrays import Array
 from magsafe.reports.map_words import MapWords, words_of
-from magsafe.reports.terminal import _Speaker, console_on_output, is_plain, put
+from magsafe.reports.terminal import Speaker, console_on_output, is_plain, put
 
 _COLUMNS = 76
 _LINES = 30
@@ -28,10 +28,10 @@ def show_plan(
     """Print the plan of one transmission; where nothing is known of its fields, why there is none."""
     console = console or console_on_output()
     said = words_of(sheet, design, index)
-    put(console, Group(*_parts(_Speaker(console.width, is_plain(console)), said, design, made)))
+    put(console, Group(*_parts(Speaker(console.width, is_plain(console)), said, design, made)))
 
 
-def _parts(say: _Speaker, said: MapWords, design: Design, made: FieldMap | None) -> Iterator[RenderableType]:
+def _parts(say: Speaker, said: MapWords, design: Design, made: FieldMap | None) -> Iterator[RenderableType]:
     yield from say.heading(f"Plan from above: {said.shown}")
     if made is None or not said.contours:
         yield say.paragraph("No plan is drawn, because no keep-out is known.")

@@ -6,10 +6,18 @@ from math import inf
 
 from magsafe import words
 from magsafe.analysis.people import HALF_WIDTH, POSTURES
-from magsafe.checks.sheet import ORDER, DistanceRecord, ExposureRecord, KeepoutPoint, KeepoutSheet, Verdict
+from magsafe.checks.sheet import (
+    ORDER,
+    DistanceRecord,
+    ExposureRecord,
+    KeepoutPoint,
+    KeepoutSheet,
+    SessionExposure,
+    SessionPlace,
+    Verdict,
+)
 from magsafe.design.model import Design, Place
-from magsafe.reports.people import farthest, metres, on_floors
-from magsafe.units import significant
+from magsafe.reports.people import farthest, metres, on_floors, share
 
 SEPARATE_RULES = 2  # more of them share one contour for each tier, or nobody can tell the lines apart
 _DIRECTIONS = ("any_direction", "along_axis", "in_plane", "across", "above", "below")
@@ -154,11 +162,15 @@ def _spot(sheet: KeepoutSheet, design: Design, number: int, place: Place, index:
             key=lambda f: (ORDER.index(f[0].verdict), f[2] != index, -(f[0].share_of_limit or 0.0)),
         )
         verdict = record.verdict
-        share = record.share_of_limit
-        told = "its field is not known" if share is None else f"{_share(share)} the power at the limit"
+        part = record.share_of_limit
+        told = "its field is not known" if part is None else f"{share(part)} the power at the limit"
         told += f", {exposure.rule}"
         if where != index:
             told += f", in {words.short(sheet.operating_points[where].name)}"
+    for summed, exposed, name in _summed(sheet, place):
+        if summed.share_of_limit is not None and ORDER.index(summed.verdict) < ORDER.index(verdict):
+            verdict = summed.verdict
+            told = f"{share(summed.share_of_limit)} the power at the limit, {exposed.rule}, worked in turn: {name}"
     tuning = ", while tuning" if place.when == "tuning" else ""
     first, second = place.along_axis, place.in_plane
     if design.loop.plane == "horizontal":
@@ -179,13 +191,18 @@ def _spot(sheet: KeepoutSheet, design: Design, number: int, place: Place, index:
     )
 
 
-def _share(share: float) -> str:
-    return f"{significant(100.0 * share, 2)} % of" if share < 10.0 else f"{significant(share, 2)} times"
+def _summed(sheet: KeepoutSheet, place: Place) -> Iterator[tuple[SessionPlace, SessionExposure, str]]:
+    """Yield what each session adds up to at a place under each rule, and what the session is called."""
+    for session in sheet.sessions:
+        for exposure in session.exposure:
+            for record in exposure.places:
+                if record.name == place.name:
+                    yield record, exposure, session.name
 
 
 def _not_proven(sheet: KeepoutSheet, point: KeepoutPoint) -> Iterator[str]:
     """Yield why the contours do not hold, then why places or tiers are not proven."""
-    whole = [each.why for each in point.exposure if each.why]
+    whole = [each.why for each in point.exposure if each.why and not each.without]
     yield from whole
     for finding in (*sheet.findings, *point.findings):
         reason = finding.doubt or (finding.because if finding.verdict == "unproven" else "")
@@ -206,7 +223,7 @@ def _notes(sheet: KeepoutSheet, design: Design, index: int) -> Iterator[str]:
         yield "The loop rotates: all is the worst of its bearings, and places are drawn at theirs."
     if design.loop.plane == "vertical" and design.capacitor.position is None:
         yield "Where the capacitor sits is not stated: at each point the strongest field counts."
-    further = list(_further(sheet.operating_points, index))
+    further = list(_further(sheet, index))
     if further:
         yield f"In single directions others reach further, see the table: {'; '.join(further)}."
     unknown = [words.short(p.name) for p in sheet.operating_points if not any(e.keepout for e in p.exposure)]
@@ -214,18 +231,22 @@ def _notes(sheet: KeepoutSheet, design: Design, index: int) -> Iterator[str]:
         yield f"No keep-out is known of {', '.join(unknown)}."
 
 
-def _further(points: Sequence[KeepoutPoint], index: int) -> Iterator[str]:
-    """Yield other transmissions with the directions in which they reach further than the one shown."""
-    for other, point in enumerate(points):
-        if other == index:
-            continue
+def _further(sheet: KeepoutSheet, index: int) -> Iterator[str]:
+    """Yield other transmissions, and sessions, with the directions in which they reach further than the one shown."""
+    shown = {(each.rule, each.who): each.keepout for each in sheet.operating_points[index].exposure}
+    others: list[tuple[str, Sequence[ExposureRecord | SessionExposure]]] = [
+        *((words.short(point.name), point.exposure) for i, point in enumerate(sheet.operating_points) if i != index),
+        *((f"worked in turn {session.name}", session.exposure) for session in sheet.sessions),
+    ]
+    for name, exposure in others:
         found = []
-        for here, there in zip(points[index].exposure, point.exposure, strict=True):
-            if here.keepout is None or there.keepout is None:
+        for there in exposure:
+            here = shown.get((there.rule, there.who))
+            if here is None or there.keepout is None:
                 continue
-            for name in _DIRECTIONS:
-                ours, theirs = getattr(here.keepout, name), getattr(there.keepout, name)
+            for direction in _DIRECTIONS:
+                ours, theirs = getattr(here, direction), getattr(there.keepout, direction)
                 if ours is not None and theirs is not None and _metres(theirs) > _metres(ours):
-                    found.append(f"{name.replace('_', ' ')} {metres(theirs)} m for {here.rule} {here.who}")
+                    found.append(f"{direction.replace('_', ' ')} {metres(theirs)} m for {there.rule} {there.who}")
         if found:
-            yield f"{words.short(point.name)} ({', '.join(found)})"
+            yield f"{name} ({', '.join(found)})"

@@ -11,8 +11,18 @@ from rich.table import Table
 from rich.text import Text
 
 from magsafe import words
-from magsafe.checks.sheet import ORDER, FigureRecord, KeepoutPoint, KeepoutSheet, OperatingPointRecord, Sheet, Verdict
-from magsafe.reports import people, telling
+from magsafe.checks.sheet import (
+    ORDER,
+    FigureRecord,
+    Finding,
+    KeepoutPoint,
+    KeepoutSheet,
+    OperatingPointRecord,
+    SessionRecord,
+    Sheet,
+    Verdict,
+)
+from magsafe.reports import exemption, people, sessions, telling
 from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
 
@@ -70,12 +80,12 @@ def show_sheet(sheet: Sheet, console: Console | None = None) -> None:
 
 def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
     """Return a sheet as what rich prints, `width` columns wide; `plain` keeps to ASCII."""
-    say = _Speaker(width, plain)
+    say = Speaker(width, plain)
     return Group(
         *say.top(sheet),
         *say.in_the_way(sheet),
         *say.figures(sheet.operating_points),
-        *say.people(sheet.operating_points),
+        *say.people(sheet.operating_points, sheet.sessions),
         *say.clear(sheet),
         *say.list_of("Assumed", sheet.assumptions),
         *say.list_of("Cautions", sheet.cautions),
@@ -85,11 +95,11 @@ def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
 def show_keepout(sheet: KeepoutSheet, console: Console | None = None) -> None:
     """Print where people must not be."""
     console = console or console_on_output()
-    say = _Speaker(console.width, is_plain(console))
+    say = Speaker(console.width, is_plain(console))
     put(console, Group(*say.keepout(sheet)))
 
 
-class _Speaker:
+class Speaker:
     """Turns parts of a sheet into text of one width and alphabet."""
 
     def __init__(self, width: int, plain: bool) -> None:
@@ -127,15 +137,26 @@ class _Speaker:
             yield self.item(finding.verdict, f"{finding.id}: {finding.because}. Do: {finding.do}.")
         for point in sheet.operating_points:
             yield from self.heading(_use(point))
-            for finding in point.findings:
-                where = f"{words.short(finding.place)} ({words.short(finding.id, 60)})" if finding.place else finding.id
-                do = "" if finding.verdict == "clear" else f" Do: {finding.do}."
-                yield self.item(finding.verdict, f"{where}: {finding.because}.{do}")
+            for finding in (each for each in point.findings if each.session is None):
+                yield self._told(finding)
             head = ("rule and tier", "direction", "m", "set by", "key-down, m")
             yield Text("")
             yield self.grid(head, people.keepout_rows(point))
+        for session in sheet.sessions:
+            yield from self.heading(f"Worked in turn: {session.name}")
+            for finding in sessions.findings(session, sheet.operating_points):
+                yield self._told(finding)
+            yield Text("")
+            yield self.grid(("rule and tier", "direction", "m", "set by"), sessions.keepout_rows(session))
         yield from self.doubts(sheet.operating_points)
+        yield from self.exempt(sheet.operating_points)
         yield from self.list_of("Cautions", sheet.cautions)
+
+    def _told(self, finding: Finding) -> RenderableType:
+        """Return a finding about people in full: its place, its id, why, and what to do."""
+        where = f"{words.short(finding.place)} ({words.short(finding.id, 60)})" if finding.place else finding.id
+        do = "" if finding.verdict == "clear" else f" Do: {finding.do}."
+        return self.item(finding.verdict, f"{where}: {finding.because}.{do}")
 
     def top(self, sheet: Sheet) -> Iterator[RenderableType]:
         """Yield the verdict, what it means, and the highest power."""
@@ -168,13 +189,15 @@ class _Speaker:
 
     def clear(self, sheet: Sheet) -> Iterator[RenderableType]:
         """Yield what is clear, a paragraph each."""
-        told = [each for each in telling.findings(sheet, "clear") if each.finding.place is None]
+        told = [each for each in telling.findings(sheet, "clear") if not _is_among_places(each.finding)]
         if told:
             yield from self.heading("What is clear")
         for each in told:
             yield self.item("clear", f"{_title(each)}: {each.finding.because}.")
 
-    def people(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
+    def people(
+        self, points: Sequence[OperatingPointRecord], worked: Sequence[SessionRecord]
+    ) -> Iterator[RenderableType]:
         """Yield places with their verdicts, and the table of distances, for each transmission."""
         if not any(point.exposure for point in points):
             return
@@ -184,16 +207,38 @@ class _Speaker:
             places = [(place, exposure) for exposure in point.exposure for place in exposure.places]
             for place, exposure in sorted(places, key=lambda each: ORDER.index(each[0].verdict)):
                 yield self.item(place.verdict, f"{people.place_text(place, exposure)}.")
+        for session in worked:
+            yield self.paragraph(f"Worked in turn: {session.name}")
+            for verdict, text in sessions.places(session, points):
+                yield self.item(verdict, text)
         yield from self.heading("People: keep-out in metres from the loop's centre, averaged; last column key-down")
         for point in points:
             yield self.grid((words.short(point.name), *people.distance_columns(point)), people.distance_rows(point))
+        for session in worked:
+            columns = people.distance_columns(points[session.transmissions[0]])[:-1]
+            yield self.paragraph(f"Worked in turn: {session.name}")
+            yield self.grid(("", *columns), sessions.distance_rows(session))
         yield from self.doubts(points)
+        yield from self.exempt(points)
 
     def doubts(self, points: Sequence[OperatingPointRecord | KeepoutPoint]) -> Iterator[RenderableType]:
-        """Yield why distances are not known, or do not hold."""
-        reasons = dict.fromkeys(each.why for point in points for each in point.exposure if each.why)
-        for reason in reasons:
-            yield self.paragraph(f"Not proven: {reason}.")
+        """Yield why distances are not known, or do not hold, and which rules have no limits for a tier."""
+        reasons = dict.fromkeys((each.without, each.why) for point in points for each in point.exposure if each.why)
+        for without, reason in reasons:
+            yield self.paragraph(f"{reason}." if without else f"Not proven: {reason}.")
+
+    def exempt(self, points: Sequence[OperatingPointRecord | KeepoutPoint]) -> Iterator[RenderableType]:
+        """Yield whether the rules ask for an evaluation at all."""
+        if any(point.exemptions for point in points):
+            yield from self.heading(exemption.HEADING)
+        for warning in exemption.warnings(points):
+            yield self.paragraph(warning)
+        for point in points:
+            said = tuple(exemption.sentences(point))
+            if said:
+                yield self.paragraph(_use(point))
+            for sentence in said:
+                yield self.paragraph(sentence, indent=2)
 
     def grid(self, head: Sequence[str], rows: Iterable[Sequence[str]]) -> RenderableType:
         """Return a table of short cells, the first column to the left; where it would not fit, a line for each row."""
@@ -262,6 +307,11 @@ class _Speaker:
         for sentence in sentences:
             lines = wrap(self.letters(sentence), self.width - 2, break_on_hyphens=False)
             yield Text("\n".join(f"{'- ' if i == 0 else '  '}{line}" for i, line in enumerate(lines)), no_wrap=True)
+
+
+def _is_among_places(finding: Finding) -> bool:
+    """Return whether the list of places tells it: that of a rule for a place, and not a reading there."""
+    return finding.place is not None and not finding.id.startswith("exposure.probe.")
 
 
 def _title(told: telling.Told) -> str:

@@ -154,7 +154,7 @@ def test_of_several_transmissions_the_one_that_reaches_furthest_is_shown_and_nam
 
 def test_where_another_transmission_reaches_further_it_is_told() -> None:
     sheet = sheet_of(magsafe.read_design(Path(__file__).parents[2] / "sample_designs" / "breakwater_mast.toml"))
-    (told,) = map_words._further(sheet.operating_points, 1)
+    (told,) = map_words._further(sheet, 1)
     assert told.startswith("160 m voice (")
     first, second = (point.exposure[0].keepout for point in sheet.operating_points)
     assert first is not None

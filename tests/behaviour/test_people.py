@@ -387,3 +387,93 @@ def test_the_rules_command() -> None:
     wrong = run("rules", "us-fc")
     assert wrong.returncode == 2
     assert "did you mean us-fcc?" in wrong.stderr
+
+
+def test_a_tier_without_limits_has_no_row_of_question_marks(design: MakeDesign) -> None:
+    """It is told in one plain sentence, where to look instead, and not as something that was not proven."""
+    site = {"ground": "average", "rules": ["eu-1999-519", "us-fcc"]}
+    tree = plain_tree(
+        **{**SITE, "site": site, "place": [{**DESK, "along_axis": "9 m"}, {**WALK, "along_axis": "12 m"}]}
+    )
+    for command in ("check", "keepout"):
+        text = " ".join(run(command, "-", given=file_of(tree)).stdout.split())
+        assert text.count("eu-1999-519 has no limits for trained people: the recommendation is for the general") == 1
+        assert "Not proven" not in text
+        assert " ? " not in text
+        assert "eu-1999-519 public" in text
+        assert "eu-1999-519 trained" not in text
+    records = magsafe.check(design(**{**SITE, "site": site})).operating_points[0].exposure
+    assert [(e.rule, e.who) for e in records if e.without] == [("eu-1999-519", "trained")]
+
+
+def test_a_place_that_no_rule_knows_is_told_so() -> None:
+    site = {"ground": "average", "rules": ["eu-1999-519"]}
+    tree = plain_tree(
+        **{**SITE, "site": site, "place": [{**DESK, "along_axis": "9 m"}, {**WALK, "along_axis": "12 m"}]}
+    )
+    text = " ".join(run("check", "-", given=file_of(tree)).stdout.split())
+    assert "operating desk, eu-1999-519 trained: no limits in this rule" in text
+    assert "unproven" in text
+
+
+def test_distances_that_are_not_known_keep_their_question_marks() -> None:
+    tree = plain_tree(**SITE, place=[DESK, WALK], transmission__0__frequency="50.1 MHz")
+    text = " ".join(run("check", "-", given=file_of(tree)).stdout.split())
+    assert "us-fcc trained ? ?" in text
+    assert "Not proven: no series capacitor" in text
+
+
+def test_exemption_is_told_with_its_warning_on_both_surfaces() -> None:
+    """47 CFR 1.1307(b)(3)(i)(C), Table 1: at 7.1 MHz it holds from 6.72 m on, as 3450 R^2/f^2."""
+    site = {"ground": "average", "rules": ["us-fcc", "icnirp-2020"]}
+    near = {**WALK, "name": "gate", "along_axis": "4 m"}
+    tree = plain_tree(**{**SITE, "site": site, "place": [WALK, near]})
+    for command in ("check", "keepout"):
+        done = run(command, "-", given=file_of(tree)).stdout
+        assert max(map(len, done.splitlines())) <= 80
+        text = " ".join(done.split())
+        assert "Exemption from evaluation is not compliance: the limit still binds." in text
+        assert "It holds from 6.72 m on (wavelength / 2 pi); nearer than that an evaluation is required." in text
+        assert "Quay walk at 7.69 m: threshold 4000 W, exempt; gate at 3.69 m: nearer than it holds" in text
+        assert "1.40 times the limit for the public" in text
+        assert "power of the transmitter 100 W mean over 30 min, threshold 0.001 W: not exempt" in text
+        assert "United Kingdom, licence condition" in text
+        assert "at the crest, threshold 10 W: not exempt" in text
+    made = json.loads(run("keepout", "-", "--json", given=file_of(tree)).stdout)
+    told = made["operating_points"][0]["exemptions"]
+    assert [each["kind"] for each in told] == ["ERP by distance", "power", "EIRP"]
+    assert all(each["warning"].endswith("the limit still binds") for each in told)
+
+
+def test_without_a_public_place_there_is_nothing_to_hold_it_against() -> None:
+    tree = plain_tree(**SITE, place=[DESK], transmission__0__frequency="50.1 MHz")
+    text = " ".join(run("check", "-", given=file_of(tree)).stdout.split())
+    assert "No place of the public is given to hold it against." in text
+    assert "evaluation, by ERP and distance" in text
+    assert "not known, its gain is not known" in text
+
+
+def test_a_rule_that_exempts_nobody_says_nothing_of_it() -> None:
+    site = {"ground": "average", "rules": ["eu-1999-519"]}
+    tree = plain_tree(**{**SITE, "site": site})
+    assert "Exemption" not in run("check", "-", given=file_of(tree)).stdout
+
+
+def test_the_rules_command_tells_sums_means_and_exemptions() -> None:
+    text = " ".join(run("rules", "us-fcc").stdout.split())
+    for said in (
+        "Several transmissions: on a basis that is averaged, the larger of the squares",
+        "Mean over the body: of the square, where it is asked for, on thermal whole-body, no nearer to the source",
+        "Left unjudged then: the SAR limits for parts of the body",
+        "Exempt from evaluation, not from the limits: United States",
+        "It holds from R = wavelength / 2 pi on.",
+        "3450 / f^2 R^2 W",
+        "power at or below 0.001 W; the mean counts.",
+    ):
+        assert said in text
+    text = " ".join(run("rules", "icnirp-2020").stdout.split())
+    assert "come to no more than 1 together. So up to 30 MHz; above, the larger of the two counts." in text
+    text = " ".join(run("rules", "de-26bimschv").stdout.split())
+    assert "Mean over the body: does not count" in text
+    assert "come to no more than 1, and so do those of H." in text
+    assert "EIRP below 10 W; the crest of the envelope counts." in text

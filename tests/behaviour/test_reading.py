@@ -577,7 +577,7 @@ PATHS = [
     "loop", "loop__shape", "loop__conductor", "loop__joint", "loop__points", "capacitor", "capacitor__with",
     "capacitor__capacitance", "capacitor__quality_factor", "transmission", "transmission__0",
     "transmission__0__over", "site", "site__ground", "site__rules", "site__floors", "place", "margins", "measured",
-    "station", "tuning", "feed__line_loss",
+    "station", "tuning", "feed__line_loss", "probe",
 ]  # fmt: skip
 
 

@@ -12,6 +12,8 @@ import pytest
 from pytest_benchmark.fixture import BenchmarkFixture
 
 import magsafe
+from magsafe.design.reading import parse_design
+from magsafe.rules.limit import rule_names
 
 SAMPLE = Path(__file__).parents[2] / "sample_designs" / "slipway_portable.toml"
 
@@ -47,3 +49,19 @@ def test_check_without_start_up(benchmark: BenchmarkFixture) -> None:
 
 def test_reading_a_design(benchmark: BenchmarkFixture) -> None:
     benchmark(magsafe.read_design, SAMPLE)
+
+
+def test_people_of_six_transmissions_under_every_rule(benchmark: BenchmarkFixture) -> None:
+    """Places and keep-out of all rules that are there, after a first run: target 1.5 s."""
+    text = SAMPLE.read_text(encoding="utf-8")
+    listed = ", ".join(f'"{name}"' for name in rule_names())
+    text = text.replace('rules = ["us-fcc"]', f"rules = [{listed}]")
+    first = text.index("[[transmission]]")
+    block = text[first : text.index("[[transmission]]", first + 1)]
+    more = [block.replace("30 m telegraphy", f"{f} MHz").replace("10.12 MHz", f"{f} MHz") for f in ("18.08", "24.9")]
+    text = text[:first] + "".join(more) + text[first:]
+    design = parse_design(text.encode(), "six.toml")
+    magsafe.check(design)
+    sheet = benchmark.pedantic(magsafe.check, args=(design,), rounds=5)  # type: ignore[no-untyped-call]
+    assert len(sheet.operating_points) == 6
+    assert len({each.rule for each in sheet.operating_points[0].exposure}) == len(rule_names())
