@@ -1,5 +1,6 @@
-"""`magsafe keepout`: where people must not be, as tables, as a plan in characters, as a map in a file."""
+"""`magsafe keepout`: where people must not be, as tables, as a plan in characters, as a map and a sign in files."""
 
+from collections.abc import Callable
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated
 
@@ -15,27 +16,45 @@ if TYPE_CHECKING:
 MapPath = Annotated[
     str | None, typer.Option("--map", metavar="FILE", help="Write a map to scale, as .svg or .png, by its ending.")
 ]
+SignPath = Annotated[
+    str | None,
+    typer.Option("--sign", metavar="FILE", help="Write a fence sign and a pocket card for A4, as .svg or .png."),
+]
 Plan = Annotated[bool, typer.Option("--plan", help="Print a plan in characters beneath the tables.")]
-Force = Annotated[bool, typer.Option("--force", help="Let --map replace a file that exists.")]
+Force = Annotated[bool, typer.Option("--force", help="Let --map and --sign replace files that exist.")]
 
 
 def keepout(
-    design: DesignPath, as_json: AsJson = False, to: MapPath = None, plan: Plan = False, force: Force = False
+    design: DesignPath,
+    as_json: AsJson = False,
+    to: MapPath = None,
+    sign: SignPath = None,
+    plan: Plan = False,
+    force: Force = False,
 ) -> None:
     """Where people must not be: distances by rule, tier and direction, and each place.
 
-    Leaves by the exposure findings alone: 0 (clear or narrow), 1 (stop), 3 (unproven) or 2 (the design or the file of
-    --map cannot be used).
+    Leaves by the exposure findings alone: 0 (clear or narrow), 1 (stop), 3 (unproven) or 2 (the design or a file of
+    --map or --sign cannot be used).
     """
-    target = _target(to, as_json=as_json, plan=plan, force=force)
+    map_file, sign_file = _files(to, sign, as_json=as_json, plan=plan, force=force)
     import magsafe  # noqa: PLC0415  (keeps --help quick)
     from magsafe.checks.keepout import keepout as of_people  # noqa: PLC0415
 
     read = load(design)
-    sheet = of_people(magsafe.check(read))
-    index, made = _fields(read, sheet) if target is not None or plan else (0, None)
-    if target is not None:
-        _save_map(target, sheet, read, index, made, force=force)
+    whole = magsafe.check(read)
+    sheet = of_people(whole)
+    index, made = _fields(read, sheet) if map_file is not None or plan else (0, None)
+    drawn: list[_Drawn] = []
+    if map_file is not None:
+        from magsafe.reports.pictures import keepout_map  # noqa: PLC0415
+
+        drawn.append(("--map", map_file, "map", lambda: keepout_map(sheet, read, index, made)))
+    if sign_file is not None:
+        from magsafe.reports.sign import fence_sign  # noqa: PLC0415
+
+        drawn.append(("--sign", sign_file, "sign", lambda: fence_sign(whole, sheet, read)))
+    _save(drawn, force=force)
     if as_json:
         write(sheet.to_json())
     else:
@@ -50,26 +69,48 @@ def keepout(
     raise typer.Exit(exit_status(sheet.verdict))
 
 
-def _target(to: str | None, *, as_json: bool, plan: bool, force: bool) -> Path | None:
-    """Return the file of the map; raise CommandError where the options cannot be carried out."""
+_Drawn = tuple[str, Path, str, Callable[[], str]]  # the option, its file, what it is called, what makes it as SVG
+
+
+def _files(
+    to: str | None, sign: str | None, *, as_json: bool, plan: bool, force: bool
+) -> tuple[Path | None, Path | None]:
+    """Return the files of map and sign; raise CommandError where the options cannot be carried out."""
     from magsafe.errors import CommandError  # noqa: PLC0415
 
     if as_json and plan:
-        raise CommandError("--plan", "--json beside it", "one of the two", "leave one out; --map goes with both")
+        raise CommandError(
+            "--plan", "--json beside it", "one of the two", "leave one out; --map and --sign go with both"
+        )
+    if force and to is None and sign is None:
+        raise CommandError(
+            "--force",
+            "no --map and no --sign beside it",
+            "a file to replace",
+            "add --map FILE or --sign FILE, or leave it out",
+        )
+    map_file, sign_file = _target("--map", to, force=force), _target("--sign", sign, force=force)
+    if map_file is not None and sign_file is not None and map_file.resolve() == sign_file.resolve():
+        raise CommandError("--sign", f"{sign_file}, the file of --map too", "a file of its own", "name another file")
+    return map_file, sign_file
+
+
+def _target(option: str, to: str | None, *, force: bool) -> Path | None:
+    """Return the file that an option names; raise CommandError where it cannot be written."""
+    from magsafe.errors import CommandError  # noqa: PLC0415
+
     if to is None:
-        if force:
-            raise CommandError("--force", "no --map beside it", "a file to replace", "add --map FILE, or leave it out")
         return None
     path = Path(to)
     if path.suffix.lower() not in (".svg", ".png"):
-        raise CommandError("--map", repr(to), "a name that ends in .svg or .png", "write .svg")
+        raise CommandError(option, repr(to), "a name that ends in .svg or .png", "write .svg")
     if path.suffix.lower() == ".png":
         from magsafe.reports.png import require_png  # noqa: PLC0415
 
-        require_png()
+        require_png(option)
     from magsafe.cli.saving import require_writable  # noqa: PLC0415
 
-    require_writable("--map", path, force=force)
+    require_writable(option, path, force=force)
     return path
 
 
@@ -88,14 +129,17 @@ def _fields(design: "Design", sheet: "KeepoutSheet") -> "tuple[int, FieldMap | N
         return index, field_map(design, point, farthest_of(sheet.operating_points[index]), bar)
 
 
-def _save_map(
-    path: Path, sheet: "KeepoutSheet", design: "Design", index: int, made: "FieldMap | None", *, force: bool
-) -> None:
+def _save(drawn: list[_Drawn], *, force: bool) -> None:
+    """Draw all pictures, then write them, so that one that cannot be drawn leaves no other behind."""
     from magsafe.__main__ import say  # noqa: PLC0415
     from magsafe.cli.saving import save  # noqa: PLC0415
-    from magsafe.reports.pictures import keepout_map  # noqa: PLC0415
-    from magsafe.reports.png import as_png  # noqa: PLC0415
+    from magsafe.reports.png import as_png, lacks_letters  # noqa: PLC0415
 
-    svg = keepout_map(sheet, design, index, made)
-    save("--map", path, as_png(svg) if path.suffix.lower() == ".png" else svg.encode("utf-8"), force=force)
-    say(f"The map is in {path}.\n")
+    made = []
+    for option, path, what, draw in drawn:
+        svg, as_dots = draw(), path.suffix.lower() == ".png"
+        note = " It has no letters for some of the names; .svg has them." if as_dots and lacks_letters(svg) else ""
+        made.append((option, path, f"The {what} is in {path}.{note}", as_png(svg) if as_dots else svg.encode("utf-8")))
+    for option, path, told, data in made:
+        save(option, path, data, force=force)
+        say(f"{told}\n")

@@ -85,6 +85,12 @@ class Drawing:
         told = attributes({"x": at[0], "y": at[1], "font_size": size, "fill": "#000", **values})
         self.parts.append(f"<text{told}>{escape(plain(text))}</text>")
 
+    def runs(self, at: Point, runs: Iterable[tuple[str, bool]], size: float = TEXT) -> None:
+        """Write a line of texts, each bold or not, its baseline beginning at a point."""
+        told = attributes({"x": at[0], "y": at[1], "font_size": size, "fill": "#000"})
+        spans = (f'<tspan font-weight="{"bold" if bold else "normal"}">{escape(plain(t))}</tspan>' for t, bold in runs)
+        self.parts.append(f"<text{told}>{''.join(spans)}</text>")
+
     def define(self, markup: str) -> None:
         """Keep something that is drawn only where it is named; of our own making, it is not escaped."""
         self.definitions.append(markup)
@@ -95,10 +101,10 @@ class Drawing:
         told = attributes({"x": left, "y": top, "width": right - left, "height": bottom - top})
         self.define(f'<clipPath id="{name}"><rect{told}/></clipPath>')
 
-    def mark(self, verdict: Verdict, at: Point, size: float = TEXT) -> None:
-        """Draw a verdict's shape about a point."""
+    def mark(self, verdict: Verdict, at: Point, size: float = TEXT, fill: str | None = None) -> None:
+        """Draw a verdict's shape about a point, in its colour or in another."""
         x, y, r = *at, 0.5 * size
-        told: dict[str, str | float] = {"fill": MARKS[verdict].colour, "stroke": "#000", "stroke_width": 0.2}
+        told: dict[str, str | float] = {"fill": fill or MARKS[verdict].colour, "stroke": "#000", "stroke_width": 0.2}
         told["class"] = f"mark-{verdict}"
         if verdict == "clear":
             self.add("circle", cx=x, cy=y, r=0.9 * r, **told)
