@@ -25,7 +25,8 @@ from magsafe.physics.near_field import SegmentCurrents
 from magsafe.physics.soil_spectrum import PHASE, rule
 
 IMPEDANCE = mu_0 * c  # of free space
-LEAST_PANELS = 3  # of elevation, sixteen angles each
+LEAST_PANELS = 1  # of elevation, sixteen angles each
+OWN_PHASE = 2.0  # radians that the change of the reflection coefficients counts for
 ALLOWANCE = 1e-9  # a direction along the ground or to the zenith may lie beyond it by rounding
 PASSES = 4  # of a search for a maximum, each sixteen times finer
 FINE: Array = np.linspace(-1.0, 1.0, 33)
@@ -80,6 +81,7 @@ class GroundPattern:
             below 1 or has an imaginary part above 0
 
         Valid     the currents are given: that soil changes them is the caller's to know. Flat, even soil without end.
+                  Power to 1e-9 over soil and sea, to 1e-7 over what conducts without end.
         Source    reflection of plane waves: Balanis, Antenna Theory, section 4.8 (memory).
         """
         below = int(np.count_nonzero(np.minimum(currents.start[:, 2], currents.end[:, 2]) < 0.0))
@@ -265,7 +267,7 @@ class GroundPattern:
         # In the sine of the elevation, finer near the horizon, where the reflection changes.
         nearest = 1.0 / abs(self.permittivity + 1.0) ** 0.5
         first, last = (float(np.arcsinh(np.sin(each) / nearest)) for each in (low, high))
-        panels = LEAST_PANELS + ceil(self._phase() * (last - first) / PHASE)
+        panels = LEAST_PANELS + ceil((self._phase() + OWN_PHASE) * (last - first) / PHASE)
         node, weight = rule(panels)
         stretched = first + (last - first) * node
         sine = np.minimum(nearest * np.sinh(stretched), 1.0)
