@@ -17,7 +17,6 @@ from magsafe.analysis.keepout import Curve, Distance, Distances, FloorDistances,
 from magsafe.physics.arrays import Array
 from magsafe.rules.summation import Summation
 
-
 _NOTHING = 1e-30  # of a limit: no power that there is brings it to that limit
 
 
