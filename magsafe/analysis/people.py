@@ -17,7 +17,7 @@ ELECTRIC_NEAR_CAPACITOR = 0.5
 _ACROSS, _UP = 0.15, 0.2  # m, first steps of the search in a column
 _REFINEMENTS = 2
 _COARSE_FROM = 1.0  # m
-_NEARBY = 2.0  # m: nearer, a rotating loop is tried at twice as many bearings
+_NEARBY = 2.0  # m: nearer, a rotating loop is tried at more bearings
 _FENCE_STEPS = (1.0, 1.05, 1.12, 1.25, 1.5, 2.0, 3.0, 5.0)
 _FENCE_PAD = 1.02**2  # on squares, for what lies between the points on a fence
 
@@ -169,7 +169,7 @@ def _boxes(design: Design, place: Place) -> list[_Box]:
     if design.loop.rotates:
         centres = at_bearings(
             np.array([[hypot(x, y), 0.0, 0.0]]),
-            np.radians(np.arange(0.0, 360.0, 7.5 if hypot(x, y) < _NEARBY else 15.0)),
+            np.radians(np.arange(0.0, 360.0, 5.0 if hypot(x, y) < _NEARBY else 7.5)),
         )
     wide = np.array([half, half, 0.0])
     return [_Box(centre - wide + [0.0, 0.0, low], centre + wide + [0.0, 0.0, high]) for centre in centres]

@@ -14,7 +14,10 @@ from magsafe.checks.view import View
 from magsafe.rules.exemption import Exemption
 from magsafe.rules.limit import Rule, load_rule
 
-WARNING = "exemption from evaluation is not compliance: the limit still binds"
+WARNING = (
+    "exemption from evaluation is not compliance: the limit still binds; each transmission is held against it by "
+    "itself, and what is worked in turn adds up"
+)
 _TOO_NEAR = "nearer than it holds, so that an evaluation is required"
 
 

@@ -244,6 +244,7 @@ def _place(view: View, rule: Rule, found: tuple[Basis, ...], place: Place, unkno
             when=place.when,
             bases=records,
             times=() if finding.doubt else _times(view, judged, tuning),
+            in_session=any(view.title in names for names in view.design.site.sessions),
         ),
         finding,
     )
@@ -330,7 +331,7 @@ def _times(view: View, judged: Sequence[_Judged], tuning: bool) -> tuple[TimeRec
                     for_each_watt = each.share * strict / use.judged(time, "tuning" if tuning else "always")
                     beside = 0.0 if tuning else use.tune_up_power * min(1.0, use.tune_up_time / time)
                     rest.append(max(0.0, 1.0 - beside * for_each_watt) / (power * for_each_watt))
-            allowed.append(min(1.0, *rest, 1.0) * time)
+            allowed.append(min([1.0, *rest]) * time)
         made.append(TimeRecord(averaging_time=time, keyed=None if tuning else allowed[0], carrier=allowed[1]))
     return tuple(made)
 
@@ -373,5 +374,9 @@ def unread(rows: Sequence[tuple[Limit, float]]) -> str:
 
 
 def unjudged(rule: Rule, *, mean: bool) -> str:
-    """Return what is left unjudged where the mean over the body decides; empty if nothing is."""
-    return f"by the mean over the body; {rule.body.local}" if mean and rule.body.local else ""
+    """Return what is left unjudged, or from memory, where the mean over the body decides; empty if nothing is."""
+    if not mean:
+        return ""
+    memory = "that the rule lets it count is from memory" if rule.body.provenance == "memory" else ""
+    reasons = "; ".join(filter(None, (rule.body.local, memory)))
+    return f"by the mean over the body; {reasons}" if reasons else ""

@@ -197,15 +197,14 @@ def _place(here: _AtPlace) -> tuple[SessionPlace, list[tuple[int, Finding]]]:
     name = max(sums, key=lambda each: float(sums[each].share))
     binding, share = sums[name], float(sums[name].share)
     likely, bare = (
-        float(here.sum(name, factor).share)
+        max(float(here.sum(each, factor).share) for each in here.names)
         for factor in (lambda view: view.likely_factor, lambda view: view.bare_factor)
     )
     factors = (None, None) if tuning else (here.power_factor(session.margin), here.power_factor(1.0))
     check = Check(
         f"exposure.{rule.name}.{here.who}.session-{session.number}.{words.slug(here.place.name)}",
         f"Is {here.place.name} within the limits of {rule.name} for {here.who} people while these are worked in turn?",
-        "keep people out of this place while they are worked in turn, or take them out of site.sessions and work them "
-        "an averaging time apart",
+        "work them an averaging time apart, or keep people out of this place while they are worked in turn",
         f"{rule.standard}, {rule.edition}; {rule.summation.source}",
         "1",
     )
@@ -263,5 +262,5 @@ def _terms(found: Sum, parts: Sequence[Part]) -> tuple[SessionTerm, ...]:
 def _do(found: Finding, factor: float | None, otherwise: str) -> str:
     """Return what to do: all powers lowered alike, or what the check says."""
     if found.verdict == "clear" or factor is None or factor >= 1.0 or factor == 0.0:
-        return "nothing" if found.verdict == "clear" else otherwise
+        return otherwise if factor == 0.0 and found.verdict != "clear" else found.do
     return f"lower all of their powers to {words.floor_two_digits(100.0 * factor)} %, or {otherwise}"

@@ -37,6 +37,12 @@ class View:
         return (self.point.power_at_loop.high or 0.0) / self.point.power
 
     @property
+    def title(self) -> str:
+        """What the transmission is called."""
+        index = next(i for i, each in enumerate(self.design.transmission) if each is self.point.transmission)
+        return self.design.titles[index]
+
+    @property
     def margin(self) -> float:
         """The exposure margin as a ratio of fields."""
         return self.design.margins.exposure_ratio

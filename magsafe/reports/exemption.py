@@ -35,7 +35,7 @@ def _said(record: ExemptionRecord) -> Iterator[str]:
             yield f"{where}: {own}, threshold {words.watts(record.threshold)}: {told}."
         else:
             yield f"{where}: {own}{f'; {record.why}' if record.why else ''}."
-    if record.kind == "ERP by distance":
+    if record.kind == "ERP by distance" and not (record.power is not None and record.why):
         yield from _by_distance(record)
 
 

@@ -11,6 +11,7 @@ from magsafe.checks.sheet import (
     DistanceRecord,
     ExposureRecord,
     KeepoutPoint,
+    KeepoutRecord,
     KeepoutSheet,
     SessionExposure,
     SessionPlace,
@@ -105,13 +106,13 @@ def words_of(sheet: KeepoutSheet, design: Design, index: int) -> MapWords:
     shown = f"{use}, {words.watts(point.power)} PEP at the transmitter"
     count = len(sheet.operating_points)
     if count > 1:
-        shown += f"; of {count} transmissions the one whose keep-out reaches furthest"
+        shown += f"; of {count} transmissions the one whose keep-out reaches furthest by itself"
     vertical = design.loop.plane == "vertical"
     return MapWords(
         title=f"Where people must not be: {words.short(design.station.name or sheet.design.name, 60)}",
         origin=f"{words.short(sheet.design.name, 60)}, {sheet.date}, magsafe {sheet.magsafe}",
         shown=shown,
-        contours=tuple(_contours(point)),
+        contours=tuple(_contours(point, sheet)),
         spots=tuple(_spot(sheet, design, i, place, index) for i, place in enumerate(design.place, 1)),
         not_proven=tuple(dict.fromkeys(_not_proven(sheet, point))),
         notes=tuple(_notes(sheet, design, index)),
@@ -119,7 +120,7 @@ def words_of(sheet: KeepoutSheet, design: Design, index: int) -> MapWords:
     )
 
 
-def _contours(point: KeepoutPoint) -> Iterator[Contour]:
+def _contours(point: KeepoutPoint, sheet: KeepoutSheet) -> Iterator[Contour]:
     known = [each for each in point.exposure if each.keepout is not None]
     names = list(dict.fromkeys(each.rule for each in known))
     groups: list[tuple[str, list[ExposureRecord]]] = []
@@ -141,8 +142,22 @@ def _contours(point: KeepoutPoint) -> Iterator[Contour]:
             f"{told}: {farthest([each.any_direction for each in made])} m in any direction"
             f"{setters}; "
             f"on the floors {farthest([floor for each in made for floor in on_floors(each)])} m; "
-            f"key-down {farthest([each.key_down.any_direction for each in made])} m",
+            f"key-down {farthest([each.key_down.any_direction for each in made])} m{_in_turn(sheet, who, rules, made)}",
         )
+
+
+def _in_turn(sheet: KeepoutSheet, who: str, rules: tuple[str, ...], drawn: list[KeepoutRecord]) -> str:
+    """Return how far the sessions reach under these rules, where that is further than what is drawn."""
+    summed = [
+        each.keepout.any_direction
+        for session in sheet.sessions
+        for each in session.exposure
+        if each.who == who and each.rule in rules and each.keepout is not None
+    ]
+    furthest = max((_metres(each.any_direction) for each in drawn), default=0.0)
+    if not summed or max(_metres(each) for each in summed) <= furthest:
+        return ""
+    return f"; worked in turn {farthest(summed)} m, further than drawn"
 
 
 def _spot(sheet: KeepoutSheet, design: Design, number: int, place: Place, index: int) -> Spot:
@@ -225,7 +240,7 @@ def _notes(sheet: KeepoutSheet, design: Design, index: int) -> Iterator[str]:
         yield "Where the capacitor sits is not stated: at each point the strongest field counts."
     further = list(_further(sheet, index))
     if further:
-        yield f"In single directions others reach further, see the table: {'; '.join(further)}."
+        yield f"Not drawn, and further in some directions, see the table: {'; '.join(further)}."
     unknown = [words.short(p.name) for p in sheet.operating_points if not any(e.keepout for e in p.exposure)]
     if unknown and point.exposure and any(each.keepout for each in point.exposure):
         yield f"No keep-out is known of {', '.join(unknown)}."

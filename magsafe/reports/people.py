@@ -88,6 +88,8 @@ def place_text(place: PlaceRecord, exposure: ExposureRecord) -> str:
         found += f" ({share(place.body_mean_share).removesuffix(' of')} by the mean over the body)"
     if place.power_ceiling is None:
         return f"{found}, by what is computed, but not proven"
+    if place.power_ceiling == 0.0 and place.when != "tuning":
+        return f"{found}; could bear no power: the tune-up alone is too much{times(place)}"
     what = "a tune-up of " if place.when == "tuning" else ""
     return f"{found}; could bear {what}{words.power(place.power_ceiling)}{times(place)}"
 
@@ -96,15 +98,19 @@ def times(place: PlaceRecord) -> str:
     """Return how long one may transmit at full power with somebody there, the margin kept."""
     limited = [each for each in place.times if each.carrier < each.averaging_time]
     if place.times and not limited:
-        return "; even an unbroken carrier has no limit of time"
-    return "".join(f"; with somebody there {_time(each)}" for each in limited)
+        return f"; {'the tune-up' if place.when == 'tuning' else 'even an unbroken carrier'} has no limit of time"
+    return "".join(f"; with somebody there {_time(each)}{_alone(place)}" for each in limited)
+
+
+def _alone(place: PlaceRecord) -> str:
+    return ", and nothing else in that time" if place.in_session else ""
 
 
 def _time(found: TimeRecord) -> str:
     window, minutes = words.duration(found.averaging_time), words.floor_two_digits(found.carrier / 60.0)
-    carrier = f"{minutes} min of an unbroken carrier" if found.carrier else "no carrier"
     if found.keyed is None:
-        return f"{carrier} in any {window}"
+        return f"{minutes} min of the tune-up's carrier in any {window}"
+    carrier = f"{minutes} min of an unbroken carrier" if found.carrier else "no carrier"
     if found.keyed >= found.averaging_time:
         return f"keyed without end, or {carrier} in any {window}"
     keyed = f"keyed for {words.floor_two_digits(found.keyed / 60.0)} min" if found.keyed else "not at all"

@@ -29,7 +29,7 @@ def place_text(place: SessionPlace, exposure: SessionExposure, points: Points) -
     """Return what one rule says of one place during a session, in a sentence."""
     who = f"{words.short(place.name)}, {exposure.rule} {exposure.who}"
     if place.share_of_limit is None or place.averaging_time is None:
-        return f"{who}: not known"
+        return f"{who}: not known{f': {exposure.why}' if exposure.why else ''}"
     window = words.duration(place.averaging_time)
     terms = ", ".join(
         f"{words.short(points[term.transmission].name)} {100.0 * term.share_of_window:.0f} %"
@@ -43,20 +43,25 @@ def place_text(place: SessionPlace, exposure: SessionExposure, points: Points) -
     )
     if place.power_factor is None:
         return text
+    if place.power_factor == 0.0:
+        return f"{text}; the tune-ups alone are too much"
     return f"{text}; all powers together could be {words.floor_two_digits(place.power_factor)} times"
 
 
-def distance_rows(session: SessionRecord) -> Iterator[tuple[str, ...]]:
-    """Yield a row for each rule and tier: its distances in metres."""
+def distance_rows(session: SessionRecord, columns: int) -> Iterator[tuple[str, ...]]:
+    """Yield a row for each rule and tier: its distances in metres, in so many columns."""
     for each in session.exposure:
-        if each.keepout is not None:
-            yield (f"{each.rule} {each.who}", *distances_of(each.keepout))
+        unknown = ("?",) * columns
+        yield (f"{each.rule} {each.who}", *(unknown if each.keepout is None else distances_of(each.keepout)))
 
 
 def keepout_rows(session: SessionRecord) -> Iterator[tuple[str, ...]]:
     """Yield a row for each rule, tier and direction: the distance, and what sets it."""
     for each in session.exposure:
-        for label, distance in directions(each.keepout) if each.keepout is not None else ():
+        if each.keepout is None:
+            yield f"{each.rule} {each.who}", "any direction", "?", "not known"
+            continue
+        for label, distance in directions(each.keepout):
             yield f"{each.rule} {each.who}", label, metres(distance), set_by(distance)
 
 

@@ -116,7 +116,7 @@ def _basis(said: SignWords, most: int) -> list[Paragraph]:
     if said.proven:
         told.append(Paragraph("Outside these distances:", f"within the limits of {rules}, as computed here."))
         if said.thin:
-            told.append(Paragraph("Narrow at best:", "on limits that nobody has read in their source. See the sheet."))
+            told.append(Paragraph("Narrow at best:", f"{said.thin}. See the sheet."))
     elif said.rules:
         told.append(Paragraph("Not proven to be within the limits of", f"{rules}."))
     return told

@@ -55,7 +55,7 @@ class SignWords:
     behind: str
     outside: str
     stopped: tuple[str, ...]
-    thin: bool
+    thin: str
     reasons: tuple[str, ...]
     uses: tuple[str, ...]
     apart: str
@@ -75,8 +75,7 @@ def sign_words(sheet: Sheet, people: KeepoutSheet, design: Design) -> SignWords:
     """
     reasons = tuple(_reasons(people))
     proven = not reasons and people.verdict != "unproven"
-    fenced = any(place.fence for place in design.place)
-    outside = "outside the fence" if fenced else "away"
+    outside = "outside the fence" if proven and _fence_holds(people, design) else "away"
     order = sorted(range(len(people.operating_points)), key=lambda i: strictness(people.operating_points[i]))
     station, volts = design.station, _volts(sheet, design)
     return SignWords(
@@ -88,7 +87,7 @@ def sign_words(sheet: Sheet, people: KeepoutSheet, design: Design) -> SignWords:
         behind=f"a radio transmitter, a strong magnetic field, {volts}. It burns when touched, also at low power",
         outside=outside,
         stopped=tuple(dict.fromkeys(_named(f, 24) for f in _findings(people) if f.verdict == "stop")),
-        thin=any(finding.thin for finding in _findings(people)),
+        thin=_thin(people),
         reasons=reasons,
         uses=(
             *(f"worked in turn ({words.short(each.name, 60)})" for each in people.sessions),
@@ -104,6 +103,30 @@ def sign_words(sheet: Sheet, people: KeepoutSheet, design: Design) -> SignWords:
             ("Call sign", station.callsign or ""),
         ),
     )
+
+
+def _fence_holds(people: KeepoutSheet, design: Design) -> bool:
+    """Return whether a fence keeps the public out, as far off as an unbroken carrier asks, and within every limit."""
+    fences = {place.name: place.fence for place in design.place if place.fence and place.who == "public"}
+    records = of_tier((each for _, each in exposures(people)), "public")
+    judged = [place for each in records for place in each.places if place.name in fences]
+    carrier = largest_of([*key_downs(records), *(each.keepout for each in records if each.keepout is not None)])
+    if not fences or not judged or carrier is None or carrier.distance is None:
+        return False
+    within = all(place.verdict in ("clear", "narrow") for place in judged)
+    return within and min(fences.values()) >= carrier.distance
+
+
+def _thin(people: KeepoutSheet) -> str:
+    """Return why the verdict is narrow at best; empty if it is not."""
+    found = [finding for finding in _findings(people) if finding.thin]
+    read = any(finding.id.startswith("exposure.probe.") for finding in found)
+    unread = any(not finding.id.startswith("exposure.probe.") for finding in found)
+    reasons = (
+        ("a probe read more than was computed, within its uncertainty, or far less", read),
+        ("part of what the limits rest on nobody has read in its source", unread),
+    )
+    return "; ".join(reason for reason, holds in reasons if holds)
 
 
 def several(entries: Sequence[str], most: int, joint: str = "; ") -> str:

@@ -141,5 +141,44 @@ def test_the_map_tells_where_a_session_reaches_further_and_shows_the_worse_verdi
     assert spot.verdict == summed
     assert "worked in turn: 40 m voice, 20 m data" in spot.text
     assert any("worked in turn 40 m voice, 20 m data (any direction" in note for note in said.notes)
+    reach = next(e.keepout for e in sheet.sessions[0].exposure if e.who == "public" and e.keepout is not None)
+    contour = next(each for each in said.contours if each.who == "public")
+    assert f"worked in turn {reach.any_direction.distance:.1f} m, further than drawn" in contour.text
     field = field_map(design, point, map_words.farthest_of(sheet.operating_points[index]))
     assert "worked in turn" in keepout_map(sheet, design, index, field)
+
+
+def test_times_are_those_of_one_transmission_and_say_so() -> None:
+    near = {**WALK, "along_axis": "3 m"}
+    sheet = magsafe.check(parse_design(file_of(tree(place=[DESK, near])), "test.toml"))
+    places = [p for point in sheet.operating_points for e in point.exposure for p in e.places]
+    assert all(place.in_session for place in places)
+    text = " ".join(run("check", "-", given=file_of(tree(place=[DESK, near]))).stdout.split())
+    assert "of an unbroken carrier in any 30 min, and nothing else in that time" in text
+    alone = " ".join(run("check", "-", given=file_of(tree((), place=[DESK, near]))).stdout.split())
+    assert "nothing else in that time" not in alone
+
+
+def test_a_tune_up_that_alone_is_too_much_is_told_so() -> None:
+    tune = {"power": "100 W", "time": "6 min"}
+    transmissions = [{**VOICE, "tune_up": tune}, {**DATA, "power": "100 W", "tune_up": tune}]
+    near = {**WALK, "along_axis": "1.6 m"}
+    mast = {"name": "mast", "who": "trained", "along_axis": "1.8 m", "when": "tuning"}
+    given = file_of(tree(place=[DESK, near, mast], transmission=transmissions))
+    text = " ".join(run("check", "-", given=given).stdout.split())
+    assert "could bear no power: the tune-up alone is too much" in text
+    assert "the tune-ups alone are too much" in text
+    assert "could be 0 times" not in text
+    assert "of the tune-up's carrier in any 6 min" in text
+
+
+def test_a_session_of_which_nothing_is_known_has_its_row_and_its_reason() -> None:
+    beyond = {**DATA, "frequency": "144.3 MHz"}
+    for command in ("check", "keepout"):
+        text = " ".join(run(command, "-", given=file_of(tree(transmission=[VOICE, beyond]))).stdout.split())
+        summed = text.split("Worked in turn: 40 m voice, 20 m data")[-1]
+        assert "us-fcc public" in summed
+        assert "?" in summed
+    assert "walk, us-fcc public: not known: " in " ".join(
+        run("check", "-", given=file_of(tree(transmission=[VOICE, beyond]))).stdout.split()
+    )

@@ -362,11 +362,29 @@ def test_places_that_are_missing_leave_the_sign_unproven_by_name() -> None:
     assert 'us-fcc trained: No place with who = "trained" is given' in text_in(svg, "basis")
 
 
-def test_with_a_fence_everybody_is_kept_outside_it() -> None:
-    fence = {"name": "rail", "who": "public", "fence": "9 m"}
-    svg = drawn(changed(place=[fence], site={**SITE["site"], "metal_within": "0.5 m"}))
-    assert "Distance not proven: keep everybody outside the fence" in text_in(svg, "sign")
+RAIL = {"name": "rail", "who": "public", "fence": "9 m"}
+
+
+def test_a_fence_that_holds_keeps_wearers_of_implants_outside_it() -> None:
+    svg = drawn(changed(place=[DESK, RAIL]))
+    assert "Keep out while the transmitter is on" in text_in(svg, "sign")
     assert "stay outside the fence until your clinician" in text_in(svg, "danger")
+
+
+@pytest.mark.parametrize(
+    "changes",
+    [
+        {"place": [DESK, RAIL], "site": {**SITE["site"], "metal_within": "0.5 m"}},
+        {"place": [DESK, {**WALK, "along_axis": "9 m"}, {**RAIL, "who": "trained"}]},
+        {"place": [DESK, {**RAIL, "fence": "1.2 m"}]},
+    ],
+    ids=["not proven", "for trained people", "nearer than a carrier lets it"],
+)
+def test_a_fence_that_does_not_hold_is_no_place_to_stand_behind(changes: dict[str, Any]) -> None:
+    svg = drawn(changed(**changes))
+    assert "outside the fence" not in text_in(svg, "sign")
+    assert "outside the fence" not in text_in(svg, "danger")
+    assert "stay well away until your clinician" in text_in(svg, "danger")
 
 
 def test_a_probe_that_read_more_than_was_computed_leaves_all_distances_unproven() -> None:

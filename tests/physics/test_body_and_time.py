@@ -134,6 +134,17 @@ def test_what_a_mean_leaves_unjudged_is_at_best_narrow_and_named() -> None:
         assert (local in found.because) == mean
 
 
+def test_a_mean_that_rests_on_memory_is_at_best_narrow() -> None:
+    """ICNIRP 2020 averages over the body, by memory alone: no verdict is clear by that."""
+    assert load_rule("icnirp-2020").body.provenance == "memory"
+    far = {**WALK, "along_axis": "20 m"}
+    for mean, verdict in ((False, "clear"), (True, "narrow")):
+        sheet = sheet_of(("icnirp-2020",), mean, place=[DESK, far], transmission__0__frequency="14.2 MHz")
+        found = finding_of(sheet, "exposure.icnirp-2020.public.walk")
+        assert found.verdict == verdict
+        assert ("is from memory" in found.because) == mean
+
+
 def test_a_local_level_is_judged_at_the_worst_point_when_the_mean_decides() -> None:
     """ICNIRP 2020: the mean over the body against the whole-body level, the largest field against the local one."""
     place = place_of(sheet_of(("icnirp-2020",), True, transmission__0__frequency="14.2 MHz"), "walk", "icnirp-2020")
