@@ -14,10 +14,11 @@ from pathlib import Path
 import pint
 
 _TEXT_LIMIT = 48
-_SPLIT = re.compile(r"(-?[0-9]+(?:\.[0-9]+)?) ?([A-Za-zµΩ°%/]{1,16})")
+_SPLIT = re.compile(r"(-?[0-9]+(?:\.[0-9]+)?) ?([A-Za-zµΩ°%/]{1,16}2?)")
 # The micro sign and the letter mu look the same, and so do the ohm sign and the letter omega.
 _SAME_LOOKS = {0x03BC: 0x00B5, 0x2126: 0x03A9}
-_OWN_FACTORS = {"%": 0.01, "dB": 1.0}
+# Squares are ours: pint reads the prefix of cm2 as that of the whole.
+_OWN_FACTORS = {"%": 0.01, "dB": 1.0, "m2": 1.0, "cm2": 1e-4, "mm2": 1e-6}
 
 
 @cache
@@ -45,6 +46,7 @@ class Kind:
 
 LENGTH = Kind("a length", "m", ("m", "cm", "mm", "um", "µm", "km", "in", "ft"), "22 mm")
 POSITION = Kind("a position", "m", LENGTH.units, "1.2 m", signed=True)
+AREA = Kind("an area", "m2", ("m2", "cm2", "mm2"), "100 cm2")
 FREQUENCY = Kind("a frequency", "Hz", ("Hz", "kHz", "MHz", "GHz"), "7.1 MHz")
 POWER = Kind("a power", "W", ("W", "mW", "kW"), "100 W")
 REACTIVE_POWER = Kind("a reactive power", "W", ("W", "kW", "VA", "kVA", "var", "kvar"), "5 kVA")
@@ -165,6 +167,8 @@ def _distinct(units: tuple[str, ...]) -> list[str]:
 def _advice(text: str, kind: Kind) -> str:
     """Return what to write instead, for the slips that are known."""
     reading = f'write it in the form of "{kind.example}"'
+    if re.search(r"[²³]", text):
+        return "write squares with a plain 2, such as cm2"
     if text.isascii() is False and any(c.isdigit() and not c.isascii() for c in text):
         return "write the digits 0 to 9"
     if re.search(r"nan|inf", text, re.IGNORECASE):

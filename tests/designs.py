@@ -15,7 +15,8 @@ PLAIN: Tree = {
     "loop": {
         "shape": "circle",
         "diameter": "1.0 m",
-        "conductor": {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m"},
+        "conductor": {"form": "rod", "outer_diameter": "22 mm", "conductivity": "58 MS/m", "surface": "painted"},
+        "supports": [],
     },
     "capacitor": {
         "kind": "vacuum variable",

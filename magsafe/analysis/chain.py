@@ -11,8 +11,19 @@ from math import pi, sqrt
 
 from scipy.constants import c, mu_0
 
+from magsafe.analysis import line_capacitor
+from magsafe.analysis.capacitor_network import Network, network
 from magsafe.analysis.flow import Flow, inductance
-from magsafe.analysis.losses import Corner, Loss, capacitor_loss, conductor_loss, joint_loss
+from magsafe.analysis.losses import (
+    Corner,
+    Loss,
+    among,
+    capacitor_loss,
+    conductivity,
+    conductor_loss,
+    joint_loss,
+    padding_loss,
+)
 from magsafe.analysis.surroundings import State, Surroundings, surroundings
 from magsafe.analysis.wires import electrical_radius, extent
 from magsafe.design.model import Design
@@ -58,7 +69,9 @@ class Chain:
 
     Questions are asked with (end, corner, power): which end of every loss, which state with which excess of its
     reactance, power at the loop [W]. `corner_error` is the relative uncertainty of the inductance by sharp corners and
-    crowded turns.
+    crowded turns. `capacitor` is the loss of its main part, `padding` those of the parts joined to it. The derivative
+    of its reactance by the frequency, times it, over that reactance is `capacitor_steepness`, the highest voltage in it
+    over that at its terminals `capacitor_crest`: 1 unless it is a line.
     """
 
     frequency: float
@@ -76,6 +89,10 @@ class Chain:
     conductor: Loss
     joints: tuple[Loss, ...]
     capacitor: Loss
+    network: Network
+    padding: tuple[Loss, ...]
+    capacitor_steepness: float = 1.0
+    capacitor_crest: float = 1.0
 
     def corners(self, states: Iterable[State]) -> tuple[Corner, ...]:
         """Return states with every excess of the reactance that the port's gap leaves open."""
@@ -155,7 +172,7 @@ class Chain:
     @property
     def losses(self) -> tuple[Loss, ...]:
         """The losses of all parts."""
-        return (self.conductor, *self.joints, self.capacitor)
+        return (self.conductor, *self.joints, self.capacitor, *self.padding)
 
     @property
     def typical(self) -> tuple[str, ...]:
@@ -181,7 +198,8 @@ class Chain:
 
     def quality(self, end: str, corner: Corner, power: float = 0.0) -> float:  # noqa: ARG002
         """Return the unloaded Q, which no power changes."""
-        factor = corner.slope / (2.0 * abs(corner.reactance))
+        slope = corner.slope + (self.capacitor_steepness - 1.0) * abs(corner.reactance)
+        factor = slope / (2.0 * abs(corner.reactance))
         return float(tuned_circuit.unloaded_q(self.resistance(end, corner), corner.reactance, factor))
 
     def efficiency(self, end: str, corner: Corner) -> float:
@@ -201,12 +219,13 @@ class Chain:
             (share * self.heat_in(part, "low", "high", each, power.low or 0.0) for each in self.most), default=None
         )
         likely = share * self.heat_in(part, "likely", "likely", self.likely, power.likely or 0.0)
-        high = max(self._heat_alone(part, share, each, power.high or 0.0) for each in self.least)
+        high = max(self.heat_alone(part, share, each, power.high or 0.0, "low") for each in self.least)
         return Spread(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR)
 
-    def _heat_alone(self, part: Loss, share: float, corner: Corner, power: float) -> float:
+    def heat_alone(self, part: Loss, share: float, corner: Corner, power: float, others: str) -> float:
+        """Return the heat in a share of a part [W] at its high end, the rest of it and all others at another end."""
         mine = share * part.at("high", corner)
-        rest = self.resistance("low", corner) - share * part.at("low", corner)
+        rest = self.resistance(others, corner) - share * part.at(others, corner)
         return power * mine / (rest + mine)
 
     def terminals(self) -> list[complex]:
@@ -287,8 +306,8 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
     external = inductance(design, frequency)
     omega = 2.0 * pi * frequency
     likely = Corner(around.likely, 0.0, internal)
-    radius = electrical_radius(made_of)
-    return Chain(
+    radius, joined = electrical_radius(made_of), network(design, frequency)
+    made = Chain(
         frequency=frequency,
         line=line,
         extent=extent(design),
@@ -303,8 +322,34 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
         around=around,
         conductor=along,
         joints=tuple(joint_loss(joint) for joint in design.loop.joint),
-        capacitor=capacitor_loss(design.capacitor, frequency, abs(likely.reactance)),
+        capacitor=among(capacitor_loss(design.capacitor, frequency, abs(likely.reactance)), joined),
+        network=joined,
+        padding=tuple(padding_loss(part, joined) for part in joined.padding),
     )
+    return _of_its_sizes(made, design) if made.tuned and line_capacitor.is_complete(design.capacitor) else made
+
+
+def _of_its_sizes(made: Chain, design: Design) -> Chain:
+    """Return the chain with what its capacitor's sizes tell: steepness and crest, and the loss where none is stated."""
+    part, off = design.capacitor, made.reactance_error
+    reactances = [corner.reactance for corner in made.every]
+    span = Spread(min(reactances) * (1.0 - off), made.likely.reactance, max(reactances) * (1.0 + off))
+    metal = tube_metal(design)
+    found = line_capacitor.line_loss(part, metal, made.network, made.frequency, span) if min(reactances) > 0.0 else None
+    if found is None:
+        return made
+    made = replace(made, capacitor_steepness=found.steepness, capacitor_crest=found.crest)
+    if part.quality_factor is not None or part.series_resistance is not None:
+        return made
+    ends = found.inverse_q
+    own = Loss(ends.low or 0.0, 0.0, ends.likely or 0.0, ends.high or 0.0, made.capacitor.where, found.rows)
+    return replace(made, capacitor=own)
+
+
+def tube_metal(design: Design) -> Spread:
+    """Return the conductivity of the tubes of a trombone [S/m]: those of the loop's own conductor."""
+    made_of = design.loop.conductor
+    return conductivity(made_of, design.site.air_temperature or made_of.temperature)
 
 
 def corner_constant(design: Design) -> float:

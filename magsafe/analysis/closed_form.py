@@ -5,6 +5,7 @@ from math import pi, sqrt
 
 from scipy.constants import c
 
+from magsafe.analysis.capacitor_network import Membership
 from magsafe.analysis.chain import QUALITY_ERROR, REACTANCE_ERROR, RESISTANCE_ERROR, VOLTAGE_ERROR, Chain
 from magsafe.design.model import Design
 from magsafe.physics import inductance, small_loop
@@ -103,10 +104,16 @@ def _figures(chain: Chain, x: float, lumped: float, radiation: float) -> dict[st
         "port": 1.0,
         "capacitor": reactance,
     }
-    resistance = radiated + sum(loss.likely * weights[loss.where] for loss in chain.losses)
+    resistance = radiated + sum(
+        loss.likely
+        * (loss.where.weight("likely", reactance) if isinstance(loss.where, Membership) else weights[loss.where])
+        for loss in chain.losses
+    )
+    # Half of the slope is the capacitor's, steeper where that is a line.
+    slope = float(small_loop.slope_taper(x)) + (chain.capacitor_steepness - 1.0) / 2.0
     return {
         "volts": sqrt(2.0 / resistance) * reactance,
-        "Q": reactance / resistance * float(small_loop.slope_taper(x)),
+        "Q": reactance / resistance * slope,
         "efficiency": radiated / resistance,
         "reactance": reactance,
     }

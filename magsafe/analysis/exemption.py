@@ -6,7 +6,6 @@ All of it is for information. The thresholds are those of a far field, which nea
 from math import sqrt
 
 import numpy as np
-from scipy.optimize import brentq
 
 from magsafe.analysis.flow import Flow
 from magsafe.analysis.operating_point import OperatingPoint
@@ -107,6 +106,8 @@ def _out(currents: SegmentCurrents, centre: Array, axis: Array, distance: float)
     def missing(out: float) -> float:
         apart = near_field.distance_to_axis((centre + out * axis)[None], currents)
         return float(apart[0]) - currents.radius - distance
+
+    from scipy.optimize import brentq  # noqa: PLC0415  (slow to import)
 
     return 0.0 if missing(0.0) >= 0.0 else float(brentq(missing, 0.0, distance + 2.0 * _reach(currents, centre)))
 

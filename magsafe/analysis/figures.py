@@ -7,6 +7,7 @@ from math import pi, sqrt
 import numpy as np
 from scipy.constants import c
 
+from magsafe.analysis.capacitor_heat import heat_of
 from magsafe.analysis.chain import REACTANCE_ERROR, RESISTANCE_ERROR, STUDY, VOLTAGE_ERROR, Chain, Question
 from magsafe.analysis.flow import nearest_resonance
 from magsafe.analysis.losses import Loss
@@ -91,7 +92,6 @@ def figures_of(chain: Chain, design: Design) -> Figures:
         "largest_current": _answer(
             chain, chain.largest_current, VOLTAGE_ERROR, "A", "RMS, anywhere on the conductor", _LOOP_SOURCE
         ),
-        "conductor_temperature_rise": _not_yet("K", "the heating of the conductor"),
         "coupling_loop_diameter": _not_yet("m", "the coupling loop"),
         **_directivities(chain),
         **(_tuned(chain) if tuned else _terminals(chain, design)),
@@ -279,8 +279,8 @@ def _joints(chain: Chain) -> Figure:
 
 
 def _capacitor(chain: Chain) -> Figure:
-    method = "as stated, or reactance over Q; typical of the kind where not stated"
-    return _part(chain, [chain.capacitor], 0.0, method, "the design; common practice")
+    method = "as stated, or reactance over Q; by its sizes or typical of the kind where not stated; all parts together"
+    return _part(chain, [chain.capacitor, *chain.padding], 0.0, method, "the design; common practice")
 
 
 def _ground(chain: Chain) -> Figure:
@@ -373,9 +373,9 @@ def _bandwidth(chain: Chain, quality: Spread, factor: float, method: str) -> Fig
 
 def _dissipation(chain: Chain) -> Figure:
     return Figure(
-        chain.heat_spread(chain.capacitor),
+        heat_of(chain, (chain.capacitor, *chain.padding)),
         "W",
-        f"key-down; its high end with its own loss high and every other low{_say(chain)}",
+        f"key-down, all parts together; its high end with its own loss high and every other low{_say(chain)}",
         _LOOP_SOURCE,
         "" if chain.most else _NO_SOIL,
     )

@@ -125,6 +125,17 @@ def inductance(design: Design, frequency: float) -> float:
     return float(static[0].sum()) * mu_0 / (4.0 * np.pi)
 
 
+def reactances(design: Design, frequencies: Array, position: str | None, *, image: bool) -> tuple[Array, Array]:
+    """Return the port's reactance [ohm] and the length that an internal reactance counts on [m] over frequency [Hz].
+
+    Of the perfect conductor, with the port at a position, alone or with the image. Shapes are those of `frequencies`.
+    """
+    shape = shape_of(design.loop, float(frequencies.max()), position)
+    currents = _solved(shape, highest(design), frequencies, image)
+    factors = np.array([turn_factors(design, float(each))[1][currents.wire.turn] for each in frequencies])
+    return currents.reactance, np.asarray((factors * currents.complex_square).sum(axis=1).real)
+
+
 def tuning_limit(design: Design) -> float | None:
     """Return the frequency of the port's first anti-resonance [Hz]: no series capacitor tunes the loop above it."""
     frequencies = TUNING_SCAN * c / (outline(design.loop).perimeter * design.loop.turns)

@@ -1,19 +1,21 @@
 """Resistances of the loop's parts, each with the ends that different questions need."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Literal
 
 import numpy as np
 
+from magsafe.analysis.capacitor_network import Membership, Network
 from magsafe.analysis.surroundings import State
 from magsafe.design import tables
-from magsafe.design.model import Capacitor, Conductor, Joint, Plating
+from magsafe.design.model import Capacitor, Conductor, Joint, Padding, Plating
 from magsafe.design.quantities import Uncertain
 from magsafe.physics import conductor
 from magsafe.physics.arrays import Array, ComplexArray
 from magsafe.spread import Spread
 
 COPPER_COEFFICIENT = 0.0039  # 1/K, of a conductivity that is stated without its metal (common practice)
+UNKNOWN_FIXED = "fixed part of unknown kind"
 
 Where = Literal["conductor", "spread", "opposite", "port", "capacitor"]
 
@@ -52,8 +54,10 @@ class Corner:
         inner = self.internal * flow.internal_length
         return (flow.slope + flow.reactance + 1.5 * inner) * self.growth
 
-    def weight(self, where: Where, end: str) -> float:
+    def weight(self, where: Where | Membership, end: str) -> float:
         """Return by what a part's own value is multiplied to be seen at the port, at one end of what is known."""
+        if isinstance(where, Membership):
+            return where.weight(end, abs(self.reactance))
         flow = self.state.flow
         lengths = {"low": flow.least_length, "bare": flow.least_length, "high": flow.most_length}
         along = {
@@ -78,7 +82,7 @@ class Loss:
     bare: float
     likely: float
     high: float
-    where: Where
+    where: Where | Membership
     typical: tuple[str, ...] = ()
 
     def at(self, end: str, corner: Corner) -> float:
@@ -211,6 +215,25 @@ def capacitor_loss(part: Capacitor, frequency: float, reactance: float) -> Loss:
             rows = ()
     low, bare, likely, high = stated_ends(stated, typical)
     return Loss(low, 0.0 if moved > 1.0 else bare, likely, high, where="capacitor", typical=rows)
+
+
+def padding_loss(part: Padding, net: Network) -> Loss:
+    """Return the loss of a padding part [1/Q], as the network lets the port see it."""
+    typical_q = tables.capacitor_quality_factor(UNKNOWN_FIXED)
+    typical = Spread(*(1.0 / (q or 1.0) for q in (typical_q.high, typical_q.likely, typical_q.low)))
+    rows: tuple[str, ...] = (f"capacitor, {UNKNOWN_FIXED}",)
+    stated, q = None, part.quality_factor
+    if q is not None:
+        stated = Uncertain(1.0 / q.high, 1.0 / q.likely, 1.0 / q.low, q.single)
+        rows = rows if q.single else ()
+    return Loss(*stated_ends(stated, typical), where=Membership(net, part), typical=rows)
+
+
+def among(loss: Loss, net: Network) -> Loss:
+    """Return the loss of a capacitor's main part as the padding lets the port see it; without padding, as it is."""
+    if not net.padding:
+        return loss
+    return replace(loss, where=Membership(net, in_ohms=loss.where == "port"))
 
 
 def capacitor_typical(part: Capacitor) -> Spread:

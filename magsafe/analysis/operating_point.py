@@ -1,16 +1,18 @@
 """One design at one frequency: what the checks hold against ratings and limits."""
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from scipy.constants import c
 
 from magsafe import words
 from magsafe.analysis.chain import VOLTAGE_ERROR, Chain, GroundCase, chain
 from magsafe.analysis.closed_form import SecondOpinion, second_opinion
-from magsafe.analysis.figures import Figures, figures_of, unknown_figures
+from magsafe.analysis.exposure import use_of
+from magsafe.analysis.figures import Figure, Figures, figures_of, unknown_figures
 from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
 from magsafe.analysis.losses import conductivity
+from magsafe.analysis.warmth import RUNS_AWAY, Warmth, warmth
 from magsafe.analysis.wires import clearance, electrical_radius, positions, shape_of, shortest_side, wire_of
 from magsafe.design.model import Design, Loop, Transmission
 from magsafe.design.shape import Outline, outline
@@ -37,7 +39,8 @@ class OperatingPoint:
     practice that were used. `out_of_range` tells why nothing is computed of this loop; then most figures are unknown.
     `tuning_limit` is the frequency above which no series capacitor tunes the loop [Hz], `beyond_tuning` says that the
     transmission lies above it. `bound_ratio` is Q over efficiency times the lower bound on Q. `opinion` is what the
-    closed forms say, None where they do not reach. `chain` is what answers further questions, None with `out_of_range`.
+    closed forms say, None where they do not reach. `chain` is what answers further questions, and `warmth`
+    the conductor's; both None with `out_of_range`.
     """
 
     transmission: Transmission
@@ -56,6 +59,7 @@ class OperatingPoint:
     ground_cases: tuple[GroundCase, ...] = ()
     field_error: float = VOLTAGE_ERROR
     chain: Chain | None = None
+    warmth: Warmth | None = None
 
 
 def operating_point(design: Design, transmission: Transmission) -> OperatingPoint:
@@ -80,12 +84,13 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
     if made is None:
         figures = unknown_figures(line, frequency, reasons)
         return OperatingPoint(transmission, power, arriving, figures, reasons, limit, beyond)
+    warm = warmth(made, design, use_of(transmission))
     bare_voltage = made.dangerous(made.voltage, "bare") * (1.0 + made.voltage_error)
     return OperatingPoint(
         transmission=transmission,
         power=power,
         power_at_loop=arriving,
-        figures=figures_of(made, design),
+        figures=replace(figures_of(made, design), conductor_temperature_rise=_rise(warm)),
         tuning_limit=limit,
         bare_voltage=bare_voltage if tuned else None,
         bare_current=made.dangerous(made.current, "bare") * (1.0 + VOLTAGE_ERROR),
@@ -96,7 +101,24 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         ground_cases=made.ground_cases(),
         field_error=made.voltage_error,
         chain=made,
+        warmth=warm,
     )
+
+
+def _rise(warm: Warmth) -> Figure:
+    found, air = warm.temperature(), warm.air_temperature
+    ends = [None if end is None or end >= RUNS_AWAY else end - air for end in (found.low, found.likely, found.high)]
+    why = "it runs away: what it takes up grows faster than what it loses" if found.high == RUNS_AWAY else ""
+    method = (
+        "over the air, at the end of the longest over, where the current is largest; its high end bounds any number of "
+        "overs"
+    )
+    if found.low is None:
+        why = (
+            why
+            or "the loss in the soil is not computed by this version: it lowers this, so only the other end is known"
+        )
+    return Figure(Spread(*ends), "K", method, "Churchill & Chu 1975 by the ht library; radiation; sun", why)
 
 
 def _unfit(made: Chain, limit: float | None) -> tuple[str, ...]:

@@ -10,7 +10,6 @@ from dataclasses import dataclass, replace
 from math import inf
 
 import numpy as np
-from scipy.optimize import brentq
 
 from magsafe.analysis.exposure import Basis, Use, When
 from magsafe.analysis.keepout import Curve, Distance, Distances, FloorDistances, Shells, in_all_directions
@@ -110,6 +109,8 @@ def scale_to_limit(parts: Sequence[Part], summation: Summation) -> float | None:
 
     0 where the tune-ups alone come to it, None where no power changes the sum. `parts` have one value each.
     """
+
+    from scipy.optimize import brentq  # noqa: PLC0415  (only where there are sessions: slow to import)
 
     def excess(factor: float) -> float:
         scaled = [

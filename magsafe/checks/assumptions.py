@@ -3,9 +3,13 @@
 from collections.abc import Iterator, Sequence
 
 from magsafe import words
-from magsafe.analysis.losses import capacitor_typical
+from magsafe.analysis.gap import has_air_gap
+from magsafe.analysis.line_capacitor import is_complete
+from magsafe.analysis.losses import UNKNOWN_FIXED, capacitor_typical
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.design import tables
+from magsafe.analysis.rated_voltage import RATED_TO
+from magsafe.design import tables, warmth_tables
+from magsafe.design.implied import AT_THE_CAPACITOR
 from magsafe.design.model import Design
 
 
@@ -18,6 +22,7 @@ def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, 
         *_use(design),
         *_people(design),
         *_methods(design, points),
+        *_volts(design),
         *_kept(design),
     )
     return tuple(dict.fromkeys(found))
@@ -48,17 +53,20 @@ def _losses(design: Design) -> Iterator[str]:
             f"({row.source}; {row.provenance})."
         )
     yield (
-        f"The conductor is at {conductor.temperature - 273.15:.3g} degC, as at the start of an over; its heating is "
-        "not computed. Each 10 K colder adds about 1 % to the volts"
-        f"{_cold(design)}. Roughness and oxide may add 10 % to its resistance (common practice)."
+        f"For volts and amps the conductor is at {conductor.temperature - 273.15:.3g} degC, as at the start of an "
+        f"over: each 10 K colder adds about 1 % to the volts{_cold(design)}. Roughness and oxide may add 10 % to its "
+        "resistance (common practice)."
     )
+    yield from _warmth(design)
     if conductor.conductivity is not None:
         yield "The stated conductivity is taken as that at 20 degC, and to follow the temperature as copper does."
     if part.kind == "none":
         return
     stated = part.quality_factor or part.series_resistance
     typical = capacitor_typical(part)
-    if stated is None or stated.single:
+    if stated is None and is_complete(part):
+        yield from _sizes(design)
+    elif stated is None or stated.single:
         what = "not stated" if stated is None else "a single value, which is no low end for volts"
         yield (
             f"The capacitor's losses are {what}: Q {typical.low:.0f} to {typical.high:.0f} is typical of its kind "
@@ -69,6 +77,7 @@ def _losses(design: Design) -> Iterator[str]:
             "The capacitor's Q at another frequency than stated may be off either way by their ratio to the power of "
             "1.5 (common practice). No verdict is clear by that credit."
         )
+    yield from _padding(design)
     for joint in design.loop.joint:
         if joint.resistance is None and joint.kind is not None:
             row_of = tables.joint_resistance(joint.kind)
@@ -82,6 +91,60 @@ def _losses(design: Design) -> Iterator[str]:
             "No joints are given: none is counted, which is the dangerous side for volts and the good side for "
             "efficiency."
         )
+
+
+def _sizes(design: Design) -> Iterator[str]:
+    """Yield what a capacitor made at home is taken to lose."""
+    part = design.capacitor
+    if part.dielectric != "air":
+        row = warmth_tables.dielectrics()[part.dielectric or ""]
+        spans = (f"{each.low:.3g} to {each.high:.3g}" for each in (row.permittivity, row.loss_tangent))
+        permittivity, tangent = spans
+        yield (
+            f"{row.name}: relative permittivity {permittivity}, loss tangent {tangent} ({row.source}; "
+            f"{row.provenance}). No verdict is clear by what it loses."
+        )
+    metals = {
+        "coaxial stub": "the cable of copper, its outer conductor losing 1 to 3 times what smooth copper does, its "
+        "inner one 1 to 1.25 times",
+        "trombone": "its tubes of the loop's own metal",
+        "dielectric plate": "its plates to lose what those of an air variable do",
+    }
+    yield f"The capacitor's losses follow from its sizes, {metals[part.kind]} (common practice)."
+
+
+def _padding(design: Design) -> Iterator[str]:
+    """Yield how padding is taken to be joined, and what is not stated of it."""
+    parts = design.capacitor.padding
+    if parts:
+        yield (
+            "Padding: parallel parts are taken as joined across the capacitor first, series parts to all of that; each "
+            "on the frequencies that its own `on` lists, and on no other."
+        )
+    if any(part.quality_factor is None or part.quality_factor.single for part in parts):
+        q = tables.capacitor_quality_factor(UNKNOWN_FIXED)
+        yield (
+            f"The Q of padding is not stated, or a single value: {q.low:.0f} to {q.high:.0f} is taken for a part whose "
+            "kind is not known (common practice). No verdict is clear by that credit."
+        )
+
+
+def _warmth(design: Design) -> Iterator[str]:
+    """Yield what is taken of air, sun and surface, where nothing is stated."""
+    conductor, site = design.loop.conductor, design.site
+    if site.air_temperature is None or site.altitude is None:
+        hot = "" if site.air_temperature is not None else "air of 40 degC"
+        high = "" if site.altitude is not None else "the thin air of 2000 m"
+        taken = " and ".join(filter(None, (hot, high)))
+        yield f"Warmth and air gaps: {taken} {'are' if hot and high else 'is'} taken."
+    if conductor.in_sun is None:
+        yield "loop.conductor.in_sun is not given: no sun is counted, which can warm a conductor by 40 K and more."
+    if conductor.surface is None:
+        yield "loop.conductor.surface is not given: bright or oxidised, whichever is the hotter."
+    yield (
+        "Warmth is that of still air, where the current is largest; speech and keying are averaged over the over, and "
+        "no heat is led along the conductor but from joints."
+    )
 
 
 def _cold(design: Design) -> str:
@@ -159,13 +222,18 @@ def _people(design: Design) -> Iterator[str]:
 
 
 def _turns(design: Design) -> Iterator[str]:
-    """Yield what is taken of transmissions that follow one another."""
+    """Yield what is taken of whoever tunes, and of transmissions that follow one another."""
+    if any(place.name == AT_THE_CAPACITOR for place in design.place):
+        yield (
+            'tuning.by = "hand at the loop" puts somebody at the capacitor, and no place while tuning says where: half '
+            "a metre before it is taken, and a trained person."
+        )
     together = {name for names in design.site.sessions for name in names}
     if together:
         yield (
             "In a session one transmitter works one transmission at a time. Within any averaging time each may fill "
             "its own largest share, all of them the whole of it, and the worst division counts, each with the fields "
-            "at its own worst point."
+            "at its own worst point. Each tunes up once in that time: tuning at every change of band is more."
         )
     if len(design.transmission) > 1 and len(together) < len(design.transmission):
         what = "These transmissions are" if not together else "Transmissions that no session lists are"
@@ -195,9 +263,28 @@ def _methods(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
         )
 
 
+def _volts(design: Design) -> Iterator[str]:
+    """Yield what is taken of the capacitor's gap and rating."""
+    part = design.capacitor
+    if has_air_gap(part):
+        yield (
+            "Air gap: the plates are clean and as warm as the air or the conductor, whichever is the warmer; no credit "
+            "for dry or humid air."
+        )
+        if part.plate_edge is None:
+            yield "capacitor.plate_edge is not given: square-cut edges are taken."
+        if part.kind != "air variable" and part.sections_in_series is None:
+            yield "capacitor.sections_in_series is not given: one gap is counted."
+    else:
+        keys = {"plate_thickness": part.plate_thickness, "sections_in_series": part.sections_in_series}
+        why = "a rating is of the part as connected" if part.gap is None else "its dielectric is judged as it is"
+        for key in (key for key, value in keys.items() if value is not None):
+            yield f"capacitor.{key}: without a gap of air it changes nothing; {why}."
+    if part.rated_voltage is not None and design.site.altitude is None:
+        yield f"site.altitude is not given: the capacitor's voltage rating holds as it stands, as to {RATED_TO:g} m."
+
+
 def _kept(design: Design) -> Iterator[str]:
-    if design.site.altitude is not None:
-        yield "site.altitude: kept for the air gap and the heat, which this version does not compute."
     if design.capacitor.wiper and design.capacitor.kind != "air variable":
         yield "capacitor.wiper: its resistance counts only if it is stated as a joint."
     if design.loop.turns == 1 and design.loop.turn_spacing is not None:

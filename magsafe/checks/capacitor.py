@@ -1,12 +1,22 @@
 """Does the capacitor stand the volts and amps, and can it tune the frequency?"""
 
-from math import sqrt
+from dataclasses import replace
 
 from magsafe import words
+from magsafe.analysis.capacitor_network import UNSTATED_TOLERANCE
+from magsafe.analysis.capacitor_parts import CHANGE, main_capacitance, main_part
+from magsafe.analysis.capacitor_reach import capacitance_reach
+from magsafe.analysis.chain import tube_metal
+from magsafe.analysis.gap import has_air_gap
+from magsafe.analysis.line_capacitor import is_complete
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.checks.judge import Check, judge, judge_between, unproven
+from magsafe.analysis.rated_voltage import not_rated, rated_voltage
+from magsafe.checks.gap import by_gap_alone
+from magsafe.checks.judge import Check, judge, judge_between, stopped, unproven
+from magsafe.checks.line_capacitor import by_sizes_alone
 from magsafe.checks.sheet import Finding
-from magsafe.design.model import Capacitor, Design, Padding
+from magsafe.design.model import Design
+from magsafe.design.ratings import look_for
 
 _VOLTAGE = Check(
     "capacitor.voltage",
@@ -38,55 +48,52 @@ _FIND = "look on the part and in its data sheet, and state it in the design"
 
 def voltage(design: Design, point: OperatingPoint) -> Finding:
     """Does the capacitor stand the crest of the RF at full power?"""
-    part, value = design.capacitor, point.figures.capacitor_peak_voltage.spread
-    missing = _no_voltage_rating(part) or _not_reached(design, point)
-    if missing:
-        return unproven(_VOLTAGE, missing, value, _FIND if "given" in missing else None)
-    factor = sqrt(2.0) if part.rated_voltage_kind == "RMS RF" else 1.0
-    return judge(
-        _VOLTAGE,
-        value,
-        (part.rated_voltage or 0.0) * factor,
+    part, use = design.capacitor, main_part(point)
+    if part.rated_voltage is None and has_air_gap(part):
+        return by_gap_alone(_VOLTAGE, design, point)
+    if part.rated_voltage is None and is_complete(part):
+        return by_sizes_alone(_VOLTAGE, design, point)
+    if missing := not_rated(design):
+        return unproven(_VOLTAGE, missing, use.voltage, f"{look_for(part.kind)}; or {_FIND}")
+    if missing := _not_reached(point) or use.missing:
+        return unproven(_VOLTAGE, missing, use.voltage)
+    rated = rated_voltage(design, point.transmission.frequency)
+    made = judge(
+        replace(_VOLTAGE, source=rated.source),
+        use.voltage,
+        rated.allowed,
         design.margins.voltage,
-        bare_end=point.bare_voltage,
+        bare_end=use.bare_voltage,
         power=point.power,
-        provenance="stated in the design",
+        thin="; ".join(filter(None, (rated.told if rated.thin else "", use.thin_voltage))),
+        provenance=rated.provenance,
     )
-
-
-def _no_voltage_rating(part: Capacitor) -> str:
-    if part.rated_voltage is None:
-        return "capacitor.rated_voltage is not given"
-    if part.rated_voltage_kind is None:
-        return "capacitor.rated_voltage_kind is not given: the rating may be of peak RF, RMS RF or DC"
-    if part.rated_voltage_kind.startswith("DC"):
-        return (
-            f"the rating is a {part.rated_voltage_kind} voltage; what it allows at RF is not computed by this version"
-        )
-    return ""
+    told = f"{made.because}; {rated.told}" if rated.told and not rated.thin else made.because
+    return made.model_copy(update={"because": told})
 
 
 def current(design: Design, point: OperatingPoint) -> Finding:
     """Does the capacitor carry the loop's current?"""
-    part, value = design.capacitor, point.figures.capacitor_rms_current.spread
-    missing = _not_reached(design, point)
+    part, use = design.capacitor, main_part(point)
+    value = use.current
     if part.rated_current is None:
-        missing = "capacitor.rated_current is not given"
-    if missing:
-        return unproven(_CURRENT, missing, value, _FIND if "given" in missing else None)
+        return unproven(_CURRENT, "capacitor.rated_current is not given", value, _FIND)
+    if missing := _not_reached(point) or use.missing:
+        return unproven(_CURRENT, missing, value, CHANGE if use.missing else None)
     limit, frequency = part.rated_current or 0.0, point.transmission.frequency
-    provenance, thin = "stated in the design", ""
+    provenance, thin = "stated in the design", use.thin_current
     if part.rated_current_at is not None and frequency > part.rated_current_at:
         # Series resistance grows as the root of the frequency; the same heat then allows less current.
         limit *= (part.rated_current_at / frequency) ** 0.25
         provenance = "stated in the design, lowered above its frequency by common practice"
-        thin = f"above {words.frequency(part.rated_current_at)} the rating is lowered by common practice"
+        lowered = f"above {words.frequency(part.rated_current_at)} the rating is lowered by common practice"
+        thin = f"{lowered}; {thin}" if thin else lowered
     return judge(
         _CURRENT,
         value,
         limit,
         design.margins.current,
-        bare_end=point.bare_current,
+        bare_end=use.bare_current,
         power=point.power,
         thin=thin,
         provenance=provenance,
@@ -94,33 +101,34 @@ def current(design: Design, point: OperatingPoint) -> Finding:
 
 
 def tuning_range(design: Design, point: OperatingPoint) -> Finding:
-    """Can the capacitor tune this frequency?"""
-    part, value = design.capacitor, point.figures.tuning_capacitance.spread
-    missing = _not_reached(design, point)
-    if part.capacitance is None and part.fixed is None:
-        missing = "capacitor.capacitance is not given"
-    elif part.fixed is not None and part.tolerance is None:
-        missing = "capacitor.tolerance of the fixed capacitor is not given"
-    if missing:
-        return unproven(_RANGE, missing, value, _FIND if "given" in missing else None)
-    if part.capacitance is not None:
-        least, most = part.capacitance.min, part.capacitance.max
-    else:
-        fixed, off = part.fixed or 0.0, part.tolerance or 0.0
-        least, most = fixed * (1.0 - off), fixed * (1.0 + off)
-    return judge_between(_RANGE, value, least + part.stray, most + part.stray, loose=part.capacitance is None)
+    """Can the capacitor tune this frequency, with what its padding leaves for it?"""
+    part, frequency = design.capacitor, point.transmission.frequency
+    as_stated, value = main_capacitance(point)
+    if missing := _not_reached(point):
+        return unproven(_RANGE, missing, value)
+    if impossible := main_part(point).missing:
+        return stopped(_RANGE, value, impossible, CHANGE)
+    try:
+        reach = capacitance_reach(part, tube_metal(design), frequency)
+    except ValueError as error:
+        return unproven(_RANGE, str(error), value)
+    if reach is None:
+        lacking = "tolerance of the fixed capacitor" if part.fixed is not None else "capacitance"
+        return unproven(_RANGE, f"capacitor.{lacking} is not given", value, _FIND)
+    padding = () if point.chain is None else point.chain.network.padding
+    guessed = any(each.tolerance is None for each in padding)
+    found = judge_between(_RANGE, value, reach.least, reach.most, loose=reach.loose or guessed)
+    # What is only usual, or an end of what a dielectric may have, stops nothing.
+    open_ended = found.verdict == "stop" and reach.may_hold(as_stated if guessed else value)
+    if open_ended and (guessed or reach.by_sizes):
+        found = unproven(_RANGE, f"it may or may not reach it: {found.because}", value)
+    if not padding:
+        return found
+    usual = f" (not given for all of it: {100.0 * UNSTATED_TOLERANCE:g} % taken, common practice)" if guessed else ""
+    told = f"what the padding and its tolerance{usual} leave for it: {found.because}"
+    return found.model_copy(update={"because": told})
 
 
-def _not_reached(design: Design, point: OperatingPoint) -> str:
-    """Return why the figures are not known, or do not hold for the capacitor alone."""
-    if point.out_of_range:
-        return "; ".join(point.out_of_range)
-    if padding_on(design, point.transmission.frequency):
-        at = words.frequency(point.transmission.frequency)
-        return f"padding is joined at {at}; how it divides volts and amps is not computed by this version"
-    return ""
-
-
-def padding_on(design: Design, frequency: float) -> tuple[Padding, ...]:
-    """Return the padding that is joined at a frequency [Hz]."""
-    return tuple(part for part in design.capacitor.padding if part.on is None or frequency in part.on)
+def _not_reached(point: OperatingPoint) -> str:
+    """Return why the figures are not known."""
+    return "; ".join(point.out_of_range)

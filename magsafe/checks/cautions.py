@@ -1,7 +1,12 @@
 """What can happen to whom, and how to avoid it. On every sheet, whatever its verdict."""
 
+from scipy.constants import zero_Celsius
+
 from magsafe import words
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.design.warmth_tables import touch_thresholds
+
+MELTED = 1300.0  # K: above, no loop is left
 
 
 def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, ...]:
@@ -16,7 +21,8 @@ def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, .
         "protect against established short-term effects only.",
         "Implants. The limits do not protect wearers of pacemakers, pumps, neurostimulators or hearing implants. "
         "They keep out until their clinician has cleared it.",
-        "Hot parts. Conductor, joints and capacitor stay hot after key-down; solder can let go under load.",
+        f"Hot parts. {_warm(points)}Conductor, joints and capacitor stay hot after key-down; solder can let go under "
+        "load.",
         "Stored charge. Capacitors may hold a charge from wind or static. Discharge them before touching. Vacuum "
         "glass can implode: wear eye protection.",
         "Power lines. Keep at least one and a half times the full height of mast and loop away from overhead lines.",
@@ -24,6 +30,20 @@ def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, .
         "sheet makes an aerial lightning-proof.",
         "Law. This sheet reports what was computed against the limits it names. Local regulation, the licence and a "
         "qualified person's judgement go before it.",
+    )
+
+
+def _warm(points: tuple[OperatingPoint, ...]) -> str:
+    """Return how hot the conductor may get, where that burns skin."""
+    hottest = max((point.warmth.temperature().high or 0.0 for point in points if point.warmth is not None), default=0.0)
+    burns = [each for each in touch_thresholds() if each.temperature <= hottest]
+    if not burns:
+        return ""
+    least = min(burns, key=lambda each: each.contact)
+    reached = f"{hottest - zero_Celsius:.0f} degC" if hottest < MELTED else "a temperature at which it melts"
+    return (
+        f"The conductor may reach {reached}; from {least.temperature - zero_Celsius:.0f} degC a touch of "
+        f"{words.duration(least.contact)} burns ({least.source}; {least.provenance}). "
     )
 
 

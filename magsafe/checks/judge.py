@@ -233,7 +233,7 @@ def judge_reading(
     )
 
 
-def holds(check: Check, value: Spread, limit: float, because: str) -> Finding:
+def holds(check: Check, value: Spread, limit: float | None, because: str) -> Finding:
     """Return the clear finding of a question that is answered by a range and not by a margin."""
     return _finding(check, value, "clear", because, limit).model_copy(update={"provenance": "computed"})
 

@@ -10,12 +10,21 @@ from magsafe.analysis.figures import Figure
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
 from magsafe.checks import capacitor, loop
 from magsafe.checks.assumptions import assumptions
+from magsafe.checks.capacitor_heat import capacitor_heat
 from magsafe.checks.cautions import cautions
 from magsafe.checks.ceiling import ceiling, least
+from magsafe.checks.corona import corona
+from magsafe.checks.deratings import deratings
 from magsafe.checks.exemption import exemptions
 from magsafe.checks.exposure import exposure, no_rules
+from magsafe.checks.gap import gap
+from magsafe.checks.heat import heat
 from magsafe.checks.later import later
+from magsafe.checks.line_capacitor import sizes
+from magsafe.checks.measure import measure_first
+from magsafe.checks.padding import padding
 from magsafe.checks.probe import probes
+from magsafe.checks.reactive_power import reactive_power
 from magsafe.checks.session import sessions
 from magsafe.checks.sheet import (
     DesignRecord,
@@ -25,6 +34,7 @@ from magsafe.checks.sheet import (
     Sheet,
     worst,
 )
+from magsafe.checks.tuning import tuning_step
 from magsafe.checks.view import View, view_of
 from magsafe.design.model import Design
 
@@ -54,6 +64,8 @@ def check(design: Design, on: date | None = None) -> Sheet:
         power_ceiling=least([record.power_ceiling for record in records]),
         operating_points=records,
         sessions=worked,
+        measure_first=measure_first(design, points),
+        deratings=deratings(design, points),
         cautions=cautions(points, tuned=design.capacitor.kind != "none"),
     )
 
@@ -66,19 +78,17 @@ def _worked_with(design: Design, index: int) -> int:
 def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Finding, ...]) -> OperatingPointRecord:
     design, point = view.design, view.point
     people, exposed = exposure(view)
-    tuned = (
-        capacitor.voltage(design, point),
-        capacitor.current(design, point),
-        capacitor.tuning_range(design, point),
-    )
+    has_capacitor = design.capacitor.kind != "none"
+    tuned = _tuned(design, point) if has_capacitor else ()
     resonant = (loop.bandwidth(point), loop.q_bound(point))
     agreed = loop.methods_agree(point)
-    has_capacitor = design.capacitor.kind != "none"
     findings = (
-        *(tuned if has_capacitor else ()),
+        *tuned,
         loop.size(design, point),
         *([agreed] if agreed else ()),
         *(resonant if has_capacitor else ()),
+        *heat(design, point),
+        corona(design, point),
         *exposed,
         *summed,
         *probes(design, index, point),
@@ -96,6 +106,22 @@ def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Fin
         findings=findings,
         exposure=people,
         exemptions=exemptions(view),
+    )
+
+
+def _tuned(design: Design, point: OperatingPoint) -> tuple[Finding, ...]:
+    """Return the findings about the capacitor."""
+    current = capacitor.current(design, point)
+    return (
+        capacitor.voltage(design, point),
+        *gap(design, point),
+        *reactive_power(design, point),
+        *sizes(design, point),
+        current,
+        capacitor_heat(design, point, current),
+        *padding(design, point),
+        capacitor.tuning_range(design, point),
+        *tuning_step(design, point),
     )
 
 

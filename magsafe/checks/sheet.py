@@ -136,7 +136,8 @@ class PlaceRecord(Record):
     """A place under one rule: its binding basis, its verdict, and the power it could bear [W].
 
     That is the envelope power; of a place that is judged while tuning, the tune-up carrier's. Null where the field is
-    not known.
+    not known. `in_session` tells that its transmission is worked in turn with others: `times` are then those of this
+    transmission alone, with nothing else on the air in that time.
     """
 
     name: str
@@ -159,6 +160,7 @@ class PlaceRecord(Record):
     when: str
     bases: tuple[BasisRecord, ...] = ()
     times: tuple[TimeRecord, ...] = ()
+    in_session: bool = False
 
 
 class DistanceRecord(Record):
@@ -315,6 +317,16 @@ class OperatingPointRecord(Record):
     exemptions: tuple[ExemptionRecord, ...] = ()
 
 
+class DeratingRecord(Record):
+    """A factor on what is stood: of a breakdown of air, or of a rating; `applies_to` is the id of its finding."""
+
+    name: str
+    factor: float
+    source: str
+    evidence: str
+    applies_to: str
+
+
 class Sheet(Record):
     """The whole result."""
 
@@ -329,6 +341,8 @@ class Sheet(Record):
     power_ceiling: PowerCeiling
     operating_points: tuple[OperatingPointRecord, ...]
     sessions: tuple[SessionRecord, ...] = ()
+    measure_first: str | None = None
+    deratings: tuple[DeratingRecord, ...] = ()
     cautions: tuple[str, ...]
 
     def all_findings(self) -> tuple[Finding, ...]:

@@ -5,7 +5,7 @@ from collections.abc import Sequence
 
 import typer
 
-from magsafe.cli import check, keepout, schema, tables
+from magsafe.cli import capacitor, check, keepout, schema, tables
 
 app = typer.Typer(
     name="magsafe",
@@ -17,6 +17,7 @@ app = typer.Typer(
     context_settings={"help_option_names": ["-h", "--help"]},
 )
 app.command("check")(check.check)
+app.command("capacitor")(capacitor.capacitor)
 app.command("keepout")(keepout.keepout)
 app.command("rules")(tables.rules)
 app.command("materials")(tables.materials)

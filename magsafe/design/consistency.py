@@ -59,6 +59,8 @@ def complaints(tree: Tree) -> Iterator[Complaint]:
         _above_ground,
         _capacitor_value,
         _capacitor_ratings,
+        _padding_ratings,
+        _sleeve,
         _capacitor_kind,
     )
     for rule in rules:
@@ -289,6 +291,28 @@ def _capacitor_ratings(tree: Tree) -> Iterator[Complaint]:
                 f"{companion} beside it",
                 f"add {companion}, or remove {key}",
             )
+
+
+def _padding_ratings(tree: Tree) -> Iterator[Complaint]:
+    for index, part in blocks_at(block_at(tree, "capacitor"), "with"):
+        if "rated_voltage_kind" in part and "rated_voltage" not in part:
+            path = ("capacitor", "with", index)
+            expected = "rated_voltage beside it"
+            yield not_here(
+                path, part, "rated_voltage_kind", expected, "add rated_voltage, or remove rated_voltage_kind"
+            )
+
+
+def _sleeve(tree: Tree) -> Iterator[Complaint]:
+    capacitor = block_at(tree, "capacitor")
+    inner, outer = size_of(capacitor, "inner_diameter"), size_of(capacitor, "outer_diameter")
+    if inner is not None and outer is not None and inner >= outer:
+        yield (
+            ("capacitor", "inner_diameter"),
+            show(capacitor["inner_diameter"]),
+            f"less than outer_diameter ({plain(outer, LENGTH)}): both are diameters of the dielectric",
+            "exchange the two",
+        )
 
 
 def _capacitor_kind(tree: Tree) -> Iterator[Complaint]:

@@ -4,7 +4,7 @@ Keys that only make sense together (a size for each shape, a wall for a tube) ar
 `consistency`; here each key stands for itself.
 """
 
-from collections.abc import Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from typing import Annotated, Any, Literal, get_args
 
@@ -18,9 +18,10 @@ from pydantic import (
     Tag,
 )
 
-from magsafe.design import tables
+from magsafe.design import tables, warmth_tables
 from magsafe.design.quantities import Quantity, Uncertain, UncertainQuantity, field_error, show
 from magsafe.units import (
+    AREA,
     CAPACITANCE,
     CONDUCTIVITY,
     CURRENT,
@@ -43,9 +44,9 @@ SCHEMA = "magsafe.design/1"
 AM_CREST = 4.0  # envelope power of a fully modulated AM signal over its carrier
 
 
-def _named(table: str, *also: str) -> AfterValidator:
+def _named(table: Callable[[], Iterable[str]], *also: str) -> AfterValidator:
     def check(name: str) -> str:
-        rows = (*getattr(tables, table)(), *also)
+        rows = (*table(), *also)
         if name not in rows:
             raise field_error(("", show(name), f"one of {', '.join(rows)}", nearest(name, rows)))
         return name
@@ -81,8 +82,10 @@ def _rule(name: str) -> str:
 
 Name = Annotated[str, AfterValidator(_printable)]
 RuleName = Annotated[str, AfterValidator(_rule)]
-MaterialName = Annotated[str, _named("materials")]
-GroundName = Annotated[str, _named("soils", "perfect", "none")]
+MaterialName = Annotated[str, _named(tables.materials)]
+PlasticName = Annotated[str, _named(warmth_tables.plastics)]
+DielectricName = Annotated[str, _named(warmth_tables.dielectrics, "air")]
+GroundName = Annotated[str, _named(tables.soils, "perfect", "none")]
 
 LoopLength = Annotated[float, Quantity(LENGTH, 0.02, 200.0)]
 ConductorSize = Annotated[float, Quantity(LENGTH, 0.05e-3, 0.5)]
@@ -194,6 +197,7 @@ class Loop(Block):
     plane: Literal["vertical", "horizontal"] = "vertical"
     centre_height: Annotated[float, Quantity(LENGTH, 0.0, 500.0)] | None = None
     rotates: bool = False
+    supports: list[PlasticName] | None = None
     conductor: Conductor
     joint: list[Joint] = []
 
@@ -206,11 +210,13 @@ class CapacitanceRange(Block):
 
 
 class Padding(Block):
-    """A fixed capacitor joined to the variable one, on some frequencies."""
+    """A fixed capacitor joined on some frequencies: across the main one, or in series with all that is across it."""
 
     connection: Literal["parallel", "series"]
     capacitance: Capacitance
+    tolerance: Annotated[float, Quantity(SHARE, 0.0, 0.5)] | None = None
     rated_voltage: Voltage | None = None
+    rated_voltage_kind: Literal["peak RF", "RMS RF", "DC working", "DC test"] | None = None
     rated_current: Current | None = None
     quality_factor: QualityFactor | None = None
     on: Annotated[list[Frequency], Field(min_length=1)] | None = None
@@ -229,6 +235,7 @@ class Capacitor(Block):
     rated_current: Current | None = None
     rated_current_at: Frequency | None = None
     rated_reactive_power: Annotated[float, Quantity(REACTIVE_POWER, 1.0, 1e8)] | None = None
+    rated_dissipation: Annotated[float, Quantity(POWER, 1e-3, 10e3)] | None = None
     quality_factor: QualityFactor | None = None
     quality_factor_at: Frequency | None = None
     series_resistance: Resistance | None = None
@@ -237,10 +244,11 @@ class Capacitor(Block):
     plate_thickness: Annotated[float, Quantity(LENGTH, 0.01e-3, 0.05)] | None = None
     plate_edge: Literal["round", "square cut"] | None = None
     wiper: bool = False
-    dielectric: Name | None = None
+    dielectric: DielectricName | None = None
     inner_diameter: ConductorSize | None = None
     outer_diameter: ConductorSize | None = None
     length: Annotated[float, Quantity(LENGTH, 1e-3, 50.0)] | None = None
+    plate_area: Annotated[float, Quantity(AREA, 1e-6, 10.0)] | None = None
     stray: Stray = 0.0
     weather: Literal["sealed", "vented", "open"] | None = None
     padding: Annotated[list[Padding], Field(alias="with")] = []

@@ -16,6 +16,7 @@ from pydantic import ValidationError
 from pydantic_core import ErrorDetails
 
 from magsafe.design.consistency import complaints
+from magsafe.design.implied import hand_at_the_capacitor
 from magsafe.design.model import SCHEMA, Block, Design, DesignFile, Origin, nearest
 from magsafe.design.quantities import printable, show
 from magsafe.errors import DesignError, Problem
@@ -88,6 +89,7 @@ def parse_design(data: bytes, name: str = "<stdin>") -> Design:
     stated = DesignFile.model_validate(tree)
     fields = {key: getattr(stated, key) for key in DesignFile.model_fields}
     origin = Origin(name, hashlib.sha256(data).hexdigest(), text)
+    fields["place"] = [*stated.place, *hand_at_the_capacitor(stated)]
     return Design.model_construct(**fields, origin=origin)
 
 

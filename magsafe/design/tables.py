@@ -92,6 +92,11 @@ def joint_resistance(kind: str) -> Spread:
     return next(Spread(*row["resistance"]) for row in _kinds()["joint"] if row["name"] == kind)
 
 
+def capacitor_kinds() -> tuple[str, ...]:
+    """Return the kinds of capacitor whose typical Q is known, an air variable with a wiper as one of its own."""
+    return tuple(row["name"] for row in _kinds()["capacitor"] if not row["name"].startswith("fixed part"))
+
+
 def capacitor_quality_factor(kind: str) -> Spread:
     """Return the typical Q of a kind of capacitor at 3-30 MHz (common practice)."""
     return next(Spread(*r["quality_factor"]) for r in _kinds()["capacitor"] if r["name"] == kind)
@@ -106,6 +111,12 @@ def conductor_factor(form: str) -> Spread:
 def roughness_share() -> Spread:
     """Return what roughness and oxide add to a resistance, as a share of it (common practice)."""
     return Spread(*_kinds()["roughness"]["share"])
+
+
+def cable_factors() -> tuple[Spread, Spread]:
+    """Return how much more the inner and the outer conductor of a cable lose than smooth copper (common practice)."""
+    cable = _kinds()["cable"]
+    return Spread(*cable["inner_factor"]), Spread(*cable["outer_factor"])
 
 
 def band_of(frequency: float) -> Band | None:

@@ -122,6 +122,12 @@ def solders() -> dict[str, Softening]:
 
 
 @cache
+def standing() -> dict[str, Softening]:
+    """Return what metals and joints stand for long, by name."""
+    return {row["name"]: Softening(**_kelvin(row)) for row in _load("temperatures.toml")["standing"]}
+
+
+@cache
 def plastics() -> dict[str, Softening]:
     """Return where plastics begin to give way, by name."""
     return {row["name"]: Softening(**_kelvin(row)) for row in _load("temperatures.toml")["softening"]}

@@ -1,10 +1,11 @@
 """What volts an air gap between plates stands: uniform field, edges, and every derating as a row."""
 
+from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import cache
 from math import inf
 
 import numpy as np
-from scipy.interpolate import PchipInterpolator
 
 from magsafe.physics.arrays import Array, Values
 from magsafe.physics.corona import onset_field
@@ -29,7 +30,6 @@ ASPECT = Range("plate thickness over gap", 0.05, inf, "the thinnest edge whose f
 _ASPECTS = (0.05, 0.1, 0.2, 0.3, 0.5, 0.75, 1.0, 1.5, 2.0)
 _FACTORS = (6.7409, 4.7371, 3.3089, 2.6693, 2.0234, 1.6718, 1.4980, 1.3274, 1.2440)
 _THICKEST = _ASPECTS[-1]
-_log_factor = PchipInterpolator(np.log(_ASPECTS), np.log(_FACTORS))
 
 # The uniform-field fit without its term for the gap: below it air multiplies no electrons.
 IONISATION_END = 2.422e6  # V/m at relative density 1
@@ -132,7 +132,15 @@ def edge_factor(aspect: Values) -> Array:
     Source    computed, charges on the boundary, at nine aspects; between them monotone in logarithms, within 0.3 %.
     """
     known = np.minimum(ASPECT.within(np.asarray(aspect) * (1.0 + 1e-12)), _THICKEST)
-    return np.asarray(np.exp(_log_factor(np.log(known))))
+    return np.asarray(np.exp(_log_factor()(np.log(known))))
+
+
+@cache
+def _log_factor() -> Callable[[Array], Array]:
+    from scipy.interpolate import PchipInterpolator  # noqa: PLC0415  (only where there is a gap: slow to import)
+
+    joined: Callable[[Array], Array] = PchipInterpolator(np.log(_ASPECTS), np.log(_FACTORS))
+    return joined
 
 
 def edge_onset(gap: Values, thickness: Values, density: Values) -> Array:

@@ -3,7 +3,6 @@
 from collections.abc import Callable
 
 import numpy as np
-from scipy.integrate import solve_ivp
 from scipy.special import exprel
 
 from magsafe.physics.arrays import Array, Values
@@ -306,6 +305,8 @@ def _warmed(
 
     first = np.broadcast_to(np.asarray(start) - air, shape).ravel()
     # No element knows of another: the Jacobian has its diagonal only.
+    from scipy.integrate import solve_ivp  # noqa: PLC0415  (slow to import, and a check does not need it)
+
     run = solve_ivp(
         warming, (0.0, 1.0), first, method="LSODA", t_eval=shares, rtol=_RELATIVE, atol=_ABSOLUTE, lband=0, uband=0
     )

@@ -13,6 +13,7 @@ from rich.text import Text
 from magsafe import words
 from magsafe.checks.sheet import (
     ORDER,
+    DeratingRecord,
     FigureRecord,
     Finding,
     KeepoutPoint,
@@ -22,7 +23,7 @@ from magsafe.checks.sheet import (
     Sheet,
     Verdict,
 )
-from magsafe.reports import exemption, people, sessions, telling
+from magsafe.reports import deratings, exemption, people, sessions, telling
 from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
 
@@ -30,6 +31,7 @@ WIDEST = 100
 NARROWEST = 40
 _SAID = 13  # columns for shape and verdict word
 _LABEL = 27
+_FACTOR = 7  # columns for a factor
 _TABLE = 76  # columns that the tables of distances need
 _ASIDE = 4  # transmissions beside each other in one table
 _PLAIN = str.maketrans(
@@ -85,8 +87,10 @@ def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
         *say.top(sheet),
         *say.in_the_way(sheet),
         *say.figures(sheet.operating_points),
+        *say.derations(sheet.deratings),
         *say.people(sheet.operating_points, sheet.sessions),
         *say.clear(sheet),
+        *say.measure_first(sheet),
         *say.list_of("Assumed", sheet.assumptions),
         *say.list_of("Cautions", sheet.cautions),
     )
@@ -217,7 +221,7 @@ class Speaker:
         for session in worked:
             columns = people.distance_columns(points[session.transmissions[0]])[:-1]
             yield self.paragraph(f"Worked in turn: {session.name}")
-            yield self.grid(("", *columns), sessions.distance_rows(session))
+            yield self.grid(("", *columns), sessions.distance_rows(session, len(columns)))
         yield from self.doubts(points)
         yield from self.exempt(points)
 
@@ -240,7 +244,7 @@ class Speaker:
             for sentence in said:
                 yield self.paragraph(sentence, indent=2)
 
-    def grid(self, head: Sequence[str], rows: Iterable[Sequence[str]]) -> RenderableType:
+    def grid(self, head: Sequence[str], rows: Iterable[Sequence[str]], first: int = _LABEL - 6) -> RenderableType:
         """Return a table of short cells, the first column to the left; where it would not fit, a line for each row."""
         listed = list(rows)
         if self.width < _TABLE:
@@ -249,7 +253,7 @@ class Speaker:
             ]
             return Group(*(self.paragraph(f"{row[0]}: {line}") for row, line in zip(listed, lines, strict=True)))
         table = Table(box=None, pad_edge=False, padding=(0, 0, 0, 1), show_edge=False)
-        table.add_column(Text(self.letters(head[0])), width=_LABEL - 6)
+        table.add_column(Text(self.letters(head[0])), width=first)
         for name in head[1:]:
             words_in_it = name in ("direction", "set by")
             table.add_column(Text(self.letters(name)), justify="left" if words_in_it else "right", min_width=6)
@@ -300,6 +304,21 @@ class Speaker:
         likely = "?" if spread.likely is None else words.number(spread.likely, row.si, row.unit)
         ends = words.ends(spread, row.si, row.unit).strip("()").replace("at most", "up to").replace("at least", "from")
         return self.letters(f"{likely}\n{ends}" if ends else likely)
+
+    def measure_first(self, sheet: Sheet) -> Iterator[RenderableType]:
+        """Yield which uncertain input to measure first; nothing where none is worth it."""
+        if sheet.measure_first is not None:
+            yield Text("")
+            yield self.paragraph(sheet.measure_first)
+
+    def derations(self, records: Sequence[DeratingRecord]) -> Iterator[RenderableType]:
+        """Yield the table of derations; nothing where nothing was taken off."""
+        if records:
+            yield from self.heading(deratings.HEADING)
+        for factor, text in deratings.rows(records):
+            lines = wrap(self.letters(text), self.width - _FACTOR, break_on_hyphens=False)
+            body = f"\n{' ' * _FACTOR}".join(lines)
+            yield Text(f"{factor.rjust(_FACTOR - 2)}  {body}", no_wrap=True)
 
     def list_of(self, title: str, sentences: Sequence[str]) -> Iterator[RenderableType]:
         """Yield a heading and sentences, each a paragraph with a hanging mark."""

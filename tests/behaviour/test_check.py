@@ -101,26 +101,33 @@ MISSING = [
         "rated_voltage",
     ),
     ({"capacitor__rated_voltage_kind": None}, "capacitor.voltage", "rated_voltage_kind"),
-    ({"capacitor__rated_voltage_kind": "DC test"}, "capacitor.voltage", "DC test"),
+    (
+        {"capacitor__kind": "ceramic", "capacitor__rated_voltage_kind": "DC test"},
+        "capacitor.voltage",
+        "DC test",
+    ),
     ({"capacitor__rated_current": None}, "capacitor.current", "rated_current"),
     ({"capacitor__capacitance": None}, "capacitor.range", "capacitance"),
     ({"loop__conductor__outer_diameter": "100 mm"}, "loop.size", "proved to 0.06"),
     ({"loop__conductor__outer_diameter": "100 mm"}, "capacitor.voltage", "proved to 0.06"),
     ({"transmission__0__frequency": "50.1 MHz"}, "capacitor.voltage", "anti-resonance"),
-    ({"capacitor__kind": "air variable", "capacitor__gap": "2 mm"}, "capacitor.gap", "gap"),
     (
-        {"capacitor__with": [{"connection": "series", "capacitance": "1 nF"}]},
-        "capacitor.voltage",
-        "padding",
+        {"capacitor__kind": "air variable", "capacitor__gap": "8 mm"},
+        "capacitor.gap",
+        "plate_thickness",
     ),
     (
         {"capacitor__with": [{"connection": "series", "capacitance": "1 nF"}]},
-        "capacitor.padding",
-        "with",
+        "capacitor.padding.1000-pf.voltage",
+        "rated_voltage",
     ),
-    ({"loop__conductor__surface": "bright"}, "conductor.temperature", "surface"),
-    ({"tuning": {"steps_per_range": 4000}}, "capacitor.tuning_step", "steps_per_range"),
-    ({"capacitor__rated_reactive_power": "5 kVA"}, "capacitor.heat", "rated_reactive_power"),
+    (
+        {"capacitor__with": [{"connection": "series", "capacitance": "1 nF"}]},
+        "capacitor.padding.1000-pf.current",
+        "rated_current",
+    ),
+    ({"capacitor__with": [{"connection": "series", "capacitance": "150 pF"}]}, "capacitor.voltage", "padding"),
+    ({"capacitor__kind": "ceramic"}, "capacitor.reactive_power", "rated_reactive_power"),
     (
         {"measured": [{"frequency": "7.1 MHz", "unloaded_q": 1000, "date": "2026-05-01"}]},
         "loop.measured",
@@ -246,13 +253,15 @@ def test_at_the_ceiling_all_is_clear_and_one_percent_above_it_is_not(
     }
     value, at_limit = ceiling_at(design, 100.0, **changes)
 
-    def verdicts(watts: float) -> set[str]:
+    def counted(watts: float) -> list[Finding]:
         sheet = sheet_of(design, transmission__0__power=f"{watts:.12f} W", **changes)
-        return {f.verdict for f in sheet.all_findings() if f.power_at_margin is not None}
+        return [f for f in sheet.all_findings() if f.power_at_margin is not None]
 
-    assert verdicts(value * (1.0 - 1e-9)) == {"clear"}
-    assert verdicts(value * 1.01) != {"clear"}
-    assert "stop" in verdicts(at_limit * 1.5)
+    below, above = value * (1.0 - 1e-9), value * 1.01
+    assert {f.verdict for f in counted(below) if not f.thin} == {"clear"}
+    assert all((f.margin_found or 0.0) >= (f.margin_asked or 0.0) for f in counted(below))
+    assert any((f.power_at_margin or 0.0) < above and f.verdict != "clear" for f in counted(above))
+    assert "stop" in {f.verdict for f in counted(at_limit * 1.5)}
     assert at_limit >= value
 
 
@@ -268,18 +277,13 @@ def test_the_sheets_ceiling_is_the_least_and_names_its_transmission(design: Make
     values = [point.power_ceiling.value or 0.0 for point in sheet.operating_points]
     assert sheet.power_ceiling.value == min(values)
     assert sheet.power_ceiling.transmission == values.index(min(values))
-    assert sheet.power_ceiling.held_by in ("capacitor.voltage", "capacitor.current")
+    assert sheet.power_ceiling.held_by in ("capacitor.voltage", "capacitor.current", "conductor.temperature")
     assert not sheet.power_ceiling.complete
     assert "exposure.rules" in sheet.power_ceiling.left_out
 
 
 def test_nothing_counted_is_null_and_not_zero(design: MakeDesign) -> None:
-    sheet = sheet_of(
-        design,
-        capacitor__rated_voltage=None,
-        capacitor__rated_voltage_kind=None,
-        capacitor__rated_current=None,
-    )
+    sheet = sheet_of(design, loop__conductor__outer_diameter="70 mm")
     assert sheet.power_ceiling.value is None
     assert sheet.power_ceiling.held_by is None
 
@@ -307,8 +311,30 @@ def test_credit_for_typical_values_that_alone_keeps_the_limit_is_told() -> None:
 
 def test_matches_and_hands_that_are_not_computed_are_unproven(design: MakeDesign) -> None:
     assert finding(sheet_of(design, feed={"coupling": "capacitors"}), "feed.coupling").verdict == "unproven"
-    by_hand = sheet_of(design, tuning={"by": "hand at the loop"})
-    assert finding(by_hand, "exposure.tuning").verdict == "unproven"
+
+
+@pytest.mark.parametrize("plane", ["vertical", "horizontal"])
+def test_a_hand_at_the_loop_is_a_place_while_tuning(design: MakeDesign, plane: str) -> None:
+    """Half a metre before the capacitor the electric field is that of its body: unproven, or worse by the magnetic."""
+    changes = {"tuning": {"by": "hand at the loop"}, "loop__centre_height": "1.5 m", "loop__plane": plane}
+    site = {"ground": "average", "rules": ["us-fcc"]}
+    mute = finding(sheet_of(design, **changes, site=site), "exposure.us-fcc.trained.hand-at-the-capacitor")
+    assert mute.verdict == "unproven"
+    assert "tune_up" in mute.because
+    weak, strong = (
+        finding(
+            sheet_of(design, **changes, site=site, transmission__0__tune_up={"power": watts, "time": "5 s"}),
+            "exposure.us-fcc.trained.hand-at-the-capacitor",
+        )
+        for watts in ("0.1 W", "100 W")
+    )
+    assert weak.verdict == "unproven"
+    assert weak.doubt
+    assert strong.verdict == "stop"
+    own = {"name": "bench", "who": "trained", "in_plane": "3 m", "when": "tuning"}
+    stated = sheet_of(design, **changes, site=site, place=[own],
+                      transmission__0__tune_up={"power": "1 W", "time": "10 s"})  # fmt: skip
+    assert not any("hand-at-the-capacitor" in f.id for f in stated.all_findings())
 
 
 def test_a_fixed_capacitor_without_tolerance_is_unproven(design: MakeDesign) -> None:
@@ -529,8 +555,14 @@ def test_credit_for_a_typical_joint_makes_neither_volts_nor_amps_clear(design: M
 
 
 @pytest.mark.parametrize("kind", ["DC working", "DC test"])
-def test_no_direct_voltage_rating_is_held_against_rf(design: MakeDesign, kind: str) -> None:
-    assert finding(sheet_of(design, capacitor__rated_voltage_kind=kind), "capacitor.voltage").verdict == "unproven"
+def test_no_direct_voltage_rating_is_held_against_rf_as_it_stands(design: MakeDesign, kind: str) -> None:
+    """Of an air capacitor radio frequency takes a fifth off at least, whatever was tested."""
+    found = finding(
+        sheet_of(design, capacitor__kind="air variable", capacitor__rated_voltage_kind=kind), "capacitor.voltage"
+    )
+    assert found.limit is not None
+    assert found.limit.value <= 0.8 * 15e3
+    assert found.verdict != "clear"
 
 
 def test_stray_capacitance_lifts_the_least_as_well_as_the_most(design: MakeDesign) -> None:
@@ -546,13 +578,18 @@ def test_stray_capacitance_lifts_the_least_as_well_as_the_most(design: MakeDesig
 def test_padding_counts_on_its_own_frequencies(design: MakeDesign) -> None:
     sheet = sheet_of(
         design,
-        capacitor__with=[{"connection": "series", "capacitance": "1 nF", "on": ["3.6 MHz"]}],
-        transmission=[{"frequency": "3.6 MHz", "power": "10 W"}, {"frequency": "7.1 MHz", "power": "10 W"}],
+        capacitor__with=[{"connection": "series", "capacitance": "1 nF", "on": ["7.1 MHz"]}],
+        transmission=[{"frequency": "10.1 MHz", "power": "10 W"}, {"frequency": "7.1 MHz", "power": "10 W"}],
     )
-    padded, free = (next(f for f in p.findings if f.id == "capacitor.voltage") for p in sheet.operating_points)
-    assert padded.verdict == "unproven"
-    assert "padding" in padded.because
-    assert free.verdict == "clear"
+    free, padded = sheet.operating_points
+    own = [next(f for f in p.findings if f.id == "capacitor.voltage") for p in (free, padded)]
+    assert own[0].value is not None
+    assert own[1].value is not None
+    assert own[0].value.high == free.figures["capacitor_peak_voltage"].high
+    assert (own[1].value.high or 0.0) < 0.9 * (padded.figures["capacitor_peak_voltage"].high or 0.0)
+    assert (own[0].verdict, own[1].verdict) == ("clear", "narrow")
+    assert not [f for f in free.findings if "padding" in f.id]
+    assert len([f for f in padded.findings if "padding" in f.id]) == 2
 
 
 def test_the_signal_is_held_against_the_swr_2_bandwidth(design: MakeDesign) -> None:

@@ -30,9 +30,9 @@ def test_version_both_ways() -> None:
 
 def test_help_names_every_command() -> None:
     text = run("--help").stdout
-    for command in ("check", "keepout", "rules", "materials", "bands", "schema"):
+    for command in ("check", "capacitor", "keepout", "rules", "materials", "bands", "schema"):
         assert command in text
-    for command in ("check", "keepout", "rules", "materials", "bands", "schema"):
+    for command in ("check", "capacitor", "keepout", "rules", "materials", "bands", "schema"):
         assert run(command, "--help").returncode == 0
 
 

@@ -86,6 +86,7 @@ def loaded_by(*arguments: str) -> set[str]:
 def test_help_loads_no_numbers() -> None:
     assert not loaded_by("--help") & {"numpy", "scipy", "pint", "rich"}
     assert not loaded_by("check", "--help") & {"numpy", "scipy", "pint"}
+    assert not loaded_by("capacitor", "--help") & {"numpy", "scipy", "pint"}
 
 
 def test_version_loads_hardly_anything() -> None:

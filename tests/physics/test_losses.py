@@ -439,7 +439,7 @@ def test_the_slope_is_that_of_the_reactance_at_neighbouring_frequencies() -> Non
 def test_where_each_part_sits_is_what_the_file_says() -> None:
     def where(at: str) -> str:
         joint = Joint.model_construct(name="j", count=1, kind=None, resistance=single(1e-3), at=at)
-        return losses.joint_loss(joint).where
+        return str(losses.joint_loss(joint).where)
 
     assert (where("capacitor"), where("spread"), where("opposite")) == ("port", "spread", "opposite")
     assert of_capacitor(series_resistance="5 mohm").where == "port"

@@ -1,0 +1,347 @@
+"""How warm the conductor gets by the end of the longest over, where its current is largest."""
+
+from dataclasses import dataclass, replace
+from functools import lru_cache
+from math import inf, pi
+
+import numpy as np
+
+from magsafe.analysis.chain import VOLTAGE_ERROR, Chain
+from magsafe.analysis.exposure import Use
+from magsafe.analysis.flow import poorest_conductivity, turn_factors
+from magsafe.analysis.losses import COPPER_COEFFICIENT, Corner
+from magsafe.design import tables, warmth_tables
+from magsafe.design.model import Conductor, Design, Joint
+from magsafe.physics.arrays import Array, Values
+from magsafe.physics.atmosphere import standard_pressure
+from magsafe.physics.conductor import skin_depth
+from magsafe.physics.convection import equal_perimeter_diameter
+from magsafe.physics.fin import fin_resistance, thermal_conductivity
+from magsafe.physics.heat import CEILING, ElectricHeat, Surface, Surroundings, heat_for_temperature, lost_heat
+from magsafe.physics.warming import heat_capacity_per_metre
+from magsafe.rules.duty import ON_AIR_SHARE_WINDOW, OnAirShare, Over
+from magsafe.spread import Spread
+
+HOT_AIR, THIN_AIR = 313.15, 2000.0  # K and m, where the design states none
+RUNS_AWAY = 1e4  # K, told for what takes up more than it can lose: far above any limit
+SUNSHINE = 1000.0  # W/m2
+UPRIGHT_SHARE = 0.8  # of the convection of a level cylinder, for parts that stand (common practice: 0.8 to 1)
+POOR_JOINT = 10.0  # times what is typical at most: loose, corroded or cold-soldered (common practice)
+POORER = 0.8  # of the heat conducted, for what the law of Wiedemann and Franz leaves open: least in aluminium
+_POWERS, _TRIED, _ROUNDS = (1e-9, 1e9), 60, 8  # times the power computed
+_FINELY = 3000
+_SMALL_RISE = 10.0  # K
+_THIN_WALL = 2.0  # skin depths: below, the resistance grows as the resistivity and not as its root
+
+
+@dataclass(frozen=True, slots=True)
+class Warmth:
+    """The conductor in one transmission: heat where its current is largest, and what carries it off.
+
+    `heat` is key-down [W/m], by its own worst corner; `surface` and `air` hold the ends (low, likely, high) of the
+    temperature, shape (3,); `bare_heat` is the high end without credit for what is typical of other parts; `growth` is
+    the resistance at the start of an over over that at 20 degC [1]. `capacity` is what a metre holds [J/K], 0 where the
+    section is not known. `over` and `pause` are the longest over and what follows it [s]; an over without end is
+    infinite. `finish_stated` tells whether the surface is the design's word.
+    """
+
+    heat: Spread
+    bare_heat: float
+    surface: Surface
+    air: Surroundings
+    coefficient: float
+    exponent: float
+    growth: float
+    capacity: float
+    duty: float
+    over: float
+    pause: float
+    finish_stated: bool
+
+    @property
+    def air_temperature(self) -> float:
+        """The temperature of the air [K]."""
+        return _hottest(self.air.temperature)
+
+    @property
+    def share(self) -> float:
+        """The share of all time that is keyed [1]."""
+        return 1.0 if self.over == inf else self.over / (self.over + self.pause)
+
+    def temperature(self) -> Spread:
+        """Return the temperature at the end of the longest over [K]; `RUNS_AWAY` where nothing holds it.
+
+        The high end is a bound: the steady state of the mean heat, and on top of it all that one over brings, but
+        never more than the steady state of an over without end. The likely value is that of a body that loses heat in
+        proportion, as it does at the mean; the low end is the steady state of the mean.
+        """
+        ends = (self.heat.low, self.heat.likely, self.heat.high)
+        heats = np.array([0.0 if end is None else end * self.duty for end in ends])
+        mean, keyed = self._steady(heats * self.share), self._steady(heats)
+        swing = float(heats[1]) * self._swing(float(mean[1]))
+        likely = float(min(keyed[1], mean[1] + swing))
+        high = float(np.minimum(keyed, mean + self._added(heats))[2])
+        return Spread(None if self.heat.low is None else float(mean[0]), min(likely, high), high)
+
+    @property
+    def idle(self) -> float:
+        """The temperature before the first over at the high end [K]: that of the air, or what the sun makes of it."""
+        return float(self._steady_high(np.zeros(1))[0])
+
+    @property
+    def bare(self) -> "Warmth":
+        """The same without credit for typical losses elsewhere and for an unstated finish; its high end alone."""
+        surface = self.surface if self.finish_stated else replace(self.surface, emissivity=0.0, absorptivity=1.0)
+        return replace(self, surface=surface, heat=Spread(None, None, self.bare_heat))
+
+    def high_at(self, powers: Array) -> Array:
+        """Return the high end [K] at powers that are so many times the one computed, shape (power,)."""
+        heats = (self.heat.high or 0.0) * self.duty * powers
+        return np.minimum(self._steady_high(heats), self._steady_high(heats * self.share) + self._added(heats))
+
+    def power_to(self, temperature: float, beside: float = 0.0) -> float:
+        """Return the largest of such powers that keeps the high end within a temperature [K]; 0 where none does.
+
+        `beside` is what a part warms besides at the power computed, in proportion to the power [K].
+        """
+        if self.idle > temperature:
+            return 0.0
+        low, high = _POWERS
+        for _ in range(_ROUNDS):
+            powers = np.geomspace(low, high, _TRIED)
+            kept = np.flatnonzero(self.high_at(powers) + beside * powers <= temperature)
+            if not len(kept):
+                return 0.0
+            low, high = float(powers[kept[-1]]), float(powers[min(int(kept[-1]) + 1, _TRIED - 1)])
+        return low
+
+    def _steady_high(self, heats: Array) -> Array:
+        return self._steady_at(2, heats)
+
+    def _steady_at(self, end: int, heats: Array) -> Array:
+        """Return the steady temperature [K] of one end of surface and air for heats at the start of an over [W/m]."""
+        outside, air = self.surface, self.air
+        parts = (outside.diameter, outside.facing, outside.emissivity, outside.absorptivity, outside.convection_share)
+        floats = (
+            float(np.broadcast_to(part, 3)[end]) for part in (*parts, air.temperature, air.pressure, air.sunshine)
+        )
+        temperatures, kept = _balance(tuple(floats), self.coefficient, self.exponent)
+        return np.interp(heats / self.growth, kept, temperatures, right=RUNS_AWAY)
+
+    def _added(self, heats: Array) -> Array:
+        """Return what one over brings at most [K] to a metre with so much heat [W/m]."""
+        endless = self.capacity == 0.0 or self.over == inf
+        return np.full(heats.shape, inf) if endless else heats * (self.over / self.capacity)
+
+    def _steady(self, heats: Array) -> Array:
+        return np.array([float(self._steady_at(end, heats[end : end + 1])[0]) for end in range(3)])
+
+    def _swing(self, temperature: float) -> float:
+        """Return how far an over ends above the mean [K m/W], for a body that loses in proportion."""
+        if self.share == 1.0:
+            return 0.0
+        cooler, warmer = (lost_heat(temperature + step, self.surface, self.air) for step in (-0.5, 0.5))
+        conductance = float(np.broadcast_to(warmer - cooler, 3)[1])
+        if self.capacity == 0.0:
+            return (1.0 - self.share) / conductance
+        constant = self.capacity / conductance
+        end = np.expm1(-self.over / constant) / np.expm1(-(self.over + self.pause) / constant)
+        return (float(end) - self.share) / conductance
+
+
+@lru_cache(maxsize=64)
+def _balance(outside: tuple[float, ...], coefficient: float, exponent: float) -> tuple[Array, Array]:
+    """Return temperatures [K] and the heats at 20 degC [W/m] that keep a conductor at them, finely enough for lines.
+
+    Read the other way it is the steady temperature of a heat, without a search.
+    """
+    surface = Surface(*outside[:5])
+    air = Surroundings(*outside[5:])
+    temperatures = outside[5] + np.append(0.0, np.geomspace(1e-3, CEILING - outside[5], _FINELY))
+    heats = heat_for_temperature(temperatures, coefficient, exponent, surface, air)
+    return temperatures, np.maximum.accumulate(heats)
+
+
+def _hottest(ends: Values) -> float:
+    return float(np.broadcast_to(ends, 3)[2])
+
+
+def warmth(chain: Chain, design: Design, use: Use) -> Warmth:
+    """Return how warm the conductor of a loop gets that the solver reaches."""
+    made_of = design.loop.conductor
+    coefficient = _coefficient(made_of)
+    exponent = 1.0 if _wall(made_of) < _THIN_WALL * _depth(made_of, chain.frequency) else 0.5
+    warm = ElectricHeat(1.0, coefficient, exponent).growth(made_of.temperature)
+    over, pause = _pattern(use)
+    heat, bare = _heat(chain, design)
+    return Warmth(
+        heat=heat,
+        bare_heat=bare,
+        surface=_surface(design),
+        air=surroundings_of(design),
+        coefficient=coefficient,
+        exponent=exponent,
+        growth=float(warm),
+        capacity=_capacity(made_of),
+        duty=use.duty,
+        over=over,
+        pause=pause,
+        finish_stated=made_of.surface is not None,
+    )
+
+
+def _heat(chain: Chain, design: Design) -> tuple[Spread, float]:
+    """Return the heat of a metre where the current is largest [W/m], key-down, in the turn that heats most.
+
+    And its high end without credit for what is typical of other parts.
+    """
+    crowded = [float(each.max()) for each in turn_factors(design, chain.frequency)]
+    part, power = chain.conductor, chain.power
+
+    def metre(end: str, others: str, corner: Corner, watts: float, factor: float) -> float:
+        value: float = getattr(part, end)
+        own = value * factor * corner.growth * corner.state.flow.largest**2
+        total = chain.resistance(others, corner) - part.at(others, corner) + part.at(end, corner)
+        return watts * own / total
+
+    low = min((metre("low", "high", each, power.low or 0.0, crowded[0]) for each in chain.most), default=None)
+    likely = metre("likely", "likely", chain.likely, power.likely or 0.0, crowded[1])
+    high, bare = (
+        max(metre("high", others, each, power.high or 0.0, crowded[2]) for each in chain.least)
+        for others in ("low", "bare")
+    )
+    error = 2.0 * VOLTAGE_ERROR
+    return Spread(low, likely, high).widened(error, error), bare * (1.0 + error)
+
+
+def _pattern(use: Use) -> tuple[float, float]:
+    """Return the longest over and the pause after it [s]; an on-air share may come in one piece."""
+    match use.pattern:
+        case Over(transmit, listen):
+            return (transmit, listen) if listen > 0.0 else (inf, 0.0)
+        case OnAirShare(share) if share < 1.0:
+            return share * ON_AIR_SHARE_WINDOW, (1.0 - share) * ON_AIR_SHARE_WINDOW
+        case _:
+            return inf, 0.0
+
+
+def surroundings_of(design: Design) -> Surroundings:
+    """Return the air and the sun about a loop; where nothing is stated, hot and thin air and no sun."""
+    site, shone = design.site, design.loop.conductor.in_sun
+    air = HOT_AIR if site.air_temperature is None else site.air_temperature
+    thin = float(standard_pressure(THIN_AIR if site.altitude is None else site.altitude))
+    return Surroundings(air, thin, SUNSHINE if shone else 0.0)
+
+
+def _surface(design: Design) -> Surface:
+    made_of = design.loop.conductor
+    finishes = _finishes(made_of)
+    emissivity = [min(f.emissivity.low or 0.0 for f in finishes), max(f.emissivity.high or 0.0 for f in finishes)]
+    absorptivity = [min(f.absorptivity.low or 0.0 for f in finishes), max(f.absorptivity.high or 0.0 for f in finishes)]
+    likely = finishes[0]
+    if made_of.form == "strip":
+        width, thickness = made_of.width or 0.0, made_of.thickness or 0.0
+        across, facing = float(equal_perimeter_diameter(width, thickness)), (width**2 + thickness**2) ** 0.5
+    else:
+        across = facing = made_of.outer_diameter or 0.0
+    upright = UPRIGHT_SHARE if design.loop.plane == "vertical" else 1.0
+    return Surface(
+        across,
+        facing,
+        np.array([emissivity[1], likely.emissivity.likely or 0.0, emissivity[0]]),
+        np.array([absorptivity[0], likely.absorptivity.likely or 0.0, absorptivity[1]]),
+        np.array([1.0, (1.0 + upright) / 2.0, upright]),
+    )
+
+
+def _finishes(made_of: Conductor) -> list[warmth_tables.Finish]:
+    """Return the finishes that a conductor may have, the likely one first."""
+    table = warmth_tables.finishes()
+    light = (made_of.material or "").startswith("aluminium")
+    aged = table["oxidised aluminium" if light else "oxidised copper"]
+    if made_of.surface is None:
+        return [aged, table["bright"]]
+    if made_of.surface == "painted":
+        return [table["painted"]]
+    return [table["bright"] if made_of.surface == "bright" else aged]
+
+
+def _coefficient(made_of: Conductor) -> float:
+    return COPPER_COEFFICIENT if made_of.material is None else tables.materials()[made_of.material].coefficient
+
+
+def _wall(made_of: Conductor) -> float:
+    """Return how thick the metal is from the outside in [m]."""
+    if made_of.form == "tube":
+        return made_of.wall or 0.0
+    return made_of.thickness or 0.0 if made_of.form == "strip" else (made_of.outer_diameter or 0.0) / 2.0
+
+
+def _depth(made_of: Conductor, frequency: float) -> float:
+    return float(skin_depth(frequency, poorest_conductivity(made_of)))
+
+
+def _capacity(made_of: Conductor) -> float:
+    """Return the heat that warms a metre by one kelvin [J/(m K)]; 0 where nothing tells how much metal is in it."""
+    metal, section = warmth_tables.metals().get(made_of.material or "copper"), _section(made_of)
+    if metal is None or section is None:
+        return 0.0
+    return float(heat_capacity_per_metre(section, metal.density, metal.specific_heat))
+
+
+def _section(made_of: Conductor) -> float | None:
+    """Return the area of metal in the cross-section [m2]; None where the design does not tell it."""
+    across, wall = made_of.outer_diameter or 0.0, made_of.wall or 0.0
+    sections = {
+        "rod": pi * across**2 / 4.0,
+        "tube": pi * wall * (across - wall),
+        "strip": (made_of.width or 0.0) * (made_of.thickness or 0.0),
+    }
+    return sections.get(made_of.form)
+
+
+# Joints ----------------------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True)
+class JointWarmth:
+    """One joint of a group: its own heat key-down, the others at their low ends, and how it leads that away.
+
+    `heat` is in watts, `bare_heat` its high end without credit for what is typical of other parts, `poor_heat` that of
+    a joint ten times as bad; `resistance` is the rise for each watt over the conductor beside it [K/W], None where
+    nothing tells how much metal leads heat away.
+    """
+
+    joint: Joint
+    heat: Spread
+    bare_heat: float
+    poor_heat: float
+    resistance: float | None
+
+
+def joint_warmth(chain: Chain, design: Design, warm: Warmth) -> tuple[JointWarmth, ...]:
+    """Return how warm each kind of joint gets: of one joint at its high end, all others at their low ends."""
+    made_of = design.loop.conductor
+    section = _section(made_of)
+    sigma = poorest_conductivity(made_of)
+    air = warm.air_temperature
+    dull = warm.bare.surface
+    # Convection grows with the rise, so what a small one loses for each kelvin is the least.
+    lost = _hottest(lost_heat(air + _SMALL_RISE, dull, warm.air)) / _SMALL_RISE
+    made = []
+    for joint, part in zip(design.loop.joint, chain.joints, strict=True):
+        resistance = None
+        if section:
+            sides = 1 if joint.at == "capacitor" else 2
+            resistance = float(fin_resistance(lost, POORER * thermal_conductivity(sigma, air), section, sides))
+        error = 1.0 + 2.0 * VOLTAGE_ERROR
+        bare, poor = (
+            error
+            * max(
+                chain.heat_alone(worse, 1.0 / joint.count, each, chain.power.high or 0.0, "bare")
+                for each in chain.least
+            )
+            for worse in (part, replace(part, high=POOR_JOINT * part.high))
+        )
+        made.append(JointWarmth(joint, chain.heat_spread(part, 1.0 / joint.count), bare, poor, resistance))
+    return tuple(made)
