@@ -13,7 +13,7 @@ from magsafe.design.model import Capacitor, Design
 from magsafe.physics.air_gap import GAP, IONISATION_END, SWEPT, uniform_breakdown
 from magsafe.physics.arrays import Array
 from magsafe.physics.atmosphere import relative_air_density
-from magsafe.physics.deratings import RADIO_FREQUENCIES, RADIO_FREQUENCY
+from magsafe.physics.deratings import RADIO_FREQUENCIES, RADIO_FREQUENCY, SPACING, SQUARE_CUT
 from magsafe.physics.open_line import coaxial_field
 
 # Of the strength of a thin sheet at 50 Hz, for good at radio frequency: 1/10 to 1/5 is common practice.
@@ -59,8 +59,9 @@ def dielectric_stress(design: Design, frequency: float) -> Stress:
     spread = permittivity(part)
     limits = []
     if part.dielectric == "air":
-        share = flat / thickness * RADIO_FREQUENCY.factor
-        air = float(_air(np.array([thickness]), density, frequency)[0]) * share
+        # Of tubes: they may lie off their axis, and their ends are cut.
+        share = flat / thickness * RADIO_FREQUENCY.factor * SQUARE_CUT.factor
+        air = float(_air(np.array([thickness * SPACING.factor]), density, frequency)[0]) * share
         limits.append((air, f"{words.amount(thickness, 'm', 'mm')} of air"))
     else:
         row = warmth_tables.dielectrics()[part.dielectric or ""]

@@ -106,12 +106,14 @@ def needed_capacitance(design: Design) -> Needed:
     imaged = _followed(design, solved, omega, internal, image=True) if _has_image(design) else []
     likely = imaged[0][0] if design.ground_name == "perfect" and imaged else free[0][0]
     # The stated error is one of the inductance: near the anti-resonance the reactance moves by more.
-    steepness = np.gradient(np.log(free[0][0]), np.log(omega))
+    # A loop without an anti-resonance in reach may be capacitive at its port before the last frequency.
+    inductive = np.cumprod(free[0][0] > 0.0).astype(bool)
+    steepness = np.gradient(np.log(np.where(inductive, free[0][0], 1.0)), np.log(omega))
     error = _inductance_error(design) * np.maximum(1.0, steepness)
     ends = [end for bare, perfect in (*free, *imaged) for end in _with_any_gap(design, omega, bare, perfect)]
     over, under = np.max(ends, axis=0) * (1.0 + error), np.min(ends, axis=0) * (1.0 - error)
     gap = GAP_CAPACITANCE[0] + GAP_CAPACITANCE[1] * 2.0 * electrical_radius(design.loop.conductor)
-    fit = np.cumprod((omega * gap * over < LARGEST_SHARE) & (under > 0.0)).astype(bool)
+    fit = np.cumprod((omega * gap * over < LARGEST_SHARE) & (under > 0.0) & inductive).astype(bool)
     known = _has_image(design) or design.ground_name == "none"
     return Needed(
         frequency=omega[fit] / (2.0 * pi),

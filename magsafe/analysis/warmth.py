@@ -2,16 +2,17 @@
 
 from dataclasses import dataclass, replace
 from functools import lru_cache
-from math import inf, pi
+from math import ceil, inf, pi
 
 import numpy as np
 
 from magsafe.analysis.chain import VOLTAGE_ERROR, Chain
 from magsafe.analysis.exposure import Use
 from magsafe.analysis.flow import poorest_conductivity, turn_factors
-from magsafe.analysis.losses import COPPER_COEFFICIENT, Corner
+from magsafe.analysis.losses import COPPER_COEFFICIENT, Corner, Loss
 from magsafe.design import tables, warmth_tables
 from magsafe.design.model import Conductor, Design, Joint
+from magsafe.design.shape import outline
 from magsafe.physics.arrays import Array, Values
 from magsafe.physics.atmosphere import standard_pressure
 from magsafe.physics.conductor import skin_depth
@@ -87,6 +88,11 @@ class Warmth:
     def idle(self) -> float:
         """The temperature before the first over at the high end [K]: that of the air, or what the sun makes of it."""
         return float(self._steady_high(np.zeros(1))[0])
+
+    @property
+    def likely_idle(self) -> float:
+        """The same at the likely end [K]."""
+        return float(self._steady(np.zeros(3))[1])
 
     @property
     def bare(self) -> "Warmth":
@@ -211,7 +217,25 @@ def _heat(chain: Chain, design: Design) -> tuple[Spread, float]:
         for others in ("low", "bare")
     )
     error = 2.0 * VOLTAGE_ERROR
-    return Spread(low, likely, high).widened(error, error), bare * (1.0 + error)
+    return _with_joints(chain, design, Spread(low, likely, high).widened(error, error), bare * (1.0 + error))
+
+
+def _with_joints(chain: Chain, design: Design, heat: Spread, bare: float) -> tuple[Spread, float]:
+    """Return the heat of a metre [W/m] with that of the joints that are spread along the conductor."""
+    length = outline(design.loop).perimeter * design.loop.turns
+    for joint, part in zip(design.loop.joint, chain.joints, strict=True):
+        if joint.at == "spread":
+            own = chain.heat_spread(part)
+            ends = zip((heat.low, heat.likely, heat.high), (own.low, own.likely, own.high), strict=True)
+            heat = Spread(*(None if one is None or more is None else one + more / length for one, more in ends))
+            bare += _bare_heat(chain, part, 1.0) / length
+    return heat, bare
+
+
+def _bare_heat(chain: Chain, part: Loss, share: float) -> float:
+    """Return the heat in a share of a part at its high end, without credit for what is typical of others [W]."""
+    power = chain.power.high or 0.0
+    return (1.0 + 2.0 * VOLTAGE_ERROR) * max(chain.heat_alone(part, share, each, power, "bare") for each in chain.least)
 
 
 def _pattern(use: Use) -> tuple[float, float]:
@@ -305,17 +329,19 @@ def _section(made_of: Conductor) -> float | None:
 
 @dataclass(frozen=True, slots=True)
 class JointWarmth:
-    """One joint of a group: its own heat key-down, the others at their low ends, and how it leads that away.
+    """One joint of a group: its own heat key-down, the others at their low ends, and what enters its spot.
 
-    `heat` is in watts, `bare_heat` its high end without credit for what is typical of other parts, `poor_heat` that of
-    a joint ten times as bad; `resistance` is the rise for each watt over the conductor beside it [K/W], None where
-    nothing tells how much metal leads heat away.
+    `heat` is that of one [W]. `spot` is what all joints of the same spot lead into one length of conductor [W], those
+    of one side where the spot is the capacitor; `bare_spot` its high end without credit for what is typical of other
+    parts, `poor_spot` with joints of this group ten times as bad. `resistance` is the rise for each watt over the
+    conductor beside it [K/W], None where nothing tells how much metal leads heat away.
     """
 
     joint: Joint
     heat: Spread
-    bare_heat: float
-    poor_heat: float
+    spot: Spread
+    bare_spot: float
+    poor_spot: float
     resistance: float | None
 
 
@@ -328,20 +354,36 @@ def joint_warmth(chain: Chain, design: Design, warm: Warmth) -> tuple[JointWarmt
     dull = warm.bare.surface
     # Convection grows with the rise, so what a small one loses for each kelvin is the least.
     lost = _hottest(lost_heat(air + _SMALL_RISE, dull, warm.air)) / _SMALL_RISE
+    joints = list(zip(design.loop.joint, chain.joints, strict=True))
+    ones = {joint.name: chain.heat_spread(part, 1.0 / joint.count) for joint, part in joints}
+    bares = {joint.name: _bare_heat(chain, part, 1.0 / joint.count) for joint, part in joints}
     made = []
-    for joint, part in zip(design.loop.joint, chain.joints, strict=True):
+    for joint, part in joints:
         resistance = None
         if section:
             sides = 1 if joint.at == "capacitor" else 2
             resistance = float(fin_resistance(lost, POORER * thermal_conductivity(sigma, air), section, sides))
-        error = 1.0 + 2.0 * VOLTAGE_ERROR
-        bare, poor = (
-            error
-            * max(
-                chain.heat_alone(worse, 1.0 / joint.count, each, chain.power.high or 0.0, "bare")
-                for each in chain.least
-            )
-            for worse in (part, replace(part, high=POOR_JOINT * part.high))
-        )
-        made.append(JointWarmth(joint, chain.heat_spread(part, 1.0 / joint.count), bare, poor, resistance))
+        together = [other for other, _ in joints if other.at == joint.at]
+        spot = Spread(*(_summed(ones, together, joint, end) for end in ("low", "likely", "high")))
+        beside = [other for other in together if other is not joint]
+        bare = sum(_at_one_spot(other, joint) * bares[other.name] for other in together)
+        poor = _bare_heat(chain, replace(part, high=POOR_JOINT * part.high), 1.0 / joint.count)
+        worst = sum(_at_one_spot(other, joint) * bares[other.name] for other in beside)
+        worst += _at_one_spot(joint, joint) * poor
+        made.append(JointWarmth(joint, ones[joint.name], spot, bare, worst, resistance))
     return tuple(made)
+
+
+def _summed(ones: dict[str, Spread], together: list[Joint], joint: Joint, end: str) -> float | None:
+    found = [(_at_one_spot(other, joint), getattr(ones[other.name], end)) for other in together]
+    return None if any(heat is None for _, heat in found) else float(sum(count * heat for count, heat in found))
+
+
+def _at_one_spot(joint: Joint, whose: Joint) -> int:
+    """Return how many joints of a group share the spot of one: those of one side of the capacitor, all opposite it.
+
+    Joints that are spread are each by itself; what they warm together is counted with the conductor.
+    """
+    if joint.at == "spread":
+        return 1 if joint is whose else 0
+    return ceil(joint.count / 2) if joint.at == "capacitor" else joint.count

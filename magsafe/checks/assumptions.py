@@ -7,6 +7,7 @@ from magsafe.analysis.gap import has_air_gap
 from magsafe.analysis.line_capacitor import is_complete
 from magsafe.analysis.losses import UNKNOWN_FIXED, capacitor_typical
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.rated_current import is_rated_for_heat
 from magsafe.analysis.rated_voltage import RATED_TO
 from magsafe.design import tables, warmth_tables
 from magsafe.design.implied import AT_THE_CAPACITOR
@@ -23,6 +24,7 @@ def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, 
         *_people(design),
         *_methods(design, points),
         *_volts(design),
+        *_amps(design),
         *_kept(design),
     )
     return tuple(dict.fromkeys(found))
@@ -225,8 +227,8 @@ def _turns(design: Design) -> Iterator[str]:
     """Yield what is taken of whoever tunes, and of transmissions that follow one another."""
     if any(place.name == AT_THE_CAPACITOR for place in design.place):
         yield (
-            'tuning.by = "hand at the loop" puts somebody at the capacitor, and no place while tuning says where: half '
-            "a metre before it is taken, and a trained person."
+            'tuning.by = "hand at the loop" puts somebody at the capacitor, and no place while tuning lies within a '
+            "metre of it: a trained person is taken, half a metre before it, at its height."
         )
     together = {name for names in design.site.sessions for name in names}
     if together:
@@ -282,6 +284,12 @@ def _volts(design: Design) -> Iterator[str]:
             yield f"capacitor.{key}: without a gap of air it changes nothing; {why}."
     if part.rated_voltage is not None and design.site.altitude is None:
         yield f"site.altitude is not given: the capacitor's voltage rating holds as it stands, as to {RATED_TO:g} m."
+
+
+def _amps(design: Design) -> Iterator[str]:
+    """Yield in which air ratings of heat are taken to hold."""
+    if design.site.air_temperature is None and is_rated_for_heat(design):
+        yield "site.air_temperature is not given: current ratings hold as for air of 25 to 30 degC."
 
 
 def _kept(design: Design) -> Iterator[str]:

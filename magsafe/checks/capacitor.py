@@ -2,7 +2,6 @@
 
 from dataclasses import replace
 
-from magsafe import words
 from magsafe.analysis.capacitor_network import UNSTATED_TOLERANCE
 from magsafe.analysis.capacitor_parts import CHANGE, main_capacitance, main_part
 from magsafe.analysis.capacitor_reach import capacitance_reach
@@ -10,6 +9,7 @@ from magsafe.analysis.chain import tube_metal
 from magsafe.analysis.gap import has_air_gap
 from magsafe.analysis.line_capacitor import is_complete
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.rated_current import beyond_rated_air, rated_current
 from magsafe.analysis.rated_voltage import not_rated, rated_voltage
 from magsafe.checks.gap import by_gap_alone
 from magsafe.checks.judge import Check, judge, judge_between, stopped, unproven
@@ -80,14 +80,8 @@ def current(design: Design, point: OperatingPoint) -> Finding:
         return unproven(_CURRENT, "capacitor.rated_current is not given", value, _FIND)
     if missing := _not_reached(point) or use.missing:
         return unproven(_CURRENT, missing, value, CHANGE if use.missing else None)
-    limit, frequency = part.rated_current or 0.0, point.transmission.frequency
-    provenance, thin = "stated in the design", use.thin_current
-    if part.rated_current_at is not None and frequency > part.rated_current_at:
-        # Series resistance grows as the root of the frequency; the same heat then allows less current.
-        limit *= (part.rated_current_at / frequency) ** 0.25
-        provenance = "stated in the design, lowered above its frequency by common practice"
-        lowered = f"above {words.frequency(part.rated_current_at)} the rating is lowered by common practice"
-        thin = f"{lowered}; {thin}" if thin else lowered
+    limit, lowered = rated_current(part, point.transmission.frequency)
+    above = ", lowered above its frequency by common practice" if lowered else ""
     return judge(
         _CURRENT,
         value,
@@ -95,8 +89,8 @@ def current(design: Design, point: OperatingPoint) -> Finding:
         design.margins.current,
         bare_end=use.bare_current,
         power=point.power,
-        thin=thin,
-        provenance=provenance,
+        thin="; ".join(filter(None, (lowered, beyond_rated_air(design), use.thin_current))),
+        provenance=f"stated in the design{above}",
     )
 
 

@@ -1,13 +1,18 @@
 """Does the capacitor stand its own heat?"""
 
+from collections.abc import Sequence
+
 from magsafe import words
 from magsafe.analysis.capacitor_heat import heat_of
-from magsafe.analysis.capacitor_parts import CHANGE, main_part
+from magsafe.analysis.capacitor_parts import CHANGE, PartUse, main_part
 from magsafe.analysis.exposure import use_of
+from magsafe.analysis.losses import Loss
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.rated_current import beyond_rated_air, uncounted_heat
 from magsafe.checks.judge import Check, holds, judge, unproven
 from magsafe.checks.sheet import Finding
-from magsafe.design.model import Design
+from magsafe.design.model import Capacitor, Design, Padding
+from magsafe.spread import Spread
 
 _HEAT = Check(
     "capacitor.heat",
@@ -17,45 +22,95 @@ _HEAT = Check(
     "W",
 )
 _LOOK = (
-    "look on the part and in its data sheet for the RF amps or the watts that it may take, and state rated_current or "
-    "rated_dissipation; of one made at home, feel it cold after a long over at little power, transmitter off"
+    "look on the part and in its data sheet for the RF amps, their frequency, the kVA or the watts that it may take, "
+    "and state rated_current with rated_current_at, rated_reactive_power or rated_dissipation; of one made at home, "
+    "feel it cold after a long over at little power, transmitter off"
 )
 
 
-def capacitor_heat(design: Design, point: OperatingPoint, current: Finding) -> Finding:
-    """Does the capacitor stand its own heat? A rating of its current, where `current` keeps it, counts that."""
-    part, made = design.capacitor, point.chain
-    if made is None:
+def capacitor_heat(design: Design, point: OperatingPoint, current: Finding, reactive: Sequence[Finding]) -> Finding:
+    """Does the capacitor stand its own heat? `current` and `reactive` judge the ratings that may count that."""
+    if point.chain is None:
         return unproven(_HEAT, "; ".join(point.out_of_range))
-    if missing := main_part(point).missing:
-        return unproven(_HEAT, missing, do=CHANGE)
+    losses = (point.chain.capacitor,)
+    return heat_of_part(_HEAT, design, point, (design.capacitor, main_part(point), losses), (current, *reactive))
+
+
+def heat_of_part(
+    check: Check,
+    design: Design,
+    point: OperatingPoint,
+    of: tuple[Capacitor | Padding, PartUse, tuple[Loss, ...]],
+    others: Sequence[Finding],
+) -> Finding:
+    """Hold the heat in one part against its watts, or tell which of its other ratings counts it.
+
+    Such a rating is judged by a finding of its own, with its own power, so that this one does not depend on the power.
+
+    Parameters
+    ----------
+    check : what is asked
+    design, point : the design, and the transmission, which is computed
+    of : the part, what it sees, and its losses
+    others : the finding about its current, and that about its reactive power if there is one
+    """
+    (part, use, losses), made = of, point.chain
+    if made is None or use.missing:
+        return unproven(check, use.missing or "; ".join(point.out_of_range), do=CHANGE if use.missing else None)
     duty = use_of(point.transmission).duty
-    keyed = heat_of(made, (made.capacitor,))
+    keyed = heat_of(made, losses)
     value = keyed.scaled(duty)
     told = f"{words.amount(keyed.high or 0.0, 'W')} at worst, key-down"
     if duty < 1.0:
         told = f"{told}, {words.amount(value.high or 0.0, 'W')} averaged over an over"
     if part.rated_dissipation is not None:
-        limit, margin = part.rated_dissipation, design.margins.temperature
-        bare = (heat_of(made, (made.capacitor,), "bare").high or 0.0) * duty
-        reached = point.power * limit / bare * (1.0 - 1e-12) if bare > 0.0 else None
-        found = judge(
-            _HEAT,
-            value,
-            limit,
-            margin,
-            bare_end=bare,
-            power=point.power,
-            powers=(None if reached is None else reached / margin, reached),
-            provenance="stated in the design",
-        )
+        bare = (heat_of(made, losses, "bare").high or 0.0) * duty
+        thin = dict.fromkeys(filter(None, (_guessed(part), use.thin_voltage, use.thin_current)))
+        found = _by_watts(check, design, point, (value, bare), part.rated_dissipation, tuple(thin))
         said = f"{told}; {found.because}" if duty < 1.0 else found.because
         return found.model_copy(update={"because": said})
-    if part.rated_current is None:
-        why = f"{told}, and neither capacitor.rated_dissipation nor capacitor.rated_current says what it may take"
-        return unproven(_HEAT, why, value, _LOOK)
-    if current.verdict in ("clear", "narrow"):
-        why = f"{told}; the rating of its current is one of its heat: {current.id} is kept"
-        return holds(_HEAT, value, None, why)
-    why = f"{told}; the rating of its current is one of its heat, and {current.id} is not kept"
-    return unproven(_HEAT, why, value, current.do)
+    return _by_others(check, value, told, uncounted_heat(part, made.frequency), others)
+
+
+def _by_watts(
+    check: Check,
+    design: Design,
+    point: OperatingPoint,
+    heat: tuple[Spread, float],
+    limit: float,
+    thin: tuple[str, ...],
+) -> Finding:
+    (value, bare), margin = heat, design.margins.temperature
+    reached = point.power * limit / bare * (1.0 - 1e-12) if bare > 0.0 else None
+    return judge(
+        check,
+        value,
+        limit,
+        margin,
+        bare_end=bare,
+        power=point.power,
+        powers=(None if reached is None else reached / margin, reached),
+        thin="; ".join(filter(None, (*thin, beyond_rated_air(design)))),
+        provenance="stated in the design",
+    )
+
+
+def _guessed(part: Capacitor | Padding) -> str:
+    """Return whether nothing that is stated bounds what a part loses, in words; empty where something does."""
+    resistance = part.series_resistance if isinstance(part, Capacitor) else None
+    if part.quality_factor is not None or resistance is not None:
+        return ""
+    return "what it loses at worst is not stated, and taken as is usual (common practice)"
+
+
+def _by_others(check: Check, value: Spread, told: str, uncounted: str, others: Sequence[Finding]) -> Finding:
+    """Return what becomes of heat that no rating of watts is stated for."""
+    current, *reactive = others
+    counting = [*(() if uncounted else (current,)), *reactive]
+    judged = [each for each in counting if each.verdict != "unproven"]
+    if judged:
+        by = " and ".join(each.id for each in judged)
+        rating = "current" if judged[0] is current else "reactive power"
+        return holds(check, value, None, f"{told}; its rating of {rating} counts its heat: see {by}, which judges it")
+    why = uncounted or f"{current.id}, which would count it, is unproven"
+    return unproven(check, f"{told}, and nothing says what it may take: no rated_dissipation; {why}", value, _LOOK)

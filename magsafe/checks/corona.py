@@ -43,6 +43,10 @@ def corona(design: Design, point: OperatingPoint) -> Finding:
         margin,
         bare_end=bare,
         power=point.power,
+        powers=(
+            point.power * (limit / (bare * margin**2)) ** 2 * (1.0 - 1e-9),
+            point.power * (limit / bare) ** 2 * (1.0 - 1e-9),
+        ),
         thin=f"the onset is lowered by what nobody measured on it ({rows})" if near else "",
         provenance="common practice",
     )

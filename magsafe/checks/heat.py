@@ -9,7 +9,7 @@ from scipy.constants import zero_Celsius
 from magsafe import words
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.warmth import RUNS_AWAY, JointWarmth, Warmth, joint_warmth
-from magsafe.checks.judge import Check, judge, unproven
+from magsafe.checks.judge import Check, judge, stopped, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design import warmth_tables
 from magsafe.design.model import Conductor, Design, Joint
@@ -62,11 +62,15 @@ def _temperature(design: Design, point: OperatingPoint, warm: Warmth) -> Finding
     found, bare = warm.temperature(), float(warm.bare.high_at(np.ones(1))[0])
     allowed = least.temperature - air
     hottest = found.high or 0.0
-    if allowed <= 0.0:
-        return unproven(_TEMPERATURE, f"the air alone is as warm as {least.name} may be, {_celsius(least)}")
-    margin = design.margins.temperature
-    reached = [warm.bare.power_to(air + allowed / ratio) for ratio in (margin, 1.0)]
     low, likely = (None if end is None else end - air for end in (found.low, found.likely))
+    if allowed <= 0.0:
+        said = f"the air alone is as warm as {least.name} may be, {_celsius(least)}"
+        return stopped(_TEMPERATURE, Spread(low, likely, None), said, "wait for cooler air")
+    margin, softest = design.margins.temperature, _softest_unknown(design)
+    kept = air + allowed / margin
+    # Above the softest plastic that may hold it nothing is clear, so no power there is.
+    kept = kept if softest is None else min(kept, softest.temperature)
+    reached = [warm.bare.power_to(kept), warm.bare.power_to(air + allowed)]
     finding = judge(
         _TEMPERATURE,
         Spread(low, likely, hottest - air),
@@ -75,11 +79,20 @@ def _temperature(design: Design, point: OperatingPoint, warm: Warmth) -> Finding
         bare_end=bare - air,
         power=point.power,
         powers=(point.power * reached[0] * _LASTING, point.power * reached[1] * _LASTING),
-        thin=_unsupported(design, hottest),
+        thin="" if softest is None or bare <= softest.temperature else _unsupported(softest),
         provenance=least.provenance,
     )
-    said = f"{_degrees(hottest)} at worst in air of {_degrees(air)}; the limit is {_celsius(least)} ({least.name})"
+    limit = f"the limit is {_celsius(least)} ({least.name}, {least.provenance})"
+    if hottest == RUNS_AWAY:
+        return _runs_away(finding, f"nothing keeps it at a temperature, in air of {_degrees(air)}; {limit}")
+    said = f"{_degrees(hottest)} at worst in air of {_degrees(air)}; {limit}"
     return finding.model_copy(update={"because": f"{said}: {finding.because}"})
+
+
+def _runs_away(finding: Finding, because: str) -> Finding:
+    """Return a stop without the figure of what has none."""
+    known = None if finding.value is None else finding.value.model_copy(update={"likely": None, "high": None})
+    return finding.model_copy(update={"because": because, "value": known, "margin_found": None})
 
 
 def _limits(design: Design) -> Iterator[Softening]:
@@ -96,11 +109,14 @@ def _metal(made_of: Conductor) -> str:
     return "aluminium" if light else "stainless steel" if hard else "copper and its alloys"
 
 
-def _unsupported(design: Design, hottest: float) -> str:
-    """Return why it is not known that what holds the loop stands this temperature [K]; empty where it is."""
-    softest = min(warmth_tables.plastics().values(), key=lambda each: each.temperature)
-    if design.loop.supports is not None or hottest <= softest.temperature:
-        return ""
+def _softest_unknown(design: Design) -> Softening | None:
+    """Return the softest plastic, which may hold the loop; None where the design says what holds it."""
+    if design.loop.supports is not None:
+        return None
+    return min(warmth_tables.plastics().values(), key=lambda each: each.temperature)
+
+
+def _unsupported(softest: Softening) -> str:
     return (
         f"what holds the conductor is not stated in loop.supports, and {softest.name} gives way at {_celsius(softest)}"
     )
@@ -139,35 +155,44 @@ def _joint(point: OperatingPoint, warm: Warmth, found: JointWarmth, margin: floa
     allowed = row.temperature - air
     conductor = warm.temperature()
     if allowed <= 0.0:
-        return unproven(check, f"the air alone is as warm as a joint may be, {_celsius(row)} ({row.name})")
+        said = f"the air alone is as warm as a joint may be, {_celsius(row)} ({row.name})"
+        return stopped(check, Spread(None, None, None), said, "wait for cooler air")
     rise = found.resistance * warm.duty
     low, likely, high = (
-        None if beside is None or own is None else beside - air + rise * own
-        for beside, own in zip(
+        None if along is None or own is None else along - air + rise * own
+        for along, own in zip(
             (conductor.low, conductor.likely, conductor.high),
-            (found.heat.low, found.heat.likely, found.heat.high),
+            (found.spot.low, found.spot.likely, found.spot.high),
             strict=True,
         )
     )
-    beside = rise * found.bare_heat
-    bare = float(warm.bare.high_at(np.ones(1))[0]) - air + beside
-    reached = [warm.bare.power_to(air + allowed / ratio, beside) for ratio in (margin, 1.0)]
-    # Nobody measured it: clear only if a joint ten times as bad would keep the margin too.
-    poor = (bare + rise * (found.poor_heat - found.bare_heat)) * margin > allowed
-    typical = joint.kind if joint.resistance is None and poor else ""
+    beside, poor = rise * found.bare_spot, rise * found.poor_spot
+    alone = float(warm.bare.high_at(np.ones(1))[0]) - air
+    # Where nobody measured it, only what a joint ten times as bad would bear is clear, and no power above that.
+    typical = joint.kind if joint.resistance is None else ""
+    reached = [
+        warm.bare.power_to(air + allowed / margin, poor if typical else beside),
+        warm.bare.power_to(air + allowed, beside),
+    ]
     finding = judge(
         check,
         Spread(low, likely, high),
         allowed,
         margin,
-        bare_end=bare,
+        bare_end=alone + beside,
         power=point.power,
         powers=(point.power * reached[0] * _LASTING, point.power * reached[1] * _LASTING),
-        thin=f"the resistance of a {typical} is what is typical of its kind" if typical else "",
+        thin=f"one ten times as bad as is typical of a {typical} would exceed, and nobody measured it"
+        if typical and (alone + poor) * margin > allowed
+        else "",
         provenance=row.provenance,
     )
-    hottest = _degrees(air + (high or 0.0))
-    said = f"up to {watts} in one joint, {hottest} at worst; the limit is {_celsius(row)} ({row.name})"
+    spot = words.amount((found.spot.high or 0.0) * warm.duty, "W")
+    together = "" if spot == watts else f", {spot} where they meet"
+    limit = f"the limit is {_celsius(row)} ({row.name}, {row.provenance})"
+    if conductor.high == RUNS_AWAY:
+        return _runs_away(finding, f"up to {watts} in one joint, and the conductor beside it runs away; {limit}")
+    said = f"up to {watts} in one joint{together}, {_degrees(air + (high or 0.0))} at worst; {limit}"
     return finding.model_copy(update={"because": f"{said}: {finding.because}"})
 
 
@@ -189,12 +214,13 @@ def _drift(design: Design, point: OperatingPoint, warm: Warmth) -> Finding:
     if width.low is None or metal is None or hottest == RUNS_AWAY:
         return unproven(_DRIFT, "the bandwidth or the conductor's warmth is not known")
     frequency = point.transmission.frequency
-    idle = warm.air_temperature, warm.idle
-    least, _ = frequency_drift(frequency, metal.expansion, max(0.0, likely - idle[0]))
-    _, most = frequency_drift(frequency, metal.expansion, max(0.0, hottest - idle[1]))
-    found = Spread(None, abs(float(least)), abs(float(most)))
+    least, _ = frequency_drift(frequency, metal.expansion, max(0.0, likely - warm.likely_idle))
+    _, worst = frequency_drift(frequency, metal.expansion, max(0.0, hottest - warm.idle))
+    # What the sun has heated already loses more, so that the hotter end may rise by less.
+    most = max(abs(float(least)), abs(float(worst)))
+    found = Spread(None, abs(float(least)), most)
     finding = judge(_DRIFT, found, width.low / 2.0, 1.0, worst="narrow", provenance="computed")
     after = "an over without end" if warm.over == inf else f"{words.duration(warm.over)} of transmitting"
-    moved, between = words.amount(abs(float(most)), "Hz"), words.amount(width.low, "Hz")
+    moved, between = words.amount(most, "Hz"), words.amount(width.low, "Hz")
     said = f"after {after} it has moved down by up to {moved}, of {between} between the points of SWR 2"
     return finding.model_copy(update={"because": f"{said}: {finding.because.partition(': ')[2]}"})

@@ -1,4 +1,4 @@
-"""Does each padding part stand its own volts and amps?"""
+"""Does each padding part stand its own volts, amps and heat? Its kind is unknown, so it may be solid."""
 
 from collections.abc import Iterator
 from math import sqrt
@@ -7,8 +7,11 @@ from magsafe import words
 from magsafe.analysis.capacitor_network import network
 from magsafe.analysis.capacitor_parts import CHANGE, PaddingUse, padding_parts
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.rated_current import beyond_rated_air, rated_current
 from magsafe.analysis.rated_voltage import RATED_TO
+from magsafe.checks.capacitor_heat import heat_of_part
 from magsafe.checks.judge import Check, judge, unproven
+from magsafe.checks.reactive_power import against_reactive_power
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Design, Padding
 from magsafe.physics.atmosphere import standard_pressure
@@ -22,17 +25,27 @@ _LOOK_AMPS = "look in the part's data sheet for its amps at this frequency, and 
 
 
 def padding(design: Design, point: OperatingPoint) -> Iterator[Finding]:
-    """Yield what becomes of the volts and amps of each part that is joined in a transmission."""
+    """Yield what becomes of the volts, amps and heat of each part that is joined in a transmission."""
     names = padding_names(design)
     if point.chain is None:
         for part in network(design, point.transmission.frequency).padding:
-            for check in (_volts(names[id(part)], part), _amps(names[id(part)], part)):
+            name = names[id(part)]
+            rated = part.rated_reactive_power is not None
+            reactive = (_reactive(name, part),) if rated else ()
+            for check in (_volts(name, part), _amps(name, part), *reactive, _warmth(name, part)):
                 yield unproven(check, "; ".join(point.out_of_range))
         return
-    for found in padding_parts(point):
-        name = names[id(found.part)]
-        yield _voltage(design, point, found, _volts(name, found.part))
-        yield _current(design, point, found, _amps(name, found.part))
+    for found, loss in zip(padding_parts(point), point.chain.padding, strict=True):
+        part, use, name = found.part, found.use, names[id(found.part)]
+        current = _current(design, point, found, _amps(name, part))
+        powers = []
+        if part.rated_reactive_power is not None:
+            check = _reactive(name, part)
+            powers = [against_reactive_power(check, design, point, use, part.rated_reactive_power)]
+        yield _voltage(design, point, found, _volts(name, part))
+        yield current
+        yield from powers
+        yield heat_of_part(_warmth(name, part), design, point, (part, use, (loss,)), (current, *powers))
 
 
 def padding_names(design: Design) -> dict[int, str]:
@@ -71,6 +84,27 @@ def _amps(name: str, part: Padding) -> Check:
         _AS_STATED,
         "A",
         qualifier="RMS",
+    )
+
+
+def _reactive(name: str, part: Padding) -> Check:
+    return Check(
+        f"capacitor.padding.{name}.reactive_power",
+        f"Does the padding of {_called(part)} stand its own reactive power, RMS volts times RMS amps?",
+        "fit a part with a higher reactive-power rating, or several in parallel",
+        _AS_STATED,
+        "W",
+        shown="kVA",
+    )
+
+
+def _warmth(name: str, part: Padding) -> Check:
+    return Check(
+        f"capacitor.padding.{name}.heat",
+        f"Does the padding of {_called(part)} stand its own heat?",
+        "fit a part with a higher Q or one that may be hotter, or several in parallel",
+        "the padding's dissipation rating as stated; the losses as listed",
+        "W",
     )
 
 
@@ -116,14 +150,16 @@ def _current(design: Design, point: OperatingPoint, found: PaddingUse, check: Ch
     if part.rated_current is None or use.missing:
         missing = use.missing or "rated_current of the padding is not given"
         return unproven(check, f"{missing}{warm}", use.current, CHANGE if use.missing else _LOOK_AMPS)
+    limit, lowered = rated_current(part, point.transmission.frequency)
+    above = ", lowered above its frequency by common practice" if lowered else ""
     made = judge(
         check,
         use.current,
-        part.rated_current,
+        limit,
         design.margins.current,
         bare_end=use.bare_current,
         power=point.power,
-        thin=use.thin_current,
-        provenance="stated in the design",
+        thin="; ".join(filter(None, (lowered, beyond_rated_air(design), use.thin_current))),
+        provenance=f"stated in the design{above}",
     )
     return made.model_copy(update={"because": f"{made.because}{warm}"})

@@ -2,9 +2,9 @@
 
 from math import sqrt
 
-from magsafe import words
-from magsafe.analysis.capacitor_parts import main_part
+from magsafe.analysis.capacitor_parts import PartUse, main_part
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.rated_current import beyond_rated_air, uncounted_heat
 from magsafe.checks.judge import Check, judge, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Capacitor, Design
@@ -24,9 +24,44 @@ _REACTIVE = Check(
 def reactive_power(design: Design, point: OperatingPoint) -> tuple[Finding, ...]:
     """Does the capacitor stand its reactive power? Nothing where other ratings decide."""
     part, use = design.capacitor, main_part(point)
-    # What the envelope overshoots at key-down is too short to heat.
-    over = sqrt(2.0) * design.margins.overshoot_ratio
-    value = Spread(
+    if part.rated_reactive_power is not None:
+        return (against_reactive_power(_REACTIVE, design, point, use, part.rated_reactive_power),)
+    missing = _no_rating(part, point.transmission.frequency)
+    return (unproven(_REACTIVE, missing, _value(design, use), look_for(part.kind)),) if missing else ()
+
+
+def against_reactive_power(check: Check, design: Design, point: OperatingPoint, use: PartUse, limit: float) -> Finding:
+    """Hold the reactive power of one part against its rating [VA]; it grows as the power itself."""
+    value = _value(design, use)
+    missing = "; ".join(point.out_of_range) or use.missing
+    if missing or value.high is None or use.bare_voltage is None or use.bare_current is None:
+        return unproven(check, missing or "the high end of the figure is not known", value)
+    bare = use.bare_voltage / _over(design) * use.bare_current
+    margin = design.margins.current
+    # Rounded down by more than the last bit, so that the margin is kept there.
+    reached = point.power * limit / max(bare, value.high) * (1.0 - 1e-12)
+    thin = dict.fromkeys(filter(None, (beyond_rated_air(design), use.thin_voltage, use.thin_current)))
+    return judge(
+        check,
+        value,
+        limit,
+        margin,
+        bare_end=bare,
+        power=point.power,
+        powers=(reached / margin, reached),
+        thin="; ".join(thin),
+        provenance="stated in the design",
+    )
+
+
+def _over(design: Design) -> float:
+    """Return the crest over the RMS volts that heat: what the envelope overshoots at key-down is too short for that."""
+    return sqrt(2.0) * design.margins.overshoot_ratio
+
+
+def _value(design: Design, use: PartUse) -> Spread:
+    over = _over(design)
+    return Spread(
         *(
             None if volts is None or amps is None else volts / over * amps
             for volts, amps in (
@@ -36,28 +71,6 @@ def reactive_power(design: Design, point: OperatingPoint) -> tuple[Finding, ...]
             )
         )
     )
-    if part.rated_reactive_power is None:
-        missing = _no_rating(part, point.transmission.frequency)
-        return (unproven(_REACTIVE, missing, value, look_for(part.kind)),) if missing else ()
-    missing = "; ".join(point.out_of_range) or use.missing
-    if missing or value.high is None or use.bare_voltage is None or use.bare_current is None:
-        return (unproven(_REACTIVE, missing or "the high end of the figure is not known", value),)
-    limit, margin = part.rated_reactive_power, design.margins.current
-    bare = use.bare_voltage / over * use.bare_current
-    # It grows as the power itself. Rounded down by more than the last bit, so that the margin is kept there.
-    reached = point.power * limit / max(bare, value.high) * (1.0 - 1e-12)
-    found = judge(
-        _REACTIVE,
-        value,
-        limit,
-        margin,
-        bare_end=bare,
-        power=point.power,
-        powers=(reached / margin, reached),
-        thin="; ".join(dict.fromkeys(filter(None, (use.thin_voltage, use.thin_current)))),
-        provenance="stated in the design",
-    )
-    return (found,)
 
 
 def _no_rating(part: Capacitor, frequency: float) -> str:
@@ -66,21 +79,9 @@ def _no_rating(part: Capacitor, frequency: float) -> str:
     Between the frequencies at which volts and at which amps are the limit, a solid dielectric's heat is. A current that
     is stated for this frequency or a lower one counts it: there the same heat allows no more.
     """
-    if part.kind not in ("ceramic", "mica"):
-        return ""
-    at = part.rated_current_at
-    if part.rated_current is not None and at is not None:
-        if frequency >= at:
-            return ""
-        return (
-            "capacitor.rated_reactive_power is not given, and capacitor.rated_current is that at "
-            f"{words.frequency(at)}: below, the same heat allows less"
-        )
-    if part.kind == "mica":
+    if part.kind not in ("ceramic", "mica") or (part.kind == "mica" and part.rated_current_at is None):
         return ""
     if part.rated_current is None:
         return "neither capacitor.rated_reactive_power nor capacitor.rated_current is given"
-    return (
-        "capacitor.rated_reactive_power is not given, nor at which frequency capacitor.rated_current holds: below it "
-        "the same heat allows less"
-    )
+    uncounted = uncounted_heat(part, frequency)
+    return f"capacitor.rated_reactive_power is not given, and {uncounted}" if uncounted else ""

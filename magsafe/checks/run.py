@@ -111,14 +111,14 @@ def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Fin
 
 def _tuned(design: Design, point: OperatingPoint) -> tuple[Finding, ...]:
     """Return the findings about the capacitor."""
-    current = capacitor.current(design, point)
+    current, reactive = capacitor.current(design, point), reactive_power(design, point)
     return (
         capacitor.voltage(design, point),
         *gap(design, point),
-        *reactive_power(design, point),
+        *reactive,
         *sizes(design, point),
         current,
-        capacitor_heat(design, point, current),
+        capacitor_heat(design, point, current, reactive),
         *padding(design, point),
         capacitor.tuning_range(design, point),
         *tuning_step(design, point),

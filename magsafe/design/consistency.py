@@ -295,12 +295,11 @@ def _capacitor_ratings(tree: Tree) -> Iterator[Complaint]:
 
 def _padding_ratings(tree: Tree) -> Iterator[Complaint]:
     for index, part in blocks_at(block_at(tree, "capacitor"), "with"):
-        if "rated_voltage_kind" in part and "rated_voltage" not in part:
-            path = ("capacitor", "with", index)
-            expected = "rated_voltage beside it"
-            yield not_here(
-                path, part, "rated_voltage_kind", expected, "add rated_voltage, or remove rated_voltage_kind"
-            )
+        for key in ("rated_voltage_kind", "rated_current_at"):
+            companion = _COMPANIONS[key]
+            if key in part and companion not in part:
+                advice = f"add {companion}, or remove {key}"
+                yield not_here(("capacitor", "with", index), part, key, f"{companion} beside it", advice)
 
 
 def _sleeve(tree: Tree) -> Iterator[Complaint]:
@@ -340,6 +339,13 @@ def _capacitor_kind(tree: Tree) -> Iterator[Complaint]:
                 f"an air kind ({', '.join(_AIR_KINDS)})",
                 "remove it, or name the kind",
             )
+    if kind == "dielectric plate" and word_of(capacitor, "dielectric") == "air":
+        yield (
+            (*path, "dielectric"),
+            show(capacitor["dielectric"]),
+            "a solid dielectric between the plates: of plates in air their edges and their thickness decide",
+            'write kind = "air variable" with gap, plate_thickness and plate_edge; remove dielectric and plate_area',
+        )
 
 
 # Use -------------------------------------------------------------------------------------------------------

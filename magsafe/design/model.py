@@ -94,6 +94,8 @@ Frequency = Annotated[float, Quantity(FREQUENCY, 100e3, 300e6)]
 Power = Annotated[float, Quantity(POWER, 1e-3, 10e3)]
 Voltage = Annotated[float, Quantity(VOLTAGE, 1.0, 1e6)]
 Current = Annotated[float, Quantity(CURRENT, 1e-3, 10e3)]
+ReactivePower = Annotated[float, Quantity(REACTIVE_POWER, 1.0, 1e8)]
+Dissipation = Annotated[float, Quantity(POWER, 1e-3, 10e3)]
 Capacitance = Annotated[float, Quantity(CAPACITANCE, 0.1e-12, 1e-6)]
 Stray = Annotated[float, Quantity(CAPACITANCE, 0.0, 1e-9)]
 Temperature = Annotated[float, Quantity(TEMPERATURE, 273.15 - 60.0, 273.15 + 90.0)]
@@ -218,6 +220,9 @@ class Padding(Block):
     rated_voltage: Voltage | None = None
     rated_voltage_kind: Literal["peak RF", "RMS RF", "DC working", "DC test"] | None = None
     rated_current: Current | None = None
+    rated_current_at: Frequency | None = None
+    rated_reactive_power: ReactivePower | None = None
+    rated_dissipation: Dissipation | None = None
     quality_factor: QualityFactor | None = None
     on: Annotated[list[Frequency], Field(min_length=1)] | None = None
 
@@ -234,8 +239,8 @@ class Capacitor(Block):
     rated_voltage_kind: Literal["peak RF", "RMS RF", "DC working", "DC test"] | None = None
     rated_current: Current | None = None
     rated_current_at: Frequency | None = None
-    rated_reactive_power: Annotated[float, Quantity(REACTIVE_POWER, 1.0, 1e8)] | None = None
-    rated_dissipation: Annotated[float, Quantity(POWER, 1e-3, 10e3)] | None = None
+    rated_reactive_power: ReactivePower | None = None
+    rated_dissipation: Dissipation | None = None
     quality_factor: QualityFactor | None = None
     quality_factor_at: Frequency | None = None
     series_resistance: Resistance | None = None

@@ -391,7 +391,7 @@ def test_its_findings_are_those_of_the_check(path: Path) -> None:
     )
 
 
-@pytest.mark.parametrize("name", ["quay_rail", "breakwater_mast"])
+@pytest.mark.parametrize("name", ["slipway_portable", "breakwater_mast"])
 def test_the_ceiling_is_that_of_the_check_where_the_capacitor_holds_it(name: str) -> None:
     whole, own = magsafe.check(sample(name)).power_ceiling, sizing(sample(name)).power_ceiling
     assert whole.held_by is not None

@@ -1,6 +1,7 @@
 """What a sheet says of padding, of capacitors made at home, and of the capacitor's heat."""
 
 from datetime import date
+from math import pi
 from typing import Any
 
 import pytest
@@ -19,6 +20,7 @@ PART = {
     "rated_voltage": "15 kV",
     "rated_voltage_kind": "peak RF",
     "rated_current": "40 A",
+    "rated_current_at": "7.1 MHz",
     "quality_factor": {"low": 2000, "likely": 3000, "high": 5000},
 }
 TROMBONE = {
@@ -30,6 +32,7 @@ TROMBONE = {
 }
 PLATE = {"kind": "dielectric plate", "dielectric": "PTFE", "plate_area": "220 cm2", "gap": "2 mm"}
 VOLTS, AMPS = "capacitor.padding.100-pf.voltage", "capacitor.padding.100-pf.current"
+WARM, REACTIVE = "capacitor.padding.100-pf.heat", "capacitor.padding.100-pf.reactive_power"
 
 
 def sheet_of(**changes: Any) -> Sheet:
@@ -71,7 +74,7 @@ def problems(**changes: Any) -> tuple[Problem, ...]:
 
 def test_padding_that_states_all_may_be_clear() -> None:
     sheet = padded()
-    for name in (VOLTS, AMPS, "capacitor.voltage", "capacitor.current", "capacitor.range"):
+    for name in (VOLTS, AMPS, WARM, "capacitor.voltage", "capacitor.current", "capacitor.range"):
         assert finding(sheet, name).verdict == "clear", name
     assert "into heat" in finding(sheet, AMPS).because
     assert "tolerance" in finding(sheet, "capacitor.range").because
@@ -83,7 +86,7 @@ def test_padding_that_states_all_may_be_clear() -> None:
         ({"rated_voltage": None, "rated_voltage_kind": None}, VOLTS, "rated_voltage"),
         ({"rated_voltage_kind": None}, VOLTS, "rated_voltage_kind"),
         ({"rated_voltage_kind": "DC working"}, VOLTS, "DC working"),
-        ({"rated_current": None}, AMPS, "rated_current"),
+        ({"rated_current": None, "rated_current_at": None}, AMPS, "rated_current"),
     ],
 )
 def test_what_a_rating_does_not_say_is_unproven_with_what_to_look_for(
@@ -158,7 +161,7 @@ def test_padding_that_leaves_nothing_stops_the_range(capacitance: str) -> None:
     sheet = padded(capacitance=capacitance, connection=connection)
     assert finding(sheet, "capacitor.range").verdict == "stop"
     name = f"capacitor.padding.{capacitance.replace(' ', '-').lower()}"
-    for each in ("capacitor.current", "capacitor.heat", f"{name}.voltage", f"{name}.current"):
+    for each in ("capacitor.current", "capacitor.heat", f"{name}.voltage", f"{name}.current", f"{name}.heat"):
         assert finding(sheet, each).verdict == "unproven", each
         assert "padding" in finding(sheet, each).do
 
@@ -174,8 +177,9 @@ def test_parts_of_one_size_are_numbered() -> None:
 
 
 def test_padding_of_a_loop_that_is_not_computed_is_unproven_by_name() -> None:
-    sheet = sheet_of(capacitor__with=[PART], loop__conductor__outer_diameter="100 mm")
-    for name in (VOLTS, AMPS, "capacitor.heat"):
+    part = {**PART, "rated_reactive_power": "200 kVA"}
+    sheet = sheet_of(capacitor__with=[part], loop__conductor__outer_diameter="100 mm")
+    for name in (VOLTS, AMPS, REACTIVE, WARM, "capacitor.heat"):
         assert finding(sheet, name).verdict == "unproven"
         assert "proved to 0.06" in finding(sheet, name).because
 
@@ -186,6 +190,63 @@ def test_how_padding_is_joined_is_said() -> None:
     assert "200 to 10000" in said
     assert "200 to 10000" not in " ".join(padded().assumptions)
     assert "Padding" not in " ".join(sheet_of().assumptions)
+
+
+@pytest.mark.parametrize(
+    ("keys", "word"),
+    [
+        ({"rated_current_at": None}, "at which frequency"),
+        ({"rated_current_at": "14 MHz"}, "that at 14"),
+        ({"rated_current": None, "rated_current_at": None}, "rated_current of the padding is not given"),
+    ],
+)
+def test_padding_may_be_solid_so_amps_of_a_higher_frequency_do_not_count_its_heat(
+    keys: dict[str, Any], word: str
+) -> None:
+    found = finding(padded(quality_factor={"low": 500, "likely": 500, "high": 500}, **keys), WARM)
+    assert found.verdict == "unproven"
+    assert word in found.because
+    assert "W at worst, key-down" in found.because
+    assert high(found) > 20.0
+    assert "rated_reactive_power" in found.do
+
+
+def test_amps_of_padding_above_their_frequency_are_lowered_as_those_of_the_main_part() -> None:
+    """As the fourth root of the frequency (common practice)."""
+    found = finding(padded(rated_current_at="1.8 MHz"), AMPS)
+    assert found.limit is not None
+    assert found.limit.value == pytest.approx(40.0 * (1.8 / 7.1) ** 0.25)
+    assert (found.verdict, finding(padded(), AMPS).verdict) == ("narrow", "clear")
+    assert "common practice" in found.because
+    assert "common practice" in found.provenance
+
+
+def test_reactive_power_of_padding_is_its_own_and_grows_as_the_power() -> None:
+    """RMS volts times RMS amps; 100 pF have I = V omega C."""
+    keys = {"rated_current_at": None, "rated_reactive_power": "200 kVA"}
+    sheet = padded(**keys)
+    found, volts, amps = (finding(sheet, name) for name in (REACTIVE, VOLTS, AMPS))
+    assert high(found) == pytest.approx(high(volts) / 2**0.5 * high(amps), rel=1e-9)
+    assert 0.85 < high(found) / ((high(volts) / 2**0.5) ** 2 * 2e6 * pi * 7.1 * 100e-12) < 1.1
+    assert (found.verdict, finding(sheet, WARM).verdict) == ("clear", "clear")
+    assert REACTIVE in finding(sheet, WARM).because
+    assert found.power_at_limit == pytest.approx(100.0 * 200e3 / high(found))
+    half = sheet_of(capacitor__with=[{**PART, **keys, "rated_current_at": "7.1 MHz"}], transmission__0__power="50 W")
+    assert high(finding(half, REACTIVE)) == pytest.approx(high(found) / 2.0)
+    small = padded(**{**keys, "rated_reactive_power": "50 kVA"})
+    assert finding(small, REACTIVE).verdict == "stop"
+    assert small.power_ceiling.held_by == REACTIVE
+
+
+def test_heat_of_padding_is_held_against_its_own_watts() -> None:
+    keys = {"rated_current_at": None, "quality_factor": {"low": 500, "likely": 500, "high": 500}}
+    found = finding(padded(**keys, rated_dissipation="200 W"), WARM)
+    assert found.verdict == "clear"
+    assert found.power_at_limit == pytest.approx(100.0 * 200.0 / high(found))
+    assert finding(padded(**keys, rated_dissipation="10 W"), WARM).verdict == "stop"
+    guessed = finding(padded(**{**keys, "quality_factor": None}, rated_dissipation="200 W"), WARM)
+    assert guessed.verdict == "narrow"
+    assert "common practice" in guessed.because
 
 
 @pytest.mark.parametrize("name", [VOLTS, AMPS])
@@ -327,11 +388,52 @@ def test_heat_that_is_kept_only_by_typical_losses_elsewhere_is_narrow() -> None:
     assert "typical" in finding(rated, "capacitor.heat").because
 
 
-def test_a_current_rating_answers_for_the_heat_as_far_as_it_is_kept() -> None:
-    kept = finding(sheet_of(**LOSSY), "capacitor.heat")
-    assert kept.verdict == "clear"
-    assert "capacitor.current" in kept.because
-    assert finding(sheet_of(**LOSSY, capacitor__rated_current="10 A"), "capacitor.heat").verdict == "unproven"
+@pytest.mark.parametrize("kind", ["vacuum variable", "air variable"])
+def test_a_current_rating_counts_the_heat_whatever_the_power(kind: str) -> None:
+    """It stops by itself, so that the heat is in no doubt that only the power makes."""
+    keys = {**LOSSY, "capacitor__kind": kind, "capacitor__rated_current_at": "28 MHz"}
+    kept, beyond = sheet_of(**keys), sheet_of(**keys, capacitor__rated_current="10 A")
+    assert [finding(each, "capacitor.current").verdict for each in (kept, beyond)] == ["clear", "stop"]
+    for sheet in (kept, beyond):
+        found = finding(sheet, "capacitor.heat")
+        assert found.verdict == "clear"
+        assert "see capacitor.current, which judges it" in found.because
+        assert "kept" not in found.because
+    assert "capacitor.heat" not in beyond.power_ceiling.left_out
+
+
+@pytest.mark.parametrize("kind", ["ceramic", "mica", "dielectric plate", "coaxial stub", "trombone"])
+def test_amps_of_a_higher_frequency_do_not_count_the_heat_of_a_solid_body(kind: str) -> None:
+    """At lower ones the same amps have more volts, and the same loss tangent more watts."""
+    keys = {**LOSSY, "capacitor__kind": kind}
+    for at, word in ((None, "at which frequency"), ("28 MHz", "below, the same heat allows less")):
+        sheet = sheet_of(**keys, capacitor__rated_current_at=at)
+        assert finding(sheet, "capacitor.current").verdict == "clear"
+        found = finding(sheet, "capacitor.heat")
+        assert found.verdict == "unproven"
+        assert word in found.because
+        assert high(found) > 20.0
+        assert "capacitor.heat" in sheet.power_ceiling.left_out
+    counted = finding(sheet_of(**keys, capacitor__rated_current_at="7.1 MHz"), "capacitor.heat")
+    assert counted.verdict == "clear"
+
+
+def test_a_reactive_power_counts_the_heat_and_is_named_where_it_stops() -> None:
+    keys = {**LOSSY, "capacitor__kind": "ceramic"}
+    for rating, verdict in (("400 kVA", "clear"), ("50 kVA", "stop")):
+        sheet = sheet_of(**keys, capacitor__rated_reactive_power=rating)
+        assert finding(sheet, "capacitor.reactive_power").verdict == verdict
+        found = finding(sheet, "capacitor.heat")
+        assert found.verdict == "clear"
+        assert "see capacitor.reactive_power, which judges it" in found.because
+    both = sheet_of(**keys, capacitor__rated_reactive_power="50 kVA", capacitor__rated_current_at="7.1 MHz")
+    assert "see capacitor.current and capacitor.reactive_power" in finding(both, "capacitor.heat").because
+
+
+def test_watts_of_a_part_whose_losses_are_only_usual_are_narrow() -> None:
+    keys = {"capacitor__series_resistance": None, "capacitor__rated_dissipation": "1 kW"}
+    assert finding(sheet_of(**keys), "capacitor.heat").verdict == "narrow"
+    assert finding(sheet_of(**LOSSY, capacitor__rated_dissipation="1 kW"), "capacitor.heat").verdict == "clear"
 
 
 @pytest.mark.parametrize("kind", ["vacuum variable", "ceramic", "mica", "trombone", "dielectric plate"])
@@ -378,6 +480,12 @@ def test_a_loop_without_a_capacitor_has_none_of_these() -> None:
             "capacitor.with[0].rated_voltage_kind",
             "add rated_voltage",
         ),
+        (
+            {"capacitor__with": [{"connection": "series", "capacitance": "1 nF", "rated_current_at": "7 MHz"}]},
+            "capacitor.with[0].rated_current_at",
+            "add rated_current",
+        ),
+        ({"capacitor": {**PLATE, "dielectric": "air"}}, "capacitor.dielectric", 'kind = "air variable"'),
         (
             {"capacitor__with": [{"connection": "series", "capacitance": "1 nF", "tolerance": "60 %"}]},
             "capacitor.with[0].tolerance",

@@ -251,6 +251,39 @@ def test_where_volts_and_amps_decide_nothing_is_said_of_reactive_power(
     assert "capacitor.reactive_power" not in ids
 
 
+AIR = {"connection": "parallel", "capacitance": "100 pF", "tolerance": "2 %", "rated_reactive_power": "200 kVA"}
+RATED = {
+    **CERAMIC,
+    "capacitor__rated_dissipation": "1 kW",
+    "capacitor__with": [{**AIR, "rated_current": "40 A", "rated_dissipation": "1 kW", "quality_factor": 5000}],
+}
+WARMED = (
+    "capacitor.current",
+    "capacitor.reactive_power",
+    "capacitor.heat",
+    "capacitor.padding.100-pf.current",
+    "capacitor.padding.100-pf.reactive_power",
+    "capacitor.padding.100-pf.heat",
+)
+
+
+def test_ratings_of_heat_are_narrow_in_air_above_that_of_the_makers(design: MakeDesign) -> None:
+    """Vacuum capacitors 25 degC, ceramics 30 degC, still air (makers' guides, as told in the reference notes, 4)."""
+    cool, warm, unknown = (
+        magsafe.check(design(**RATED, site__air_temperature=air)) for air in ("30 degC", "31 degC", None)
+    )
+    for name in WARMED:
+        assert finding(cool, name).verdict == "clear", name
+        assert finding(unknown, name).verdict == "clear", name
+        found = finding(warm, name)
+        assert (found.verdict, found.thin) == ("narrow", True), name
+        assert "still air of 25 to 30 degC" in found.because
+    said = "current ratings hold as for air of 25 to 30 degC"
+    assert [said in " ".join(sheet.assumptions) for sheet in (cool, warm, unknown)] == [False, False, True]
+    bare = design(capacitor__rated_current=None)
+    assert said not in " ".join(magsafe.check(bare).assumptions)
+
+
 def test_reactive_power_of_a_loop_that_is_not_computed_is_unproven(design: MakeDesign) -> None:
     found = reactive(design, loop__conductor__outer_diameter="100 mm")
     assert found.verdict == "unproven"

@@ -325,7 +325,9 @@ def test_two_sleeves_stand_twice_what_one_does() -> None:
 def test_a_gap_of_air_stands_the_uniform_field_at_its_inner_conductor() -> None:
     stress = dielectric_stress(design_of({**TROMBONE, "dielectric": "air"}, **LABORATORY), FREQUENCY)
     share = 9e-3 * log(22.0 / 18.0) / 2e-3
-    assert stress.voltage == pytest.approx(2.0 * 0.8 * share * float(uniform_breakdown(2e-3, 1.0)), rel=2e-3)
+    # A tenth off its axis, and cut ends: 0.90 of the gap and 0.70 (common practice), as of air plates.
+    even = float(uniform_breakdown(0.9 * 2e-3, 1.0))
+    assert stress.voltage == pytest.approx(2.0 * 0.8 * 0.7 * share * even, rel=2e-3)
     assert stress.held_by == "2.00 mm of air"
 
 
@@ -348,6 +350,8 @@ KINDS = st.sampled_from([*sorted(warmth_tables.dielectrics()), "air"])
 @cache
 def plate_stress(dielectric: str, gap: float, altitude: float, celsius: float) -> float:
     part = {**PLATE, "dielectric": dielectric, "gap": f"{gap * 1e3:.6f} mm"}
+    if dielectric == "air":
+        part = {**TROMBONE, "dielectric": dielectric, "outer_diameter": f"{18.0 + 2e3 * gap:.6f} mm"}
     site = {"site__altitude": f"{altitude:.3f} m", "site__air_temperature": f"{celsius:.3f} degC"}
     return dielectric_stress(design_of(part, **site), FREQUENCY).voltage
 
@@ -384,6 +388,9 @@ def test_the_poorest_metal_is_that_of_the_highest_loss() -> None:
 
 def test_a_wide_gap_of_air_stands_no_more_than_where_ionisation_ends() -> None:
     """8 mm at 14.2 MHz: electrons turn round within it, so 24.2 kV/cm and not the uniform fit (as of air plates)."""
-    wide = design_of({**PLATE, "dielectric": "air", "gap": "8 mm"}, **LABORATORY)
-    assert dielectric_stress(wide, 14.2e6).voltage == pytest.approx(0.8 * 2.422e6 * 8e-3, rel=2e-3)
-    assert dielectric_stress(wide, 2e6).voltage == pytest.approx(0.8 * float(uniform_breakdown(8e-3, 1.0)), rel=2e-3)
+    tubes = {**STUB, "dielectric": "air", "inner_diameter": "400 mm", "outer_diameter": "416 mm"}
+    wide = design_of(tubes, **LABORATORY)
+    share = 0.8 * 0.7 * 0.2 * log(208.0 / 200.0) / 8e-3
+    assert dielectric_stress(wide, 14.2e6).voltage == pytest.approx(share * 2.422e6 * 7.2e-3, rel=2e-3)
+    even = float(uniform_breakdown(7.2e-3, 1.0))
+    assert dielectric_stress(wide, 2e6).voltage == pytest.approx(share * even, rel=2e-3)

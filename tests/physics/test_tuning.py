@@ -1,5 +1,6 @@
 """What a capacitor tunes: against the lumped circuit, the Fourier series of the ring, and differences of the solver."""
 
+import warnings
 from math import log, pi, sqrt
 from typing import Any
 
@@ -293,3 +294,16 @@ def test_padding_changes_what_a_picofarad_does(design: MakeDesign, connection: s
     assert share < 1.0 or connection == "parallel"
     expected = (tuning.tuning_rate(plain).likely or 0.0) * share
     assert tuning.tuning_rate(padded).likely == pytest.approx(expected, rel=1e-4)
+
+
+def test_a_thin_poor_conductor_is_followed_to_where_its_port_turns_capacitive(design: MakeDesign) -> None:
+    """Its internal inductance moves the anti-resonance below that of the perfect wire: beyond, nothing is told."""
+    steel = {"form": "rod", "outer_diameter": "3.31 mm", "material": "stainless steel 304"}
+    made = design(loop__diameter="0.701 m", loop__conductor=steel, capacitor__position="bottom")
+    with warnings.catch_warnings():
+        warnings.simplefilter("error")
+        needed = tuning.needed_capacitance(made)
+    assert np.all(needed.least > 0.0)
+    assert np.all(np.diff(needed.frequency) > 0.0)
+    assert needed.limit is not None
+    assert needed.frequency[-1] < needed.limit

@@ -179,8 +179,53 @@ def test_one_bad_joint_is_worse_than_its_share_of_two() -> None:
     part = point.chain.joints[0]
     both = max(point.chain.heat_in(part, "high", "low", each, 100.0) for each in point.chain.least)
     assert (joint.heat.high or 0.0) > 1.02 * both / 2.0
-    assert joint.bare_heat > (joint.heat.high or 0.0)
-    assert joint.poor_heat > 5.0 * joint.bare_heat
+    assert joint.bare_spot > (joint.heat.high or 0.0)
+    assert joint.poor_spot > 5.0 * joint.bare_spot
+
+
+def spots(*joints: dict[str, Any]) -> list[tuple[float, float]]:
+    """Return the heat of one joint and that of its spot, likely, for each group."""
+    design = design_of(loop__joint=list(joints))
+    point = point_of(design)
+    assert point.chain is not None
+    assert point.warmth is not None
+    return [
+        (each.heat.likely or 0.0, each.spot.likely or 0.0) for each in joint_warmth(point.chain, design, point.warmth)
+    ]
+
+
+def test_joints_at_one_spot_heat_it_together() -> None:
+    """Half of those at the capacitor on each side of it, all of those opposite, whatever their groups."""
+    lug = {"kind": "bolted lug", "at": "capacitor"}
+    (one, two) = spots({**lug, "name": "a", "count": 2}, {**lug, "name": "b", "count": 5, "kind": "compression"})
+    assert one[1] == two[1] == pytest.approx(one[0] + 3.0 * two[0])
+    (far,) = spots({**lug, "name": "a", "count": 3, "at": "opposite"})
+    assert far[1] == pytest.approx(3.0 * far[0])
+    (alone,) = spots({**lug, "name": "a", "count": 6, "at": "spread"})
+    assert alone[1] == pytest.approx(alone[0])
+
+
+def test_joints_that_are_spread_warm_the_conductor() -> None:
+    """Twelve of five milliohms on three metres: their heat for each metre is added to that of the conductor."""
+    spread = {"name": "sleeves", "count": 12, "at": "spread",
+              "resistance": {"low": "5 mohm", "likely": "5 mohm", "high": "5 mohm"}}  # fmt: skip
+    with_them, point = warm_of(loop__joint=[spread]), point_of(design_of(loop__joint=[spread]))
+    current = point.figures.capacitor_rms_current.spread.likely or 0.0
+    assert point.chain is not None
+    corner = point.chain.likely
+    square = current**2 * corner.growth
+    metre = square * point.chain.conductor.likely * corner.state.flow.largest**2
+    wanted = 12 * 0.005 * square * corner.state.flow.mean_square / pi
+    assert (with_them.heat.likely or 0.0) - metre == pytest.approx(wanted, rel=1e-3)
+
+
+@pytest.mark.parametrize("count", [1, 4, 16])
+def test_more_joints_at_the_capacitor_never_raise_the_ceiling(count: int) -> None:
+    few, many = (
+        finding_of(magsafe.check(design_of(loop__joint=[{**JOINT, "count": each}])), "joint.heat.lug").power_at_limit
+        for each in (count, 2 * count + 1)
+    )
+    assert (many or 0.0) < (few or 0.0)
 
 
 @settings(max_examples=15, deadline=None)
@@ -261,7 +306,8 @@ def test_supports_that_give_way_hold_the_power() -> None:
     thin = {"form": "rod", "outer_diameter": "15 mm", "material": "copper"}
     changes: list[dict[str, Any]] = [{"loop__supports": []}, {}, {"loop__supports": ["PTFE", "PVC"]}]
     free, unknown, held = (finding_of(magsafe.check(design_of(loop__conductor=thin, **more)), name) for more in changes)
-    assert unknown.power_at_margin == free.power_at_margin
+    assert (unknown.power_at_margin or 0.0) < (free.power_at_margin or 0.0)
+    assert unknown.power_at_limit == free.power_at_limit
     assert (held.power_at_margin or 0.0) < 0.5 * (free.power_at_margin or 0.0)
     assert "PVC" in held.because
     assert "loop.supports" not in free.because
@@ -287,7 +333,7 @@ def test_a_joint_of_a_typical_kind_is_clear_only_if_one_ten_times_as_bad_would_b
     found = [finding_of(magsafe.check(design_of(**each)), "joint.heat.lug") for each in (weak, strong)]
     assert found[0].verdict == "clear"
     assert found[1].verdict != "clear"
-    assert "typical of its kind" in found[1].because
+    assert "ten times as bad as is typical of a bolted lug" in found[1].because
     measured = {"low": "0.1 mohm", "likely": "0.1 mohm", "high": "0.2 mohm"}
     stated = {**strong, "loop__joint": [{**JOINT, "resistance": measured}]}
     assert finding_of(magsafe.check(design_of(**stated)), "joint.heat.lug").verdict == "clear"
@@ -297,7 +343,38 @@ def test_what_runs_away_is_a_stop() -> None:
     wire = {"form": "rod", "outer_diameter": "1 mm", "material": "copper"}
     sheet = magsafe.check(design_of(loop__conductor=wire, transmission__0__power="400 W", loop__joint=[JOINT]))
     for name in ("conductor.temperature", "joint.heat.lug"):
-        assert finding_of(sheet, name).verdict == "stop"
+        found = finding_of(sheet, name)
+        assert found.verdict == "stop"
+        assert found.value is None or found.value.high is None
+        assert "9727" not in found.because
+        assert (found.power_at_margin or 0.0) > 0.0
+
+
+def test_air_as_warm_as_the_limit_leaves_no_power() -> None:
+    sheet = magsafe.check(design_of(loop__supports=["PVC"], site__air_temperature="75 degC"))
+    assert finding_of(sheet, "conductor.temperature").verdict == "stop"
+    assert sheet.power_ceiling.value == 0.0
+
+
+@pytest.mark.parametrize(
+    "changes",
+    [{}, {"loop__supports": [], "loop__joint": [JOINT]}, {"loop__joint": [{**JOINT, "kind": "soldered lap"}]}],
+    ids=["no supports", "typical lug", "solder"],
+)
+def test_up_to_the_power_told_warmth_is_clear_and_above_it_is_not(changes: dict[str, Any]) -> None:
+    """Whatever power the design has: what nobody measured is not in the power that is called clear."""
+
+    def warm(sheet: Sheet) -> list[Finding]:
+        return [f for f in sheet.all_findings() if f.id.startswith(("conductor.temp", "joint.heat"))]
+
+    told = [
+        min(f.power_at_margin or 0.0 for f in warm(magsafe.check(design_of(**changes, transmission__0__power=watts))))
+        for watts in ("2 W", "300 W")
+    ]
+    assert told[0] == pytest.approx(told[1], rel=1e-6)
+    for factor, clear in ((0.9999, True), (1.001, False)):
+        sheet = magsafe.check(design_of(**changes, transmission__0__power=f"{told[0] * factor:.9f} W"))
+        assert all(f.verdict == "clear" for f in warm(sheet)) == clear
 
 
 def test_the_drift_by_hand() -> None:
@@ -317,6 +394,14 @@ def test_the_drift_by_hand() -> None:
     assert found.limit.value == pytest.approx(width / 2.0)
     assert found.verdict in ("clear", "narrow")
     assert "after 3 min of transmitting" in found.because
+
+
+@pytest.mark.parametrize("surface", ["bright", "oxidised", "painted"])
+def test_what_the_sun_has_warmed_already_is_no_drift(surface: str) -> None:
+    changes = {"loop__conductor__surface": surface, "loop__conductor__in_sun": True, "transmission__0__power": "0.01 W"}
+    found = finding_of(magsafe.check(design_of(**changes)), "loop.drift")
+    assert found.value is not None
+    assert 0.0 < (found.value.likely or 0.0) <= (found.value.high or 0.0) < 20.0
 
 
 def test_volts_do_not_know_of_warmth() -> None:
