@@ -43,7 +43,8 @@ class Warmth:
     temperature, shape (3,); `bare_heat` is the high end without credit for what is typical of other parts; `growth` is
     the resistance at the start of an over over that at 20 degC [1]. `capacity` is what a metre holds [J/K], 0 where the
     section is not known. `over` and `pause` are the longest over and what follows it [s]; an over without end is
-    infinite. `finish_stated` tells whether the surface is the design's word.
+    infinite. `tune_share` is the tune-up's carrier over the envelope [1], which lasts `tune_time` [s]. `finish_stated`
+    tells whether the surface is the design's word.
     """
 
     heat: Spread
@@ -57,6 +58,8 @@ class Warmth:
     duty: float
     over: float
     pause: float
+    tune_share: float
+    tune_time: float
     finish_stated: bool
 
     @property
@@ -72,16 +75,16 @@ class Warmth:
     def temperature(self) -> Spread:
         """Return the temperature at the end of the longest over [K]; `RUNS_AWAY` where nothing holds it.
 
-        The high end is a bound: the steady state of the mean heat, and on top of it all that one over brings, but
-        never more than the steady state of an over without end. The likely value is that of a body that loses heat in
-        proportion, as it does at the mean; the low end is the steady state of the mean.
+        The high end is a bound: the steady state of the mean heat, and on top of it all that one over and one tune-up
+        bring, but never more than the steady state of either without end. The likely value is that of a body that loses
+        heat in proportion, as it does at the mean; the low end is the steady state of the mean.
         """
         ends = (self.heat.low, self.heat.likely, self.heat.high)
         heats = np.array([0.0 if end is None else end * self.duty for end in ends])
         mean, keyed = self._steady(heats * self.share), self._steady(heats)
         swing = float(heats[1]) * self._swing(float(mean[1]))
         likely = float(min(keyed[1], mean[1] + swing))
-        high = float(np.minimum(keyed, mean + self._added(heats))[2])
+        high = float(self.high_at(np.ones(1))[0])
         return Spread(None if self.heat.low is None else float(mean[0]), min(likely, high), high)
 
     @property
@@ -102,8 +105,22 @@ class Warmth:
 
     def high_at(self, powers: Array) -> Array:
         """Return the high end [K] at powers that are so many times the one computed, shape (power,)."""
-        heats = (self.heat.high or 0.0) * self.duty * powers
-        return np.minimum(self._steady_high(heats), self._steady_high(heats * self.share) + self._added(heats))
+        key_down = (self.heat.high or 0.0) * powers
+        heats = key_down * self.duty
+        over = np.minimum(
+            self._steady_high(heats), self._steady_high(heats * self.share) + self._added(heats, self.over)
+        )
+        if self.tune_time == 0.0:
+            return over
+        # A design's tune-up is no stronger than its envelope, so it goes with the power.
+        tuning = key_down * self.tune_share
+        ever = np.maximum(over, self._steady_high(tuning))
+        return np.minimum(ever, over + self._added(tuning, self.tune_time))
+
+    @property
+    def strongest_share(self) -> float:
+        """The largest mean power while keyed over the envelope [1], for what warms in seconds."""
+        return max(self.duty, self.tune_share)
 
     def power_to(self, temperature: float, beside: float = 0.0) -> float:
         """Return the largest of such powers that keeps the high end within a temperature [K]; 0 where none does.
@@ -134,10 +151,10 @@ class Warmth:
         temperatures, kept = _balance(tuple(floats), self.coefficient, self.exponent)
         return np.interp(heats / self.growth, kept, temperatures, right=RUNS_AWAY)
 
-    def _added(self, heats: Array) -> Array:
-        """Return what one over brings at most [K] to a metre with so much heat [W/m]."""
-        endless = self.capacity == 0.0 or self.over == inf
-        return np.full(heats.shape, inf) if endless else heats * (self.over / self.capacity)
+    def _added(self, heats: Array, lasting: float) -> Array:
+        """Return what so much heat [W/m] brings at most [K] to a metre while it lasts [s]."""
+        endless = self.capacity == 0.0 or lasting == inf
+        return np.full(heats.shape, inf) if endless else heats * (lasting / self.capacity)
 
     def _steady(self, heats: Array) -> Array:
         return np.array([float(self._steady_at(end, heats[end : end + 1])[0]) for end in range(3)])
@@ -192,6 +209,8 @@ def warmth(chain: Chain, design: Design, use: Use) -> Warmth:
         duty=use.duty,
         over=over,
         pause=pause,
+        tune_share=use.tune_up_power / use.envelope,
+        tune_time=use.tune_up_time,
         finish_stated=made_of.surface is not None,
     )
 

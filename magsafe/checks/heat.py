@@ -148,7 +148,7 @@ def _joint_check(joint: Joint) -> Check:
 def _joint(point: OperatingPoint, warm: Warmth, found: JointWarmth, margin: float) -> Finding:
     """Return how hot one joint gets: the conductor beside it at its hottest, and its own heat led away along that."""
     check, joint, air = _joint_check(found.joint), found.joint, warm.air_temperature
-    watts = words.amount((found.heat.high or 0.0) * warm.duty, "W")
+    watts = words.amount((found.heat.high or 0.0) * warm.strongest_share, "W")
     if found.resistance is None:
         return unproven(check, f"up to {watts} in one joint; how much metal leads that away is not stated")
     row = _standing(joint)
@@ -157,7 +157,7 @@ def _joint(point: OperatingPoint, warm: Warmth, found: JointWarmth, margin: floa
     if allowed <= 0.0:
         said = f"the air alone is as warm as a joint may be, {_celsius(row)} ({row.name})"
         return stopped(check, Spread(None, None, None), said, "wait for cooler air")
-    rise = found.resistance * warm.duty
+    rise = found.resistance * warm.strongest_share
     low, likely, high = (
         None if along is None or own is None else along - air + rise * own
         for along, own in zip(
@@ -187,7 +187,7 @@ def _joint(point: OperatingPoint, warm: Warmth, found: JointWarmth, margin: floa
         else "",
         provenance=row.provenance,
     )
-    spot = words.amount((found.spot.high or 0.0) * warm.duty, "W")
+    spot = words.amount((found.spot.high or 0.0) * warm.strongest_share, "W")
     together = "" if spot == watts else f", {spot} where they meet"
     limit = f"the limit is {_celsius(row)} ({row.name}, {row.provenance})"
     if conductor.high == RUNS_AWAY:

@@ -18,7 +18,7 @@ from magsafe.checks.sheet import Finding, Sheet
 from magsafe.design.model import Design
 from magsafe.physics.fin import fin_resistance, thermal_conductivity
 from magsafe.physics.heat import ElectricHeat, Surface, Surroundings, steady_temperature
-from magsafe.physics.warming import repeated_over_temperature
+from magsafe.physics.warming import repeated_over_temperature, temperature_after
 from magsafe.spread import Spread
 
 TUBE = {"form": "tube", "outer_diameter": "22 mm", "wall": "1.0 mm", "material": "copper tube"}
@@ -80,7 +80,14 @@ def test_a_fin_by_finite_differences() -> None:
 # The end of an over ----------------------------------------------------------------------------------------
 
 
-def body(heat: float, over: float, pause: float, emissivity: float = 0.5, sunshine: float = 0.0) -> Warmth:
+def body(
+    heat: float,
+    over: float,
+    pause: float,
+    emissivity: float = 0.5,
+    sunshine: float = 0.0,
+    tune: tuple[float, float] = (0.0, 0.0),
+) -> Warmth:
     return Warmth(
         heat=Spread(heat, heat, heat),
         bare_heat=heat,
@@ -93,6 +100,8 @@ def body(heat: float, over: float, pause: float, emissivity: float = 0.5, sunshi
         duty=1.0,
         over=over,
         pause=pause,
+        tune_share=tune[0],
+        tune_time=tune[1],
         finish_stated=False,
     )
 
@@ -116,6 +125,30 @@ def test_no_row_of_overs_ends_warmer_than_the_bound(heat: float, over: float, pa
     assert (found.high or 0.0) >= exact - 1e-3
     assert found.likely == pytest.approx(exact, abs=0.05 * (exact - 303.15) + 0.3)
     assert (found.low or 0.0) <= exact + 1e-3
+
+
+@pytest.mark.parametrize(("share", "time"), [(1.0, 20.0), (0.5, 120.0), (3.0, 300.0)])
+def test_a_tune_up_after_an_over_ends_no_warmer_than_the_bound(share: float, time: float) -> None:
+    """Against the warming followed in time: the row of overs, then the tune-up's carrier from where that ends."""
+    surface, air = Surface(0.022, 0.022, 0.5, 0.5, 0.8), Surroundings(303.15, 9e4)
+    end = repeated_over_temperature(180.0, 180.0, ElectricHeat(20.0, 0.0039), surface, air, 227.0)
+    exact = float(temperature_after(time, end, ElectricHeat(20.0 * share, 0.0039), surface, air, 227.0))
+    plain = body(20.0, 180.0, 180.0).temperature().high or 0.0
+    found = body(20.0, 180.0, 180.0, tune=(share, time)).temperature().high or 0.0
+    assert found >= max(exact, plain) - 1e-3
+    assert found <= plain + 20.0 * share * time / 227.0 + 1e-9
+
+
+def test_a_tune_up_counts_for_joints_as_long_as_it_may_last() -> None:
+    """A joint warms in seconds: a full carrier for tuning is twice the mean of speech."""
+    speech = {"transmission__0__mode": "SSB", "loop__joint": [JOINT], "transmission__0__power": "20 W"}
+    tuned = {**speech, "transmission__0__tune_up": {"power": "20 W", "time": "1 s"}}
+    plain, carrier = (finding_of(magsafe.check(design_of(**each)), "joint.heat.lug") for each in (speech, tuned))
+    assert plain.value is not None
+    assert carrier.value is not None
+    rise = warm_of(**speech).temperature().high or 0.0
+    own = (plain.value.high or 0.0) - (rise - 313.15)
+    assert (carrier.value.high or 0.0) == pytest.approx((plain.value.high or 0.0) + own, abs=0.2)
 
 
 def test_an_over_without_end_comes_to_the_steady_state() -> None:
