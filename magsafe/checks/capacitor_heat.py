@@ -57,7 +57,8 @@ def heat_of_part(
     (part, use, losses), made = of, point.chain
     if made is None or use.missing:
         return unproven(check, use.missing or "; ".join(point.out_of_range), do=CHANGE if use.missing else None)
-    duty = use_of(point.transmission).duty
+    keying = use_of(point.transmission)
+    duty = max(keying.duty, keying.tune_up_power / keying.envelope)
     keyed = heat_of(made, losses)
     value = keyed.scaled(duty)
     told = f"{words.amount(keyed.high or 0.0, 'W')} at worst, key-down"

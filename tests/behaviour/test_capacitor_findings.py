@@ -509,3 +509,14 @@ def test_air_is_a_dielectric_too() -> None:
     sheet = made_of(TROMBONE, dielectric="air")
     assert finding(sheet, "capacitor.geometry").verdict == "clear"
     assert "of air" in finding(sheet, "capacitor.dielectric").because
+
+
+def test_a_full_carrier_for_tuning_counts_for_the_heat_too() -> None:
+    """Speech is half of it on the mean: while tuning the part takes all of it."""
+    speech = {**LOSSY, "capacitor__rated_dissipation": "200 W", "transmission__0__mode": "SSB"}
+    plain, tuned = (
+        finding(sheet_of(**speech, **more), "capacitor.heat")
+        for more in ({}, {"transmission__0__tune_up": {"power": "100 W", "time": "30 s"}})
+    )
+    assert high(tuned) == pytest.approx(2.0 * high(plain))
+    assert (tuned.power_at_margin or 0.0) == pytest.approx((plain.power_at_margin or 0.0) / 2.0)
