@@ -76,6 +76,8 @@ def test_the_samples_show_a_capacitor_of_each_verdict(sample: str, verdict: str)
         ("lighthouse_gallery", "unproven"),
         ("net_loft_balcony", "clear"),
         ("pier_head_square", "clear"),
+        ("pass_refuge", "stop"),
+        ("breakwater_beacon", "stop"),
     ],
 )
 def test_each_sample_has_its_verdict_as_a_whole(sample: str, verdict: str) -> None:

@@ -2,6 +2,7 @@
 
 import math
 from math import prod, sqrt
+from pathlib import Path
 from typing import Any
 
 import pytest
@@ -15,6 +16,7 @@ from magsafe.analysis.gap import gap_volts
 from magsafe.analysis.operating_point import operating_point
 from magsafe.checks.gap import gap
 from magsafe.checks.sheet import Finding, Sheet
+from magsafe.design.reading import parse_design
 from magsafe.reports import deratings
 
 MOUNTAIN = {"site__altitude": "2000 m", "site__air_temperature": "40 degC"}
@@ -336,3 +338,24 @@ def test_the_terminal_shows_derations_where_there_are_any(design: MakeDesign) ->
 )
 def test_exit_statuses(changes: dict[str, Any], status: int) -> None:
     assert run("check", "-", given=file_of(plain_tree(**{**PLATES, **changes}))).returncode == status
+
+
+SAMPLES = Path(__file__).parents[2] / "sample_designs"
+
+
+@pytest.mark.parametrize(
+    ("sample", "stopped"),
+    [("pass_refuge", "capacitor.gap"), ("breakwater_beacon", "joint.heat.capacitor-s-wiper")],
+)
+def test_a_sample_that_fails_here_and_nowhere_else(sample: str, stopped: str) -> None:
+    """An arc in thin air; a wiper that burns under low volts and a steady carrier."""
+    sheet = magsafe.check(magsafe.read_design(SAMPLES / f"{sample}.toml"))
+    assert {f.id for f in sheet.all_findings() if f.verdict == "stop"} == {stopped}
+    assert not any(f.verdict == "unproven" for f in sheet.all_findings())
+    assert sheet.power_ceiling.held_by == stopped
+
+
+def test_down_at_the_sea_the_gap_of_the_refuge_holds() -> None:
+    text = (SAMPLES / "pass_refuge.toml").read_text(encoding="utf-8").replace('altitude = "2600 m"', 'altitude = "0 m"')
+    sheet = magsafe.check(parse_design(text.encode(), "low.toml"))
+    assert not any(f.verdict == "stop" for f in sheet.all_findings())

@@ -12,6 +12,7 @@ from hypothesis import strategies as st
 
 import magsafe
 from magsafe.analysis.exposure import use_of
+from magsafe.analysis.losses import Corner
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
 from magsafe.analysis.warmth import POORER, Warmth, joint_warmth, warmth
 from magsafe.checks.sheet import Finding, Sheet
@@ -455,3 +456,32 @@ def test_use_is_that_of_the_transmission() -> None:
     found = warmth(point.chain, design, use_of(design.transmission[0]))
     assert (found.duty, found.over, found.pause) == (0.5, 120.0, 60.0)
     assert found.share == pytest.approx(2.0 / 3.0)
+
+
+def test_the_conductor_is_hottest_where_the_capacitor_loses_least() -> None:
+    """Its own resistance high and the capacitor's low: never the corner with every loss high, which takes heat away."""
+    quality = {"low": 500, "likely": 1200, "high": 3000}
+    point = point_of(design_of(capacitor__series_resistance=None, capacitor__quality_factor=quality))
+    chain = point.chain
+    assert chain is not None
+    assert point.warmth is not None
+
+    def heat(q: float, corner: Corner) -> float:
+        own = chain.conductor.high * corner.weight("conductor", "high")
+        total = corner.radiated + own + abs(corner.reactance) / q
+        return 100.0 * chain.conductor.high * corner.growth * corner.state.flow.largest**2 / total
+
+    hot, cold = (max(heat(q, corner) for corner in chain.least) for q in (3000.0, 500.0))
+    assert point.warmth.heat.high == pytest.approx(1.01 * hot, rel=1e-6)
+    assert hot > 1.3 * cold
+
+
+@settings(max_examples=15, deadline=None)
+@given(st.floats(200.0, 5000.0), st.floats(1.0, 5.0))
+def test_a_better_capacitor_never_lowers_the_volts(quality: float, better: float) -> None:
+    def volts(likely: float) -> float:
+        spread = {"low": likely / 2.0, "likely": likely, "high": likely * 2.0}
+        design = design_of(capacitor__series_resistance=None, capacitor__quality_factor=spread)
+        return point_of(design).figures.capacitor_peak_voltage.spread.high or 0.0
+
+    assert volts(quality * better) >= volts(quality) * (1.0 - 1e-12)
