@@ -14,6 +14,7 @@ from magsafe.physics.air_gap import GAP, IONISATION_END, SWEPT, uniform_breakdow
 from magsafe.physics.arrays import Array
 from magsafe.physics.atmosphere import relative_air_density
 from magsafe.physics.deratings import RADIO_FREQUENCIES, RADIO_FREQUENCY, SPACING, SQUARE_CUT
+from magsafe.physics.divided_voltage import air_field
 from magsafe.physics.open_line import coaxial_field
 
 # Of the strength of a thin sheet at 50 Hz, for good at radio frequency: 1/10 to 1/5 is common practice.
@@ -69,7 +70,8 @@ def dielectric_stress(design: Design, frequency: float) -> Stress:
         sheet = (row.strength.low or 0.0) * weaker * SHEET_SHARE * flat
         limits.append((sheet, f"{words.amount(thickness, 'm', 'mm')} of {row.name}"))
         if part.kind != "coaxial stub":
-            films = _air(_FILMS, density, frequency) * (1.0 + flat / ((spread.high or 1.0) * _FILMS))
+            sheets, relative = np.full((len(_FILMS), 1), flat), np.array([[spread.high or 1.0]])
+            films = _air(_FILMS, density, frequency) / (air_field(1.0, _FILMS, sheets, relative) * _FILMS)
             film = float(films.min()) * RADIO_FREQUENCY.factor
             limits.append((film, f"a film of air beside {words.amount(thickness, 'm', 'mm')} of {row.name}"))
     stood, held_by = min(limits)

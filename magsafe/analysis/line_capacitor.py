@@ -13,6 +13,7 @@ from magsafe.analysis.capacitor_network import Network
 from magsafe.design import tables, warmth_tables
 from magsafe.design.model import Capacitor
 from magsafe.physics import open_line
+from magsafe.physics.arrays import ComplexArray
 from magsafe.physics.open_line import Line
 from magsafe.spread import Spread
 
@@ -101,8 +102,13 @@ def _capacitance(part: Capacitor, metal: Spread, frequency: float, relative: flo
     if part.kind == "dielectric plate":
         return float(open_line.plate_capacitance(part.plate_area or 0.0, part.gap or 0.0, relative))
     line = line_of(part, metal, frequency, relative, "likely")
-    impedance = open_line.open_impedance(line, part.length or 0.0)
-    return float(open_line.effective_capacitance(frequency, impedance)) / sleeves(part)
+    return float(open_line.effective_capacitance(frequency, _impedance(part, line, part.length or 0.0)))
+
+
+def _impedance(part: Capacitor, line: Line, length: float) -> ComplexArray:
+    """Return the impedance at the terminals: of a stub, or of both sleeves in series [ohm]."""
+    of = open_line.trombone_impedance if part.kind == "trombone" else open_line.open_impedance
+    return of(line, length)
 
 
 def sleeves(part: Capacitor) -> int:
@@ -185,7 +191,7 @@ def own_reactance(net: Network, reactance: float) -> float:
 
 
 def _inverse_q(part: Capacitor, line: Line, reactance: float) -> float:
-    impedance = complex(open_line.open_impedance(line, length_at(part, line, reactance)))
+    impedance = complex(_impedance(part, line, length_at(part, line, reactance)))
     return impedance.real / -impedance.imag if impedance.imag < 0.0 else inf
 
 

@@ -9,7 +9,7 @@ from magsafe.analysis.exposure import use_of
 from magsafe.analysis.losses import Loss
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.rated_current import beyond_rated_air, uncounted_heat
-from magsafe.checks.judge import Check, holds, judge, unproven
+from magsafe.checks.judge import Check, holds, in_proportion, judge, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Capacitor, Design, Padding
 from magsafe.spread import Spread
@@ -82,7 +82,6 @@ def _by_watts(
     thin: tuple[str, ...],
 ) -> Finding:
     (value, bare), margin = heat, design.margins.temperature
-    reached = point.power * limit / bare * (1.0 - 1e-12) if bare > 0.0 else None
     return judge(
         check,
         value,
@@ -90,7 +89,7 @@ def _by_watts(
         margin,
         bare_end=bare,
         power=point.power,
-        powers=(None if reached is None else reached / margin, reached),
+        powers=in_proportion(point.power, bare, limit, margin),
         thin="; ".join(filter(None, (*thin, beyond_rated_air(design)))),
         provenance="stated in the design",
     )

@@ -7,8 +7,7 @@ from magsafe.checks.judge import Check, judge, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Design
 from magsafe.physics.atmosphere import relative_air_density
-from magsafe.physics.corona import ONSET_DERATINGS, onset_field
-from magsafe.physics.deratings import product
+from magsafe.physics.corona import ONSET_DERATINGS, derated_onset_field
 
 _CORONA = Check(
     "conductor.corona",
@@ -31,7 +30,7 @@ def corona(design: Design, point: OperatingPoint) -> Finding:
         return unproven(_CORONA, "; ".join(point.out_of_range))
     radius = sharpest_radius(design.loop.conductor)
     density = float(relative_air_density(*site_air(design)))
-    limit = float(onset_field(radius, density)) * product(ONSET_DERATINGS)
+    limit = float(derated_onset_field(radius, density))
     found, bare = surface_field(point.chain, radius)
     margin = design.margins.voltage
     near = bare * margin**2 > limit

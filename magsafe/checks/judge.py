@@ -107,6 +107,14 @@ def _margin(dangerous: End, end: float, limit: float) -> float:
     return inf if end == 0.0 else limit / end
 
 
+def in_proportion(power: float, bare_end: float, limit: float, margin: float) -> tuple[float | None, float | None]:
+    """Return the powers [W] at which a figure that grows as the power itself keeps a margin, and reaches its limit."""
+    if bare_end <= 0.0:
+        return None, None
+    reached = power * limit / bare_end * (1.0 - 1e-12)
+    return reached / margin, reached
+
+
 def _power(power: float | None, ratio: float) -> float | None:
     """Return the power at which a figure that grows as its root comes to a ratio of 1."""
     if power is None or ratio == inf:

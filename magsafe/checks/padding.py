@@ -8,13 +8,12 @@ from magsafe.analysis.capacitor_network import network
 from magsafe.analysis.capacitor_parts import CHANGE, PaddingUse, padding_parts
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.rated_current import beyond_rated_air, rated_current
-from magsafe.analysis.rated_voltage import RATED_TO
+from magsafe.analysis.rated_voltage import altitude_derating
 from magsafe.checks.capacitor_heat import heat_of_part
 from magsafe.checks.judge import Check, judge, unproven
 from magsafe.checks.reactive_power import against_reactive_power
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Design, Padding
-from magsafe.physics.atmosphere import standard_pressure
 
 _AS_STATED = "the padding's rating as stated"
 _LOOK_VOLTS = (
@@ -113,14 +112,12 @@ def _voltage(design: Design, point: OperatingPoint, found: PaddingUse, check: Ch
     if missing := use.missing or _not_rated(part, use.bare_voltage or use.voltage.high):
         return unproven(check, missing, use.voltage, CHANGE if use.missing else _LOOK_VOLTS)
     limit = (part.rated_voltage or 0.0) * (sqrt(2.0) if part.rated_voltage_kind == "RMS RF" else 1.0)
-    thinner, lowered, altitude = 1.0, "", design.site.altitude
-    if altitude is not None and altitude > RATED_TO:
-        thinner = float(standard_pressure(altitude) / standard_pressure(RATED_TO))
-        lowered = f"at {words.amount(altitude, 'm')} {thinner:.3g} of the rating is taken (common practice)"
+    thinner = altitude_derating(design)
+    lowered = "" if thinner is None else f"{thinner.factor:.3g} of it is taken in {thinner.name} ({thinner.evidence})"
     return judge(
         check,
         use.voltage,
-        limit * thinner,
+        limit if thinner is None else limit * thinner.factor,
         design.margins.voltage,
         bare_end=use.bare_voltage,
         power=point.power,

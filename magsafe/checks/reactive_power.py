@@ -5,7 +5,7 @@ from math import sqrt
 from magsafe.analysis.capacitor_parts import PartUse, main_part
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.rated_current import beyond_rated_air, uncounted_heat
-from magsafe.checks.judge import Check, judge, unproven
+from magsafe.checks.judge import Check, in_proportion, judge, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Capacitor, Design
 from magsafe.design.ratings import look_for
@@ -38,8 +38,6 @@ def against_reactive_power(check: Check, design: Design, point: OperatingPoint, 
         return unproven(check, missing or "the high end of the figure is not known", value)
     bare = use.bare_voltage / _over(design) * use.bare_current
     margin = design.margins.current
-    # Rounded down by more than the last bit, so that the margin is kept there.
-    reached = point.power * limit / max(bare, value.high) * (1.0 - 1e-12)
     thin = dict.fromkeys(filter(None, (beyond_rated_air(design), use.thin_voltage, use.thin_current)))
     return judge(
         check,
@@ -48,7 +46,7 @@ def against_reactive_power(check: Check, design: Design, point: OperatingPoint, 
         margin,
         bare_end=bare,
         power=point.power,
-        powers=(reached / margin, reached),
+        powers=in_proportion(point.power, max(bare, value.high), limit, margin),
         thin="; ".join(thin),
         provenance="stated in the design",
     )

@@ -61,35 +61,27 @@ def line_charge_field(charge: Values, radius: Values) -> Array:
     return np.asarray(np.abs(charge) / (2.0 * np.pi * epsilon_0 * np.asarray(radius)))
 
 
-def onset_margin(
-    surface_field: Values, radius: Values, density: Values, deratings: tuple[Derating, ...] = ONSET_DERATINGS
-) -> Array:
-    """Return how many times the field on a conductor may grow before corona begins.
+def derated_onset_field(radius: Values, density: Values, deratings: tuple[Derating, ...] = ONSET_DERATINGS) -> Array:
+    """Return the field on a conductor at which corona begins, with what lowers it taken off.
 
     Parameters
     ----------
-    surface_field : crest of the field on the smooth surface [V/m], shape (...), 0 or more
-    radius : of the conductor [m], broadcast, above 0
+    radius : of the conductor [m], shape (...), above 0
     density : relative air density [1], broadcast, above 0
     deratings : rows that lower the onset [1]; as they stand, radio frequency and roughness
 
     Returns
     -------
-    margin [1], broadcast shape; below 1 there is corona, infinite without field
+    field, crest [V/m], broadcast shape
 
     Raises
     ------
-    ValueError : a radius or density that is not above 0, or a negative field
+    ValueError : a radius or density that is not above 0
 
     Valid     as `onset_field`. Wet, dusty or pointed parts glow earlier, at no known field.
     Source    as `onset_field`; roughness and the reduction at radio frequency as their rows say.
     """
-    field = np.asarray(surface_field, dtype=np.float64)
-    if not np.all(field >= 0.0):
-        raise ValueError("the crest of a field is 0 or more")
-    onset = onset_field(radius, density) * product(deratings)
-    with np.errstate(divide="ignore"):
-        return np.asarray(onset / field)
+    return onset_field(radius, density) * product(deratings)
 
 
 def _refuse_unless_positive(**given: Values) -> None:

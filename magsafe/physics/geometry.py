@@ -159,7 +159,10 @@ def regular_corners(sides: int, corner_radius: float) -> Array:
 
 
 def turned(turn: Turn, angle: float) -> Turn:
-    """Return a turn rotated in its plane against the clock by an angle [rad]."""
+    """Return a turn rotated in its plane against the clock by an angle [rad].
+
+    Source    plane geometry.
+    """
     cosine, sine = np.cos(angle), np.sin(angle)
     return Turn(turn.points @ np.array([[cosine, sine], [-sine, cosine]]), turn.corner)
 
@@ -297,11 +300,17 @@ def _area(points: Array) -> float:
 
 
 def upright(wire: Wire, height: float) -> Wire:
-    """Return a wire with its turns in vertical planes, its axis along x, its centre at a height [m]."""
+    """Return a wire with its turns in vertical planes, its axis along x, its centre at a height [m].
+
+    Source    convention of the house (DEVELOPERS.md).
+    """
     across, up, along = wire.nodes.T
     return Wire(np.stack([along, across, up + height], axis=1), wire.turn, wire.radius)
 
 
 def flat(wire: Wire, height: float) -> Wire:
-    """Return a wire with its turns in horizontal planes, its axis along z, its centre at a height [m]."""
+    """Return a wire with its turns in horizontal planes, its axis along z, its centre at a height [m].
+
+    Source    convention of the house (DEVELOPERS.md).
+    """
     return Wire(wire.nodes + np.array([0.0, 0.0, height]), wire.turn, wire.radius)

@@ -267,25 +267,6 @@ def plate_capacitance(area: Values, gap: Values, permittivity: Values) -> Array:
     return np.asarray(epsilon_0 * permittivity * np.asarray(area) / gap)
 
 
-def dielectric_resistance(frequency: Values, capacitance: Values, loss_tangent: Values) -> Array:
-    """Return the series resistance that the loss of a dielectric gives a capacitor.
-
-    Parameters
-    ----------
-    frequency : frequency [Hz], shape (...)
-    capacitance : capacitance within the dielectric [F], broadcast
-    loss_tangent : loss tangent of the dielectric [1], broadcast
-
-    Returns
-    -------
-    resistance [ohm], broadcast shape; that of plates and leads comes on top
-
-    Valid     loss tangent much smaller than 1.
-    Source    definition of the loss tangent.
-    """
-    return np.asarray(np.asarray(loss_tangent) / (2.0 * np.pi * np.asarray(frequency) * capacitance))
-
-
 def _logarithm(inner_radius: Values, outer_radius: Values) -> Array:
     inner, outer = np.asarray(inner_radius, dtype=np.float64), np.asarray(outer_radius, dtype=np.float64)
     if not np.all((inner > 0.0) & (outer > inner)):

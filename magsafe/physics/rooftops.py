@@ -12,7 +12,10 @@ ORDER = 3  # Gauss points on a segment: current times position is integrated exa
 
 @cache
 def gauss(count: int) -> tuple[Array, Array]:
-    """Return Gauss-Legendre nodes and weights on the interval from 0 to 1, shape (count,) each."""
+    """Return Gauss-Legendre nodes and weights on the interval from 0 to 1 [1], shape (count,) each.
+
+    Source    any textbook of numerical integration.
+    """
     node, weight = np.polynomial.legendre.leggauss(count)
     place, share = 0.5 + 0.5 * node, 0.5 * weight
     place.flags.writeable = share.flags.writeable = False
@@ -20,7 +23,10 @@ def gauss(count: int) -> tuple[Array, Array]:
 
 
 def quadrature_points(wire: Wire) -> Array:
-    """Return the Gauss points of all segments [m], shape (segment * ORDER, 3)."""
+    """Return the Gauss points of all segments [m], shape (segment * ORDER, 3).
+
+    Source    as `gauss`.
+    """
     place, _ = gauss(ORDER)
     along = (wire.length[:, None] * place)[:, :, None]
     return np.asarray((wire.nodes[:, None] + along * wire.direction[:, None]).reshape(-1, 3))

@@ -3,7 +3,6 @@
 from collections.abc import Callable
 
 import numpy as np
-from scipy.special import exprel
 
 from magsafe.physics.arrays import Array, Values
 from magsafe.physics.heat import (
@@ -185,90 +184,6 @@ def repeated_over_temperature(
     found = _fixed_point(next_end, np.broadcast_to(idle, shape), np.broadcast_to(high, shape))
     found = np.where(np.asarray(pause) == 0.0, key_down, found)
     return np.asarray(np.where(found >= CEILING, np.inf, found))
-
-
-def lumped_rise(
-    heat: Values, thermal_resistance: Values, time_constant: Values, coefficient: Values, over: Values
-) -> Array:
-    """Return how much a small part is warmer than its surroundings at the end of an over that it began cold.
-
-    Parameters
-    ----------
-    heat : in the part when cold [W], shape (...)
-    thermal_resistance : from the part to its surroundings [K/W], broadcast
-    time_constant : heat capacity times that resistance [s], above 0, broadcast
-    coefficient : growth of the heat with the rise [1/K], referred to the cold part, broadcast
-    over : length of the transmission [s], 0 or more, inf for a steady state, broadcast
-
-    Returns
-    -------
-    rise [K], broadcast shape; inf for a steady state where the heat grows as fast as it is led away
-
-    Raises
-    ------
-    ValueError : a time constant or an over out of its range
-
-    Valid     one temperature in the part, heat led away in proportion to the rise.
-    Source    first-order differential equation (any textbook).
-    """
-    steps, feedback = _lumped(heat, thermal_resistance, time_constant, coefficient, over)
-    spare = 1.0 - feedback
-    ever = np.isinf(steps)
-    with np.errstate(divide="ignore", over="ignore"):
-        steady = np.where(spare > 0.0, 1.0 / np.where(spare > 0.0, spare, 1.0), np.inf)
-        finite = np.where(ever, 0.0, steps)
-        share = np.where(ever, steady, finite * exprel(-spare * finite))
-    return np.asarray(np.asarray(heat) * thermal_resistance * share)
-
-
-def lumped_repeated_rise(
-    heat: Values,
-    thermal_resistance: Values,
-    time_constant: Values,
-    coefficient: Values,
-    over: Values,
-    pause: Values,
-) -> Array:
-    """Return how much a small part is warmer than its surroundings after ever so many overs, at the end of one.
-
-    Parameters
-    ----------
-    heat : in the part when cold [W], shape (...)
-    thermal_resistance : from the part to its surroundings [K/W], broadcast
-    time_constant : heat capacity times that resistance [s], above 0, broadcast
-    coefficient : growth of the heat with the rise [1/K], referred to the cold part, broadcast
-    over : length of each transmission [s], above 0, finite, broadcast
-    pause : length of each pause [s], 0 or more, inf for a single over, broadcast
-
-    Returns
-    -------
-    rise [K], broadcast shape; inf where an over adds what a pause does not take away
-
-    Raises
-    ------
-    ValueError : a time constant, an over or a pause out of its range
-
-    Valid     as `lumped_rise`.
-    Source    first-order differential equation, in the state that an over and a pause bring back.
-    """
-    once = lumped_rise(heat, thermal_resistance, time_constant, coefficient, over)
-    steps, feedback = _lumped(heat, thermal_resistance, time_constant, coefficient, over)
-    if not np.all(np.isfinite(steps)) or not np.all(steps > 0.0) or not np.all(np.asarray(pause) >= 0.0):
-        raise ValueError("an over must be above 0 and finite, a pause 0 or more")
-    kept = (1.0 - feedback) * steps + np.asarray(pause) / time_constant
-    settles = kept > 0.0
-    return np.asarray(np.where(settles, once / -np.expm1(-np.where(settles, kept, 1.0)), np.inf))
-
-
-def _lumped(
-    heat: Values, thermal_resistance: Values, time_constant: Values, coefficient: Values, over: Values
-) -> tuple[Array, Array]:
-    """Return the over in time constants, and the share of the heat led away by which it grows."""
-    if not np.all(np.asarray(time_constant) > 0.0) or not np.all(np.asarray(over) >= 0.0):
-        raise ValueError("a time constant must be above 0, an over 0 or more")
-    if not np.all(np.asarray(heat) >= 0.0) or not np.all(np.asarray(thermal_resistance) >= 0.0):
-        raise ValueError("heat and thermal resistance must not be negative")
-    return np.asarray(over) / time_constant, np.asarray(heat) * thermal_resistance * coefficient
 
 
 def _refuse_times(times: Values, least: float) -> None:

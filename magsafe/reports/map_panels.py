@@ -51,10 +51,6 @@ class Panels:
     def _grids(self) -> tuple[Grid, ...]:
         return () if self.made is None else (self.made.plan, *self.made.sides)
 
-    @staticmethod
-    def _away(spot: Spot) -> float:
-        return spot.fence if spot.fence else hypot(spot.across, spot.along)
-
     def draw(self, top: float) -> float:
         """Draw all views below a height on the sheet, and return where they end [mm]."""
         widest = max((_label_width(spot) for spot in self.inside), default=0.0)

@@ -1,6 +1,6 @@
 """What a map of the keep-out says in words: which transmission, which contours, places, and what is not proven."""
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from math import inf
 
@@ -9,6 +9,7 @@ from magsafe.analysis.people import HALF_WIDTH, POSTURES
 from magsafe.checks.sheet import (
     ORDER,
     DistanceRecord,
+    DistancesRecord,
     ExposureRecord,
     KeepoutPoint,
     KeepoutRecord,
@@ -247,21 +248,39 @@ def _notes(sheet: KeepoutSheet, design: Design, index: int) -> Iterator[str]:
 
 
 def _further(sheet: KeepoutSheet, index: int) -> Iterator[str]:
-    """Yield other transmissions, and sessions, with the directions in which they reach further than the one shown."""
+    """Yield other transmissions, and sessions, with the directions in which they reach further than the one shown.
+
+    A session reaches further in most of them, so of these only any direction is told, the strictest rule of each tier.
+    """
     shown = {(each.rule, each.who): each.keepout for each in sheet.operating_points[index].exposure}
-    others: list[tuple[str, Sequence[ExposureRecord | SessionExposure]]] = [
-        *((words.short(point.name), point.exposure) for i, point in enumerate(sheet.operating_points) if i != index),
-        *((f"worked in turn {session.name}", session.exposure) for session in sheet.sessions),
-    ]
-    for name, exposure in others:
-        found = []
-        for there in exposure:
-            here = shown.get((there.rule, there.who))
-            if here is None or there.keepout is None:
-                continue
-            for direction in _DIRECTIONS:
-                ours, theirs = getattr(here, direction), getattr(there.keepout, direction)
-                if ours is not None and theirs is not None and _metres(theirs) > _metres(ours):
-                    found.append(f"{direction.replace('_', ' ')} {metres(theirs)} m for {there.rule} {there.who}")
+    for other, point in enumerate(sheet.operating_points):
+        found = list(_directions(shown, point.exposure)) if other != index else []
         if found:
-            yield f"{name} ({', '.join(found)})"
+            told = (f"{name.replace('_', ' ')} {metres(there)} m for {rule} {who}" for rule, who, name, there in found)
+            yield f"{words.short(point.name)} ({', '.join(told)})"
+    for session in sheet.sessions:
+        found = list(_directions(shown, session.exposure))
+        any_way = [
+            (who, farthest([there for _, its, name, there in found if (its, name) == (who, "any_direction")]))
+            for who in dict.fromkeys(who for _, who, _, _ in found)
+        ]
+        told = [
+            f"{most} m for {'the public' if who == 'public' else 'trained people'}" for who, most in any_way if most
+        ]
+        if found:
+            reach = f"any direction {', '.join(told)}" if told else "in single directions"
+            yield f"worked in turn {session.name} ({reach})"
+
+
+def _directions(
+    shown: Mapping[tuple[str, str], DistancesRecord | None], exposure: Sequence[ExposureRecord | SessionExposure]
+) -> Iterator[tuple[str, str, str, DistanceRecord]]:
+    """Yield rule, tier, direction and distance where that is further than what is shown."""
+    for there in exposure:
+        here = shown.get((there.rule, there.who))
+        if here is None or there.keepout is None:
+            continue
+        for name in _DIRECTIONS:
+            ours, theirs = getattr(here, name), getattr(there.keepout, name)
+            if ours is not None and theirs is not None and _metres(theirs) > _metres(ours):
+                yield there.rule, there.who, name, theirs

@@ -298,11 +298,10 @@ def test_a_sheet_put_into_a_gap_strengthens_the_field_in_its_air(air: float, she
 # Corona --------------------------------------------------------------------------------------------------------
 
 
-def test_the_margin_to_corona() -> None:
+def test_radio_frequency_and_roughness_lower_the_onset_of_corona() -> None:
     onset = float(corona.onset_field(2e-3, 0.9))
-    assert float(corona.onset_margin(onset, 2e-3, 0.9, ())) == pytest.approx(1.0)
-    assert float(corona.onset_margin(onset / 2.0, 2e-3, 0.9)) == pytest.approx(2.0 * 0.8 * 0.8)
-    assert float(corona.onset_margin(0.0, 2e-3, 0.9)) == inf
+    assert float(corona.derated_onset_field(2e-3, 0.9, ())) == pytest.approx(onset)
+    assert float(corona.derated_onset_field(2e-3, 0.9)) == pytest.approx(onset * 0.8 * 0.8)
 
 
 @UNHURRIED
@@ -313,7 +312,8 @@ def test_a_thin_conductor_stands_a_stronger_field_but_a_smaller_charge(
     assert corona.onset_field(radius * more, density) < corona.onset_field(radius, density)
     charge = 1e-6
     thin, thick = (
-        float(corona.onset_margin(corona.line_charge_field(-charge, r), r, density)) for r in (radius, radius * more)
+        float(corona.derated_onset_field(r, density) / corona.line_charge_field(-charge, r))
+        for r in (radius, radius * more)
     )
     assert thin < thick
     assert corona.onset_field(radius, density * 0.9) < corona.onset_field(radius, density)
@@ -363,8 +363,6 @@ def test_parts_that_cannot_be_are_refused() -> None:
         corona.onset_field(1e-3, nan)
     with pytest.raises(ValueError, match="radius"):
         corona.line_charge_field(1e-9, -1e-3)
-    with pytest.raises(ValueError, match="crest of a field"):
-        corona.onset_margin(-1.0, 1e-3, 1.0)
     with pytest.raises(ValueError, match="capacitance"):
         section_shares(np.array([1e-12, 0.0]))
     with pytest.raises(ValueError, match="permittivities"):

@@ -25,8 +25,6 @@ from magsafe.physics.heat import (
 )
 from magsafe.physics.warming import (
     heat_capacity_per_metre,
-    lumped_repeated_rise,
-    lumped_rise,
     repeated_over_temperature,
     temperature_after,
     temperature_history,
@@ -255,35 +253,6 @@ def test_a_history_that_leaves_the_range_says_so() -> None:
     assert np.isinf(temperature_after(60.0, 303.15, ElectricHeat(1e4, 0.004), BRIGHT, AIR, CAPACITY))
 
 
-def test_a_lumped_part_warms_as_one_of_first_order() -> None:
-    """P R (1 - exp(-t/tau)): 63.2 % after one time constant; a row of overs sums a geometric series."""
-    assert float(lumped_rise(10.0, 5.0, 30.0, 0.0, 30.0)) == pytest.approx(50.0 * (1.0 - np.exp(-1.0)), rel=1e-12)
-    assert float(lumped_rise(10.0, 5.0, 30.0, 0.0, np.inf)) == pytest.approx(50.0, rel=1e-12)
-    once, fall = 50.0 * (1.0 - np.exp(-20.0 / 30.0)), np.exp(-60.0 / 30.0)
-    series = once * sum(fall**n for n in range(60))
-    assert float(lumped_repeated_rise(10.0, 5.0, 30.0, 0.0, 20.0, 40.0)) == pytest.approx(series, rel=1e-12)
-    assert float(lumped_repeated_rise(10.0, 5.0, 30.0, 0.0, 20.0, np.inf)) == pytest.approx(once, rel=1e-12)
-    assert float(lumped_repeated_rise(10.0, 5.0, 30.0, 0.0, 20.0, 0.0)) == pytest.approx(50.0, rel=1e-12)
-
-
-def test_a_part_whose_heat_grows_with_its_warmth() -> None:
-    """Heat P (1 + a rise): steady at P R / (1 - P R a); beyond P R a = 1 it runs away, in time as an exponential."""
-    coefficients = np.array([0.0, 0.01, 0.02, 0.03])
-    steady = lumped_rise(10.0, 5.0, 30.0, coefficients, np.inf)
-    np.testing.assert_allclose(steady, [50.0, 100.0, np.inf, np.inf])
-    soon = lumped_rise(10.0, 5.0, 30.0, coefficients, 60.0)
-    # By small steps of the differential equation.
-    rise = np.zeros(4)
-    for _ in range(60_000):
-        middle = rise + 0.5e-3 * (50.0 * (1.0 + coefficients * rise) - rise) / 30.0
-        rise = rise + 1e-3 * (50.0 * (1.0 + coefficients * middle) - middle) / 30.0
-    np.testing.assert_allclose(soon, rise, rtol=1e-6)
-    ever = lumped_repeated_rise(10.0, 5.0, 30.0, coefficients, 60.0, 20.0)
-    assert np.isinf(ever).tolist() == [False, False, False, True]
-    assert float(lumped_rise(0.0, 5.0, 30.0, 0.5, np.inf)) == 0.0
-    assert float(lumped_repeated_rise(0.0, 5.0, 30.0, 0.5, 1.0, 0.0)) == 0.0
-
-
 def test_a_loop_that_grows_drifts_down_by_its_growth() -> None:
     """f goes with size^-1/2 for L alone and with 1/size for both: finite growth against the linear form."""
     inductance_only, both = frequency_drift(7.1e6, 17e-6, 40.0)
@@ -322,11 +291,6 @@ def test_heat_capacity_is_that_of_the_metal() -> None:
         lambda: temperature_history(np.array([1.0]), 1.0, -1.0, 300.0, *CONDUCTOR),
         lambda: repeated_over_temperature(0.0, 1.0, *CONDUCTOR),
         lambda: repeated_over_temperature(1.0, -1.0, *CONDUCTOR),
-        lambda: lumped_rise(1.0, 1.0, 0.0, 0.0, 1.0),
-        lambda: lumped_rise(1.0, 1.0, 1.0, 0.0, -1.0),
-        lambda: lumped_rise(-1.0, 1.0, 1.0, 0.0, 1.0),
-        lambda: lumped_repeated_rise(1.0, 1.0, 1.0, 0.0, np.inf, 1.0),
-        lambda: lumped_repeated_rise(1.0, 1.0, 1.0, 0.0, 1.0, -1.0),
     ],
 )
 def test_what_cannot_be_is_refused(wrong: Callable[[], object]) -> None:
