@@ -264,11 +264,10 @@ def _further(sheet: KeepoutSheet, index: int) -> Iterator[str]:
             (who, farthest([there for _, its, name, there in found if (its, name) == (who, "any_direction")]))
             for who in dict.fromkeys(who for _, who, _, _ in found)
         ]
-        told = [
-            f"{most} m for {'the public' if who == 'public' else 'trained people'}" for who, most in any_way if most
-        ]
+        people = {"public": "the public", "trained": "trained people"}
+        reaches = [f"{most} m for {people[who]}" for who, most in any_way if most]
         if found:
-            reach = f"any direction {', '.join(told)}" if told else "in single directions"
+            reach = f"any direction {', '.join(reaches)}" if reaches else "in single directions"
             yield f"worked in turn {session.name} ({reach})"
 
 

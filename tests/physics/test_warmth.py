@@ -1,7 +1,8 @@
 """How warm conductor and joints get: bounds, conservation, what must never cool them, drift, ceilings."""
 
 from copy import deepcopy
-from math import inf, pi
+from dataclasses import replace
+from math import inf, pi, sqrt
 from typing import Any
 
 import numpy as np
@@ -17,8 +18,9 @@ from magsafe.analysis.operating_point import OperatingPoint, operating_point
 from magsafe.analysis.warmth import POORER, Warmth, joint_warmth, warmth
 from magsafe.checks.sheet import Finding, Sheet
 from magsafe.design.model import Design
+from magsafe.physics.atmosphere import standard_pressure
 from magsafe.physics.fin import fin_resistance, thermal_conductivity
-from magsafe.physics.heat import ElectricHeat, Surface, Surroundings, steady_temperature
+from magsafe.physics.heat import ElectricHeat, Surface, Surroundings, lost_heat, steady_temperature
 from magsafe.physics.warming import repeated_over_temperature, temperature_after
 from magsafe.spread import Spread
 
@@ -496,3 +498,25 @@ def test_the_scatter_of_measured_convection_is_taken_off_the_hot_end(plane: str,
     assert shares[0] == pytest.approx(1.2)
     assert np.all(np.diff(shares) < 0.0)
     assert np.broadcast_to(found.bare.surface.convection_share, 3)[2] == shares[2]
+
+
+def test_heat_told_at_the_start_of_an_over_is_brought_to_20_degrees() -> None:
+    """A resistance that is a fifth higher there, at the conductor's own temperature, is that of a fifth less at 20."""
+    warm, cold = replace(body(24.0, inf, 0.0), growth=1.2), body(20.0, inf, 0.0)
+    assert warm.temperature() == cold.temperature()
+    assert warm_of(loop__conductor__temperature="80 degC").growth == pytest.approx(
+        (1.0 + 0.0033 * 60.0) ** 0.5, rel=0.01
+    )
+
+
+def test_what_a_joint_rises_for_each_watt_by_hand() -> None:
+    """One over the root of (loss a kelvin, heat conducted, section); 49 MS/m less its scatter, 22 x 1 mm, one side."""
+    design = design_of(loop__joint=[JOINT])
+    point = point_of(design)
+    assert point.chain is not None
+    assert point.warmth is not None
+    (joint,) = joint_warmth(point.chain, design, point.warmth)
+    dull = Surface(0.022, 0.022, 0.0, 1.0, 0.8 * 0.8)
+    lost = float(lost_heat(323.15, dull, Surroundings(313.15, float(standard_pressure(2000.0))))) / 10.0
+    conducted = 0.8 * 2.44e-8 * 49.3e6 * 0.94 * 313.15
+    assert joint.resistance == pytest.approx(1.0 / sqrt(lost * conducted * pi * 1e-3 * 21e-3), rel=0.01)
