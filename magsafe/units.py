@@ -226,11 +226,13 @@ def plain(value: float, kind: Kind) -> str:
 
 
 def magnitude(value: float, si: str, unit: str) -> float:
-    """Return an SI value as a number of `unit`; `%` and `dB` are ours, not pint's."""
+    """Return an SI value as a number of `unit`; `%` and `dBi`, of a gain as a ratio, are ours, not pint's."""
     if unit == si or unit in ("", "1"):
         return value
     if unit == "%":
         return value * 100.0
+    if unit == "dBi":
+        return 10.0 * log10(value)
     return value * _factor(si, unit)
 
 

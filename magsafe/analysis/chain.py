@@ -97,15 +97,14 @@ class Chain:
     def corners(self, states: Iterable[State]) -> tuple[Corner, ...]:
         """Return states with every excess of the reactance that the port's gap leaves open."""
         return tuple(
-            Corner(state, self._excess(state.flow, sign), self.internal)
-            for state in states
-            for sign in (-1.0, 0.0, 1.0)
+            Corner(state, self._excess(state, sign), self.internal) for state in states for sign in (-1.0, 0.0, 1.0)
         )
 
-    def _excess(self, flow: Flow, sign: float) -> float:
+    def _excess(self, state: State, sign: float) -> float:
         if not self.tuned:
             return 0.0
-        across = sign * 2.0 * pi * self.frequency * self.gap_capacitance * flow.reactance
+        reactance = state.flow.reactance + state.shift
+        across = sign * 2.0 * pi * self.frequency * self.gap_capacitance * reactance
         return across / (1.0 - across)
 
     @property
@@ -113,7 +112,7 @@ class Chain:
         """Whether the gap's capacitance is a small part of what tunes the port, so that an excess can stand for it."""
         susceptance = 2.0 * pi * self.frequency * self.gap_capacitance
         states = (*self.around.least, *self.around.most)
-        return all(0.0 < state.flow.reactance * susceptance < LARGEST_SHARE for state in states)
+        return all(0.0 < (state.flow.reactance + state.shift) * susceptance < LARGEST_SHARE for state in states)
 
     @property
     def steepness(self) -> float:
@@ -145,7 +144,7 @@ class Chain:
 
     @property
     def most(self) -> tuple[Corner, ...]:
-        """The corners with the most; empty where soil adds an amount that is not computed."""
+        """The corners with the most; empty where no height bounds what soil adds."""
         return self.corners(self.around.most)
 
     @property

@@ -22,9 +22,10 @@ _PIECES = np.linspace(0.0, 1.0, 9)  # of a segment, for distances
 
 
 def most_eirp(point: OperatingPoint, power: float) -> float | None:
-    """Return the most equivalent isotropically radiated power [W] in free space for a power at the transmitter [W].
+    """Return the most equivalent isotropically radiated power [W] for a power at the transmitter [W].
 
-    Least line loss, highest efficiency, greater directivity; None where one of them is not known.
+    Least line loss, highest efficiency, greater directivity in free space; over the ground, where that is known, if it
+    sends more into one direction. None where one of them is not known.
     """
     arriving = point.power_at_loop.high
     efficiency = point.figures.conductor_efficiency.spread.high
@@ -32,7 +33,8 @@ def most_eirp(point: OperatingPoint, power: float) -> float | None:
     known = [gain for gain in gains if gain is not None]
     if arriving is None or efficiency is None or len(known) < len(gains):
         return None
-    return power * arriving / point.power * efficiency * max(known)
+    over_ground = (point.figures.effective_isotropic_radiated_power.spread.high or 0.0) / point.power
+    return power * max(arriving / point.power * efficiency * max(known), over_ground)
 
 
 def threshold_power(exemption: Exemption, distances: Array, frequency: float) -> Array:

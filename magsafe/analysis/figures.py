@@ -46,6 +46,14 @@ class Figures:
     tuning_capacitance: Figure
     conductor_efficiency: Figure
     overall_efficiency: Figure
+    gain: Figure
+    gain_elevation: Figure
+    share_above_60_degrees: Figure
+    share_below_20_degrees: Figure
+    effective_isotropic_radiated_power: Figure
+    mean_effective_isotropic_radiated_power: Figure
+    effective_radiated_power: Figure
+    mean_effective_radiated_power: Figure
     directivity_along_axis: Figure
     directivity_in_plane: Figure
     unloaded_q: Figure
@@ -67,11 +75,11 @@ class Figures:
 
 _LOOP_SOURCE = f"Harrington 1968 (memory); {STUDY}"
 _YAGHJIAN = "Yaghjian & Best 2005 (memory)"
-_SOIL = "the loss in the soil is not computed by this version"
-_NO_SOIL = f"{_SOIL}: it lowers this, so only the other end is known"
-_SOIL_ADDS = f"{_SOIL}: it adds to this"
-_NO_HEIGHT = "loop.centre_height is not given: how much of the inductance the ground's image takes away is open"
-_SOIL_WIDENS = f"{_SOIL}: it widens this"
+NO_HEIGHT = "loop.centre_height is not given, so nothing bounds what the ground takes"
+_NO_SOIL = f"{NO_HEIGHT}: it lowers this, so only the other end is known"
+_SOIL_ADDS = f"{NO_HEIGHT}: it adds to this"
+_NO_REACTANCE = "loop.centre_height is not given: how far the ground moves the reactance is open"
+_SOIL_WIDENS = f"{NO_HEIGHT}: it widens this"
 
 
 def figures_of(chain: Chain, design: Design) -> Figures:
@@ -83,12 +91,10 @@ def figures_of(chain: Chain, design: Design) -> Figures:
         "radiation_resistance": _radiation(chain),
         "conductor_resistance": _conductor(chain),
         "joint_resistance": _joints(chain),
-        "ground_resistance": _ground(chain),
         "total_resistance": _total(chain),
         "port_reactance": _reactance(chain),
         "inductance": _inductance(chain),
         "conductor_efficiency": _efficiency(chain),
-        "overall_efficiency": _not_yet("1", "the power that leaves over real ground"),
         "largest_current": _answer(
             chain, chain.largest_current, VOLTAGE_ERROR, "A", "RMS, anywhere on the conductor", _LOOP_SOURCE
         ),
@@ -142,18 +148,22 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
     volts = [[crest, *(_crest(each, power or 0.0) for each in every)] for power in (chain.power.low, chain.power.high)]
     resonance = nearest_resonance(design, chain.frequency)
     open_end, say = not chain.most, _say(chain)
+    every_or_likely = (likely, *every)
     resistance = Spread(
-        min(each.real for each in every), likely.real, None if open_end else max(each.real for each in every)
+        min(each.real for each in every_or_likely),
+        likely.real,
+        None if open_end else max(each.real for each in every_or_likely),
     )
     reactance = Spread(
-        min(each.imag for each in every) if chain.around.height_known else None,
+        min(each.imag for each in every_or_likely) if chain.around.height_known else None,
         likely.imag,
-        max(each.imag for each in every),
+        max(each.imag for each in every_or_likely) if chain.around.height_known else None,
     )
+    match = tuned_circuit.standing_wave_ratio(likely, 50.0)
     found = Spread(
-        None if open_end else min(swr),
-        tuned_circuit.standing_wave_ratio(likely, 50.0),
-        None if open_end else max(swr),
+        None if open_end else min(match, *swr),
+        match,
+        None if open_end else max(match, *swr),
     )
     return {
         "terminal_resistance": Figure(
@@ -207,7 +217,7 @@ def _say(chain: Chain) -> str:
 
 
 def _no_height(chain: Chain) -> str:
-    return "" if chain.around.height_known else _NO_HEIGHT
+    return "" if chain.around.height_known else _NO_REACTANCE
 
 
 def _unit(name: str) -> str:
@@ -224,7 +234,10 @@ def _unit(name: str) -> str:
         "capacitor_dissipation": "W",
         "conductor_temperature_rise": "K",
         "coupling_loop_diameter": "m",
+        "gain_elevation": "deg",
     }
+    if name.endswith("radiated_power"):
+        return "W"
     return units.get(name, "ohm" if name.endswith(("_resistance", "_reactance")) else "1")
 
 
@@ -283,22 +296,6 @@ def _capacitor(chain: Chain) -> Figure:
     return _part(chain, [chain.capacitor, *chain.padding], 0.0, method, "the design; common practice")
 
 
-def _ground(chain: Chain) -> Figure:
-    if not chain.around.ground_known:
-        return _not_yet("ohm", "the loss in real ground")
-    states = zip(chain.around.free, chain.around.stated, strict=True)
-    added = chain.around.likely.radiated - chain.around.free[0].radiation
-    ends = [
-        (corner.state.radiated - alone.radiation) * corner.growth
-        for alone, state in states
-        for corner in chain.corners([state])
-    ]
-    error = RESISTANCE_ERROR * chain.around.likely.radiated if added else 0.0
-    found = Spread(min(ends) - error, added, max(ends) + error)
-    method = "the loop with its image in a perfect plane, solved, less the loop alone; 0 in free space"
-    return Figure(found, "ohm", method, _LOOP_SOURCE)
-
-
 def _total(chain: Chain) -> Figure:
     found = Spread(
         min(chain.resistance("low", corner) for corner in chain.least),
@@ -310,10 +307,12 @@ def _total(chain: Chain) -> Figure:
 
 
 def _reactance_ends(chain: Chain) -> Spread:
-    """Return the port reactance [ohm]; a plane may lower it, the port's gap move it either way."""
+    """Return the port reactance [ohm], moved by what is below and by the port's gap; open where no height is stated."""
+    if not chain.around.height_known:
+        return Spread(None, chain.likely.reactance, None)
     ends = [corner.reactance for corner in chain.every]
-    least = min(ends) if chain.around.height_known else None
-    return Spread(least, chain.likely.reactance, max(ends)).widened(chain.reactance_error, chain.reactance_error)
+    found = Spread(min(ends), chain.likely.reactance, max(ends))
+    return found.widened(chain.reactance_error, chain.reactance_error)
 
 
 def _reactance(chain: Chain) -> Figure:

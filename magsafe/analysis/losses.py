@@ -32,7 +32,7 @@ class Corner:
     def reactance(self) -> float:
         """Reactance of the loop at the port, internal part included [ohm]."""
         flow = self.state.flow
-        return (flow.reactance + self.internal * flow.internal_length) * (1.0 + self.excess)
+        return (flow.reactance + self.state.shift + self.internal * flow.internal_length) * (1.0 + self.excess)
 
     @property
     def radiated(self) -> float:
@@ -52,7 +52,7 @@ class Corner:
         """
         flow = self.state.flow
         inner = self.internal * flow.internal_length
-        return (flow.slope + flow.reactance + 1.5 * inner) * self.growth
+        return (flow.slope + flow.reactance + self.state.shift + 1.5 * inner) * self.growth
 
     def weight(self, where: Where | Membership, end: str) -> float:
         """Return by what a part's own value is multiplied to be seen at the port, at one end of what is known."""

@@ -9,9 +9,10 @@ from magsafe import words
 from magsafe.analysis.chain import VOLTAGE_ERROR, Chain, GroundCase, chain
 from magsafe.analysis.closed_form import SecondOpinion, second_opinion
 from magsafe.analysis.exposure import use_of
-from magsafe.analysis.figures import Figure, Figures, figures_of, unknown_figures
+from magsafe.analysis.figures import NO_HEIGHT, Figure, Figures, figures_of, unknown_figures
 from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
 from magsafe.analysis.losses import conductivity
+from magsafe.analysis.sky_figures import sky_figures
 from magsafe.analysis.warmth import RUNS_AWAY, Warmth, warmth
 from magsafe.analysis.wires import clearance, electrical_radius, positions, shape_of, shortest_side, wire_of
 from magsafe.design.model import Design, Loop, Transmission
@@ -84,13 +85,15 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
     if made is None:
         figures = unknown_figures(line, frequency, reasons)
         return OperatingPoint(transmission, power, arriving, figures, reasons, limit, beyond)
-    warm = warmth(made, design, use_of(transmission))
+    warm, figures = warmth(made, design, use_of(transmission)), figures_of(made, design)
+    free_gain = (figures.directivity_along_axis, figures.directivity_in_plane)
+    over_ground = sky_figures(made, arriving, use_of(transmission).duty, free_gain)
     bare_voltage = made.dangerous(made.voltage, "bare") * (1.0 + made.voltage_error)
     return OperatingPoint(
         transmission=transmission,
         power=power,
         power_at_loop=arriving,
-        figures=replace(figures_of(made, design), conductor_temperature_rise=_rise(warm)),
+        figures=replace(figures, conductor_temperature_rise=_rise(warm), **over_ground),
         tuning_limit=limit,
         bare_voltage=bare_voltage if tuned else None,
         bare_current=made.dangerous(made.current, "bare") * (1.0 + VOLTAGE_ERROR),
@@ -114,10 +117,7 @@ def _rise(warm: Warmth) -> Figure:
         "overs"
     )
     if found.low is None:
-        why = (
-            why
-            or "the loss in the soil is not computed by this version: it lowers this, so only the other end is known"
-        )
+        why = why or f"{NO_HEIGHT}: it lowers this, so only the other end is known"
     return Figure(Spread(*ends), "K", method, "Churchill & Chu 1975 by the ht library; radiation; sun", why)
 
 

@@ -15,8 +15,10 @@ from magsafe.analysis.chain import (
     corner_constant,
     crowded_inductance,
 )
-from magsafe.analysis.flow import TUNING_SCAN, inductance, reactances, tuning_limit
+from magsafe.analysis.flow import TUNING_SCAN, flow, inductance, reactances, tuning_limit
 from magsafe.analysis.losses import Corner, conductor_loss
+from magsafe.analysis.soil import permittivities
+from magsafe.analysis.surroundings import over_soil
 from magsafe.analysis.wires import electrical_radius, positions
 from magsafe.design import tables
 from magsafe.design.model import Capacitor, Design
@@ -29,6 +31,7 @@ from magsafe.spread import Spread
 # Frequencies at which the current is solved: at low ones the inductance hardly changes; towards the anti-resonance they
 # lie evenly. Half as many again move no end by a hundred-thousandth (a test).
 SOLVED = (12, 40)
+ASKED_OF_SOIL = (0.05, 16)  # the first of the highest, and how many: for what soil adds
 FINE = 4000  # between them, on a spline
 STEP_SWR = 1.5  # a drive shall be able to come nearer to the match than this
 
@@ -104,13 +107,16 @@ def needed_capacitance(design: Design) -> Needed:
     internal = np.array([conductor_loss(design.loop.conductor, float(each), coldest)[1] for each in solved])
     free = _followed(design, solved, omega, internal, image=False)
     imaged = _followed(design, solved, omega, internal, image=True) if _has_image(design) else []
+    shifted = _over_soil(design, highest, omega, free) if _has_image(design) else []
     likely = imaged[0][0] if design.ground_name == "perfect" and imaged else free[0][0]
+    if shifted and design.ground_name is not None:
+        likely = shifted[0][0]
     # The stated error is one of the inductance: near the anti-resonance the reactance moves by more.
     # A loop without an anti-resonance in reach may be capacitive at its port before the last frequency.
     inductive = np.cumprod(free[0][0] > 0.0).astype(bool)
     steepness = np.gradient(np.log(np.where(inductive, free[0][0], 1.0)), np.log(omega))
     error = _inductance_error(design) * np.maximum(1.0, steepness)
-    ends = [end for bare, perfect in (*free, *imaged) for end in _with_any_gap(design, omega, bare, perfect)]
+    ends = [end for bare, perfect in (*free, *imaged, *shifted) for end in _with_any_gap(design, omega, bare, perfect)]
     over, under = np.max(ends, axis=0) * (1.0 + error), np.min(ends, axis=0) * (1.0 - error)
     gap = GAP_CAPACITANCE[0] + GAP_CAPACITANCE[1] * 2.0 * electrical_radius(design.loop.conductor)
     fit = np.cumprod((omega * gap * over < LARGEST_SHARE) & (under > 0.0) & inductive).astype(bool)
@@ -144,6 +150,31 @@ def _followed(
         found.append(
             (_between(solved, perfect + internal * along, omega), _between(solved, perfect, omega)),
         )
+    return found
+
+
+def _over_soil(
+    design: Design, highest: float, omega: Array, free: list[tuple[Array, Array]]
+) -> list[tuple[Array, Array]]:
+    """Return the reactance over the likely, the least and the most that soil adds, each place of the capacitor in turn.
+
+    What soil adds over what there is changes slowly with frequency; below the first that is asked it is taken as there.
+    """
+    asked = np.linspace(ASKED_OF_SOIL[0] * highest, 0.999 * highest, int(ASKED_OF_SOIL[1]))
+    if not len(permittivities(design, highest)):
+        return []
+    from scipy.interpolate import CubicSpline  # noqa: PLC0415  (slow to import)
+
+    found, place = [], np.maximum(omega, 2.0 * pi * asked[0])
+    for position, (bare, perfect) in zip(positions(design), free, strict=True):
+        shares = []
+        for frequency in asked:
+            alone = flow(design, float(frequency), position, image=False)
+            soils = permittivities(design, float(frequency))
+            shift = over_soil(alone, alone.radiation, float(frequency), soils, likely=True).shift
+            shares.append([shift[0] / alone.reactance, shift.min() / alone.reactance, shift.max() / alone.reactance])
+        share = CubicSpline(2.0 * pi * asked, np.array(shares))(place)
+        found += [(bare + each * perfect, perfect + each * perfect) for each in share.T]
     return found
 
 

@@ -156,15 +156,21 @@ def crowding(shape: Shape) -> Array | None:
 
 
 def extent(design: Design) -> float:
-    """Return how far the conductor's axis reaches from the loop's centre [m], with all turns and their closing link."""
+    """Return how far the conductor's axis reaches from the loop's centre [m], with all turns and their closing link.
+
+    Of turns that find no room inside the outermost one, which nothing is computed of, how far that one reaches.
+    """
     if design.loop.turns == 1:
         return outline(design.loop).reach
     centre = np.array([0.0, 0.0, design.loop.centre_height or 0.0])
     frequency = design.transmission[0].frequency
-    reached = [
-        float(np.linalg.norm(wire_of(shape_of(design.loop, frequency, position)).nodes - centre, axis=1).max())
-        for position in positions(design)
-    ]
+    try:
+        reached = [
+            float(np.linalg.norm(wire_of(shape_of(design.loop, frequency, position)).nodes - centre, axis=1).max())
+            for position in positions(design)
+        ]
+    except ValueError:
+        return outline(design.loop).reach
     return max(outline(design.loop).reach, *reached)
 
 

@@ -11,7 +11,7 @@ from magsafe.analysis.rated_current import is_rated_for_heat
 from magsafe.analysis.rated_voltage import RATED_TO
 from magsafe.design import tables, warmth_tables
 from magsafe.design.implied import AT_THE_CAPACITOR
-from magsafe.design.model import Design
+from magsafe.design.model import Design, SoilConstants
 
 
 def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, ...]:
@@ -38,12 +38,44 @@ def _ground(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
     if any(point.ground_left_out for point in points):
         yield (
             "Likely values leave the ground out. Volts and amps at worst take the least resistance that free space, "
-            "a perfect plane or any soil can give; the loss in the soil, which lowers them, is not computed."
+            "a perfect plane or any soil can give."
+        )
+    elif name != "perfect":
+        yield (
+            f"{_soil(design)}. Volts, amps and fields at worst take the least resistance of free space, a perfect "
+            "plane and all of that soil."
+        )
+    if name not in (None, "perfect"):
+        yield (
+            "The soil is flat, even and without end. What it takes is by the conductor's current and charge; the "
+            "electric field of the capacitor's own body, wet trees, rebar and other metal are not computed."
         )
     if name is None:
         yield "site.ground is not given: any ground is taken as possible."
     if design.loop.centre_height is None:
         yield "loop.centre_height is not given: any height is taken as possible."
+
+
+def _soil(design: Design) -> str:
+    """Return the span of soil that is counted, and where it comes from."""
+    stated = design.site.ground
+    if isinstance(stated, SoilConstants):
+        conductivity, permittivity = stated.conductivity, stated.permittivity
+        span = _span(1e3 * conductivity.low, 1e3 * conductivity.high), _span(permittivity.low, permittivity.high)
+        return f"The soil has {span[0]} mS/m and a relative permittivity of {span[1]}, as stated"
+    row = tables.soils()[stated or ""]
+    siemens, relative = (
+        _span(scale * (each.low or 0.0), scale * (each.high or 0.0))
+        for each, scale in ((row.conductivity, 1e3), (row.permittivity, 1.0))
+    )
+    return (
+        f"{row.name}: {siemens} mS/m and a relative permittivity of {relative} are taken ({row.source}; "
+        f"{row.provenance}), for constants of one plot vary tenfold"
+    )
+
+
+def _span(low: float, high: float) -> str:
+    return f"{low:.3g}" if low == high else f"{low:.3g} to {high:.3g}"
 
 
 def _losses(design: Design) -> Iterator[str]:

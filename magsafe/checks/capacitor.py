@@ -11,6 +11,7 @@ from magsafe.analysis.line_capacitor import is_complete
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.rated_current import beyond_rated_air, rated_current
 from magsafe.analysis.rated_voltage import not_rated, rated_voltage
+from magsafe.analysis.soil import LOWEST, is_too_low
 from magsafe.checks.gap import by_gap_alone
 from magsafe.checks.judge import Check, judge, judge_between, stopped, unproven
 from magsafe.checks.line_capacitor import by_sizes_alone
@@ -98,7 +99,7 @@ def tuning_range(design: Design, point: OperatingPoint) -> Finding:
     """Can the capacitor tune this frequency, with what its padding leaves for it?"""
     part, frequency = design.capacitor, point.transmission.frequency
     as_stated, value = main_capacitance(point)
-    if missing := _not_reached(point):
+    if missing := _not_reached(point) or _too_low(design):
         return unproven(_RANGE, missing, value)
     if impossible := main_part(point).missing:
         return stopped(_RANGE, value, impossible, CHANGE)
@@ -121,6 +122,15 @@ def tuning_range(design: Design, point: OperatingPoint) -> Finding:
     usual = f" (not given for all of it: {100.0 * UNSTATED_TOLERANCE:g} % taken, common practice)" if guessed else ""
     told = f"what the padding and its tolerance{usual} leave for it: {found.because}"
     return found.model_copy(update={"because": told})
+
+
+def _too_low(design: Design) -> str:
+    """Return why the reactance is not computed near soil; empty where it is."""
+    if not is_too_low(design):
+        return ""
+    return (
+        f"it is nearer to soil than {LOWEST:g} of its radii, where soil may raise its reactance beyond what is computed"
+    )
 
 
 def _not_reached(point: OperatingPoint) -> str:

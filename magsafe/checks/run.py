@@ -18,6 +18,7 @@ from magsafe.checks.deratings import deratings
 from magsafe.checks.exemption import exemptions
 from magsafe.checks.exposure import exposure, no_rules
 from magsafe.checks.gap import gap
+from magsafe.checks.ground import ground
 from magsafe.checks.heat import heat
 from magsafe.checks.later import later
 from magsafe.checks.line_capacitor import sizes
@@ -34,6 +35,7 @@ from magsafe.checks.sheet import (
     Sheet,
     worst,
 )
+from magsafe.checks.sky import pattern_record, placing_records
 from magsafe.checks.tuning import tuning_step
 from magsafe.checks.view import View, view_of
 from magsafe.design.model import Design
@@ -81,11 +83,12 @@ def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Fin
     has_capacitor = design.capacitor.kind != "none"
     tuned = _tuned(design, point) if has_capacitor else ()
     resonant = (loop.bandwidth(point), loop.q_bound(point))
-    agreed = loop.methods_agree(point)
+    agreed, grounded = loop.methods_agree(point), ground(design, point)
     findings = (
         *tuned,
         loop.size(design, point),
         *([agreed] if agreed else ()),
+        *([grounded] if grounded else ()),
         *(resonant if has_capacitor else ()),
         *heat(design, point),
         corona(design, point),
@@ -106,6 +109,8 @@ def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Fin
         findings=findings,
         exposure=people,
         exemptions=exemptions(view),
+        pattern=pattern_record(design, point),
+        placings=placing_records(design, point),
     )
 
 

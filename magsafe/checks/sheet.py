@@ -301,8 +301,66 @@ class ExemptionRecord(Record):
     why: str | None = None
 
 
+class PatternCut(Record):
+    """Likely gain in one upright plane through the loop's centre, from one horizon over the zenith to the other.
+
+    `angle` runs from 0 to 180 degrees: to 90 it is the elevation on the side that `towards` names, beyond it 180 less
+    the elevation on the other side, `away`. `gain` is over a source that radiates evenly [1], losses counted.
+    """
+
+    name: str
+    towards: str
+    away: str
+    angle: tuple[float, ...]
+    gain: tuple[float, ...]
+
+
+class LobeRecord(Record):
+    """A direction of a cut that is stronger than those beside it.
+
+    `elevation` is above the horizon [deg], `side` the words of the cut for it, `strength` over the strongest of the
+    whole pattern [1].
+    """
+
+    cut: str
+    side: str
+    elevation: float
+    gain: float
+    strength: float
+
+
+class PatternRecord(Record):
+    """Where the power goes, over the ground as likely: one cut in the loop's plane and one on its axis."""
+
+    ground: str
+    method: str
+    cuts: tuple[PatternCut, ...]
+    lobes: tuple[LobeRecord, ...]
+
+
+class PlacingRecord(Record):
+    """The same loop at another height or in the other plane, likely values for the same power into it.
+
+    `change` is what reaches the sky over what does as designed [1], `low_angle_change` the same of what leaves below 20
+    degrees; both null where nothing is left to compare with.
+    """
+
+    plane: Literal["vertical", "horizontal"]
+    centre_height: float
+    as_designed: bool
+    overall_efficiency: float
+    change: float | None
+    low_angle_change: float | None
+    share_above_60_degrees: float
+    share_below_20_degrees: float
+    capacitor_peak_voltage: float | None
+
+
 class OperatingPointRecord(Record):
-    """One transmission: its figures, its findings, its ceiling, people."""
+    """One transmission: its figures, its findings, its ceiling, people; where its power goes, and what height does.
+
+    `pattern` is null and `placings` empty where the ground or the loop's height is not stated.
+    """
 
     name: str
     frequency: float
@@ -315,6 +373,8 @@ class OperatingPointRecord(Record):
     findings: tuple[Finding, ...]
     exposure: tuple[ExposureRecord, ...] = ()
     exemptions: tuple[ExemptionRecord, ...] = ()
+    pattern: PatternRecord | None = None
+    placings: tuple[PlacingRecord, ...] = ()
 
 
 class DeratingRecord(Record):

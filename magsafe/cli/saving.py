@@ -8,14 +8,14 @@ from pathlib import Path
 from magsafe.errors import CommandError
 
 
-def require_writable(option: str, path: Path, *, force: bool) -> None:
+def require_writable(option: str, path: Path, *, replace: bool) -> None:
     """Raise CommandError where a file cannot be written; told before long computing starts.
 
     Parameters
     ----------
     option : the option that names the file, for the message
     path : the file
-    force : whether a file that is there may be replaced
+    replace : whether a file that is there may be replaced
     """
     try:
         there = path.lstat()
@@ -25,7 +25,7 @@ def require_writable(option: str, path: Path, *, force: bool) -> None:
         raise _unwritable(option, path, error) from None
     if there is not None and path.is_dir():
         raise CommandError(option, f"{path}, a directory", "the name of a file", "add a file's name")
-    if there is not None and not force:
+    if there is not None and not replace:
         raise _exists(option, path)
     if not path.parent.is_dir():
         raise CommandError(
@@ -41,15 +41,15 @@ def require_writable(option: str, path: Path, *, force: bool) -> None:
             trial.unlink()
 
 
-def save(option: str, path: Path, data: bytes, *, force: bool) -> None:
-    """Write a file so that nobody ever meets a part of it; with `force` in the place of one that is there."""
+def save(option: str, path: Path, data: bytes, *, replace: bool) -> None:
+    """Write a file so that nobody ever meets a part of it; with `replace` in the place of one that is there."""
     aside = _aside(path)
     try:
         with aside.open("xb") as file:
             file.write(data)
             file.flush()
             os.fsync(file.fileno())
-        if force:
+        if replace:
             aside.replace(path)
         else:
             _put_where_nothing_is(aside, path)
@@ -79,9 +79,7 @@ def _aside(path: Path) -> Path:
 
 
 def _exists(option: str, path: Path) -> CommandError:
-    return CommandError(
-        option, f"{path}, which exists", "a name that is free", "name another file, or add --force to replace it"
-    )
+    return CommandError(option, f"{path}, which exists", "a name that is free", "name another file, or add --replace")
 
 
 def _unwritable(option: str, path: Path, error: Exception) -> CommandError:

@@ -22,7 +22,7 @@ def rules(
 
 
 def materials() -> None:
-    """List the conductor materials, with conductivity and source."""
+    """List the conductor materials and the grounds, with their constants and sources."""
     from magsafe.reports.tables import show_materials  # noqa: PLC0415  (keeps --help quick)
 
     with reader_may_leave():

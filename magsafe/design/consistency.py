@@ -205,7 +205,7 @@ def _readable_loop(loop: Tree) -> Loop | None:
         return None
     try:
         line = shape.outline(made)
-    except ZeroDivisionError:
+    except (ValueError, ZeroDivisionError):  # an outline without points has no size at all
         return None
     return made if line.perimeter > 0.0 and line.area > 0.0 else None
 

@@ -28,11 +28,11 @@ class Material:
 
 @dataclass(frozen=True, slots=True)
 class Soil:
-    """A ground: conductivity [S/m] and relative permittivity."""
+    """A ground: spans of its conductivity [S/m] and of its relative permittivity."""
 
     name: str
-    conductivity: float
-    permittivity: float
+    conductivity: Spread
+    permittivity: Spread
     source: str
     provenance: str
 
@@ -64,7 +64,9 @@ def materials() -> dict[str, Material]:
 @cache
 def soils() -> dict[str, Soil]:
     """Return the soil table, by name."""
-    return {row["name"]: Soil(**row) for row in _load("soils.toml")["soil"]}
+    spans = ("conductivity", "permittivity")
+    rows = ({**row, **{span: Spread(*row[span]) for span in spans}} for row in _load("soils.toml")["soil"])
+    return {row["name"]: Soil(**row) for row in rows}
 
 
 @cache

@@ -119,7 +119,7 @@ class GroundPattern:
         outside = int(np.count_nonzero(np.abs(elevation - 0.25 * pi) > 0.25 * pi + ALLOWANCE))
         if outside:
             raise ValueError(f"{outside} of {len(elevation)} elevations lie outside 0 to pi/2")
-        direct, turned = _up_and_down(self.free, elevation, azimuth)
+        direct, turned = _up_and_down(self.free.currents, self.free.frequency, elevation, azimuth)
         level, along = reflection(np.asarray(self.permittivity), np.maximum(np.sin(elevation), 0.0))
         return np.asarray(direct + np.stack([along, level], axis=1) * turned)
 
@@ -208,7 +208,7 @@ class GroundPattern:
         """
         self._require_power()
         levels = 8 * ceil(self._phase() / pi) + 45
-        around = 2 * self._steps()
+        around = 4 * ceil(0.5 * self._steps())  # along x and y too, where a loop is strongest
         elevation, azimuth = 0.5 * pi * np.linspace(0.0, 1.0, levels + 1), 2.0 * pi * np.arange(around) / around
         step, turn = 0.5 * pi / levels, 2.0 * pi / around
         for _ in range(PASSES):
@@ -300,12 +300,40 @@ class GroundPattern:
             raise ValueError("the currents send nothing into the sky")
 
 
-def _up_and_down(free: FarField, elevation: Array, azimuth: Array) -> tuple[ComplexArray, ComplexArray]:
+def intensities(
+    currents: SegmentCurrents, frequency: float, permittivity: ComplexArray, elevation: Array, azimuth: Array
+) -> Array:
+    """Return the power per solid angle over several soils.
+
+    Parameters
+    ----------
+    currents : the segments and what flows in them, without an image
+    frequency : of the currents [Hz]
+    permittivity : complex relative permittivities of the soils [1], shape (soil,)
+    elevation : above the horizon [rad], shape (direction,)
+    azimuth : from x towards y [rad], shape (direction,)
+
+    Returns
+    -------
+    intensity [W/sr], shape (soil, direction)
+
+    Valid     as `GroundPattern.pattern`.
+    Source    as `GroundPattern.of`.
+    """
+    direct, turned = _up_and_down(currents, frequency, elevation, azimuth)
+    level, along = reflection(permittivity[:, None], np.maximum(np.sin(elevation), 0.0))
+    field = direct + np.stack([along, level], axis=2) * turned
+    return np.asarray((field.real**2 + field.imag**2).sum(axis=2) / IMPEDANCE)
+
+
+def _up_and_down(
+    currents: SegmentCurrents, frequency: float, elevation: Array, azimuth: Array
+) -> tuple[ComplexArray, ComplexArray]:
     """FarField's pattern at each elevation and as far below the horizon, shape (direction, 2) each.
 
     The radiation integral of `far_field` with real sines, those aside used for both: a tenth of the time.
     """
-    currents, wavenumber = free.currents, 2.0 * pi * free.frequency / c
+    wavenumber = 2.0 * pi * frequency / c
     middle = 0.5 * (currents.start + currents.end)
     origin = 0.5 * (middle[:, :2].min(axis=0) + middle[:, :2].max(axis=0))  # phases far from it would lose digits
     middle = wavenumber * np.column_stack([middle[:, :2] - origin, middle[:, 2]])

@@ -1,4 +1,4 @@
-"""The tables that the project knows, on a terminal: materials and bands."""
+"""The tables that the project knows, on a terminal: materials and grounds, bands."""
 
 from rich.console import Console
 from rich.table import Table
@@ -6,10 +6,12 @@ from rich.table import Table
 from magsafe import words
 from magsafe.design import tables
 from magsafe.reports.terminal import console_on_output, is_plain, put
+from magsafe.spread import Spread
+from magsafe.units import significant
 
 
 def show_materials(console: Console | None = None) -> None:
-    """Print the material table with its sources."""
+    """Print the tables of conductor materials and of grounds with their sources."""
     console = console or console_on_output()
     table = _table("material", "MS/m at 20 degC", "scatter", "per K", "source")
     for row in tables.materials().values():
@@ -20,7 +22,21 @@ def show_materials(console: Console | None = None) -> None:
             f"{row.coefficient:.5f}",
             f"{row.source} ({row.provenance})",
         )
-    put(console, table)
+    put(console, table, "", _grounds())
+
+
+def _grounds() -> Table:
+    table = _table("ground", "mS/m", "permittivity", "source")
+    for soil in tables.soils().values():
+        table.add_row(
+            soil.name, _span(soil.conductivity, 1e3), _span(soil.permittivity), f"{soil.source} ({soil.provenance})"
+        )
+    return table
+
+
+def _span(spread: Spread, scale: float = 1.0) -> str:
+    low, likely, high = (significant(scale * (each or 0.0)) for each in (spread.low, spread.likely, spread.high))
+    return f"{likely} ({low} to {high})"
 
 
 def show_bands(console: Console | None = None) -> None:

@@ -23,7 +23,7 @@ from magsafe.checks.sheet import (
     Sheet,
     Verdict,
 )
-from magsafe.reports import deratings, exemption, people, sessions, telling
+from magsafe.reports import deratings, exemption, people, sessions, sky, telling
 from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
 
@@ -87,6 +87,8 @@ def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
         *say.top(sheet),
         *say.in_the_way(sheet),
         *say.figures(sheet.operating_points),
+        *say.patterns(sheet.operating_points),
+        *say.placings(sheet.operating_points),
         *say.derations(sheet.deratings),
         *say.people(sheet.operating_points, sheet.sessions),
         *say.clear(sheet),
@@ -304,6 +306,38 @@ class Speaker:
         likely = "?" if spread.likely is None else words.number(spread.likely, row.si, row.unit)
         ends = words.ends(spread, row.si, row.unit).strip("()").replace("at most", "up to").replace("at least", "from")
         return self.letters(f"{likely}\n{ends}" if ends else likely)
+
+    def patterns(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
+        """Yield where the power of each transmission goes; nothing where that is not known."""
+        shown = [(point, point.pattern) for point in points if point.pattern is not None]
+        if shown:
+            yield from self.heading(sky.PATTERN_HEADING)
+        bases = dict.fromkeys(sky.basis(pattern) for _, pattern in shown)
+        if len(bases) == 1:
+            yield self.paragraph(next(iter(bases)))
+        for point, pattern in shown:
+            yield Text("")
+            yield self.paragraph(f"{_use(point)}. {sky.scale(pattern)}")
+            if len(bases) > 1:
+                yield self.paragraph(sky.basis(pattern))
+            yield Text(self.letters("\n".join(sky.bars(pattern, self.width))), no_wrap=True)
+            yield from (self.paragraph(sentence) for sentence in sky.sentences(point))
+
+    def placings(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
+        """Yield what height and plane do to each transmission; nothing where that is not known."""
+        shown = [point for point in points if point.placings]
+        if shown:
+            yield from self.heading(sky.PLACINGS_HEADING)
+            yield self.paragraph(sky.PLACING_NOTE)
+        for number, point in enumerate(shown):
+            if self.width < _TABLE or number == 0:
+                yield Text("")
+            if self.width < _TABLE:
+                yield self.paragraph(_use(point))
+                yield from (self.paragraph(text, indent=2) for text in sky.placing_sentences(point.placings))
+            else:
+                head = (words.short(point.name, sky.PLACING_LABEL), *sky.PLACING_HEAD)
+                yield self.grid(head, sky.placing_rows(point.placings), sky.PLACING_LABEL)
 
     def measure_first(self, sheet: Sheet) -> Iterator[RenderableType]:
         """Yield which uncertain input to measure first; nothing where none is worth it."""

@@ -397,22 +397,24 @@ def test_the_command_writes_a_map_beside_its_tables(tmp_path: Path) -> None:
     assert "map.svg" in done.stderr
     assert tree_of(file.read_text(encoding="utf-8")).tag == f"{SVG}svg"
     assert names_in(tmp_path) == ["map.svg"]
-    machine = run("keepout", "-", "--map", str(file), "--force", "--json", given=given())
+    machine = run("keepout", "-", "--map", str(file), "--replace", "--json", given=given())
     assert machine.returncode == 1
     assert machine.stdout.startswith("{")
     assert names_in(tmp_path) == ["map.svg"]
 
 
-def test_a_file_that_exists_is_replaced_only_by_force(tmp_path: Path) -> None:
+def test_a_file_that_exists_is_replaced_only_when_asked(tmp_path: Path) -> None:
     file = tmp_path / "map.svg"
     file.write_text("mine", encoding="utf-8")
     done = run("keepout", "-", "--map", str(file), given=given())
     assert done.returncode == 2
-    assert "--force" in done.stderr
+    assert "--replace" in done.stderr
     assert file.read_text(encoding="utf-8") == "mine"
     assert done.stdout == ""
-    assert run("keepout", "-", "--map", str(file), "--force", given=given()).returncode == 1
-    assert "<svg" in file.read_text(encoding="utf-8")
+    for spelling in ("--replace", "--force"):
+        file.write_text("mine", encoding="utf-8")
+        assert run("keepout", "-", "--map", str(file), spelling, given=given()).returncode == 1
+        assert "<svg" in file.read_text(encoding="utf-8")
 
 
 @pytest.mark.parametrize(
@@ -449,9 +451,9 @@ def test_a_directory_that_nobody_may_write_to_is_told(tmp_path: Path, monkeypatc
 
     monkeypatch.setattr(Path, "open", refuse)
     with pytest.raises(CommandError, match="Permission denied"):
-        saving.require_writable("--map", tmp_path / "map.svg", force=False)
+        saving.require_writable("--map", tmp_path / "map.svg", replace=False)
     with pytest.raises(CommandError, match="Permission denied"):
-        saving.save("--map", tmp_path / "map.svg", b"x", force=False)
+        saving.save("--map", tmp_path / "map.svg", b"x", replace=False)
     assert names_in(tmp_path) == []
 
 
@@ -464,7 +466,7 @@ def test_a_write_that_breaks_leaves_nothing(tmp_path: Path, monkeypatch: pytest.
 
     monkeypatch.setattr(os, "fsync", full)
     with pytest.raises(CommandError, match="No space left"):
-        saving.save("--map", file, b"new", force=True)
+        saving.save("--map", file, b"new", replace=True)
     assert file.read_text(encoding="utf-8") == "mine"
     assert names_in(tmp_path) == ["map.svg"]
 
@@ -475,22 +477,22 @@ def no_links(self: Path, target: Path) -> None:
 
 def test_a_file_that_comes_up_meanwhile_is_kept(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     file = tmp_path / "map.svg"
-    saving.require_writable("--map", file, force=False)
+    saving.require_writable("--map", file, replace=False)
     file.write_text("mine", encoding="utf-8")
     for linked in (True, False):
         if not linked:
             monkeypatch.setattr(Path, "hardlink_to", no_links)
-        with pytest.raises(CommandError, match="--force"):
-            saving.save("--map", file, b"new", force=False)
+        with pytest.raises(CommandError, match="--replace"):
+            saving.save("--map", file, b"new", replace=False)
         assert file.read_text(encoding="utf-8") == "mine"
     other = tmp_path / "other.svg"
-    saving.save("--map", other, b"new", force=False)
+    saving.save("--map", other, b"new", replace=False)
     assert other.read_bytes() == b"new"
     assert names_in(tmp_path) == ["map.svg", "other.svg"]
 
 
 def test_options_that_mean_nothing_together_are_refused() -> None:
-    for options, told in ((("--force",), "--map"), (("--json", "--plan"), "one of the two")):
+    for options, told in ((("--replace",), "--map"), (("--json", "--plan"), "one of the two")):
         done = run("keepout", "-", *options, given=given())
         assert done.returncode == 2
         assert told in done.stderr

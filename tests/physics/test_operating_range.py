@@ -16,6 +16,7 @@ from magsafe.analysis.chain import GAP_CAPACITANCE, REACTANCE_ERROR, RESISTANCE_
 from magsafe.analysis.figures import Figures
 from magsafe.analysis.flow import flow
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.analysis.surroundings import surroundings
 from magsafe.physics import conductor
 from magsafe.physics.far_field import FarField
 
@@ -248,9 +249,23 @@ def test_a_spiral_without_room_for_its_innermost_turn_says_so() -> None:
     assert found.out_of_range == ("there is no room for the innermost turn",)
 
 
-@pytest.mark.parametrize(("ground", "left_out"), [("none", False), ("perfect", False), ("average", True)])
-def test_only_soil_is_left_out(ground: str, left_out: bool) -> None:
-    assert point(site__ground=ground, loop__centre_height="3 m").ground_left_out == left_out
+@pytest.mark.parametrize(
+    ("ground", "height", "left_out"),
+    [
+        ("none", "3 m", False),
+        ("none", None, False),
+        ("perfect", "3 m", False),
+        ("average", "3 m", False),
+        ({"conductivity": "5 mS/m", "permittivity": 13}, "3 m", False),
+        (None, "3 m", True),
+        ("average", None, True),
+        ("perfect", None, True),
+    ],
+)
+def test_only_a_ground_or_a_height_that_nobody_stated_is_left_out(
+    ground: Any, height: str | None, left_out: bool
+) -> None:
+    assert point(site__ground=ground, loop__centre_height=height).ground_left_out == left_out
 
 
 @pytest.mark.parametrize("megahertz", [1.0, 7.1, 21.0, 40.0])
@@ -347,17 +362,31 @@ def test_the_ends_of_the_terminals_are_the_extremes_of_the_circuit(megahertz: fl
         assert spread.high == pytest.approx(max(values), abs=near)
 
 
-def test_a_fed_loop_over_soil_keeps_its_open_ends() -> None:
+def test_a_fed_loop_over_soil_has_both_ends_and_without_a_height_none() -> None:
     found = fed(100.0, site__ground="average", loop__centre_height="3 m").figures
-    assert found.terminal_resistance.spread.high is None
-    assert "soil" in found.terminal_resistance.why
-    assert found.swr_at_50_ohm.spread.low is None
-    assert found.swr_at_50_ohm.spread.high is None
-    assert "soil" in found.swr_at_50_ohm.why
-    anywhere = fed(100.0, site__ground="average").figures.terminal_reactance
-    assert anywhere.spread.low is None
-    assert anywhere.spread.high is not None
-    assert "centre_height" in anywhere.why
+    free = fed(100.0).figures
+    design = plain_design(
+        capacitor={"kind": "none"},
+        loop__conductor={"form": "rod", "outer_diameter": "3.2 mm", "conductivity": "58 MS/m"},
+        transmission__0__frequency="100 MHz",
+        site__ground="average",
+        loop__centre_height="3 m",
+    )
+    added = surroundings(design, 100e6).likely.radiated - flow(design, 100e6, "top", image=False).radiation
+    ohms = found.terminal_resistance.spread
+    assert ohms.likely == pytest.approx((free.terminal_resistance.spread.likely or 0.0) + added, rel=1e-6)
+    assert (ohms.low or 0.0) < (ohms.likely or 0.0) < (ohms.high or 0.0)
+    assert found.terminal_resistance.why == found.swr_at_50_ohm.why == ""
+    swr = found.swr_at_50_ohm.spread
+    assert (swr.low or 0.0) < (swr.likely or 0.0) < (swr.high or 0.0)
+    anywhere = fed(100.0, site__ground="average").figures
+    assert anywhere.terminal_reactance.spread.low is None
+    assert anywhere.terminal_reactance.spread.high is None
+    assert anywhere.terminal_resistance.spread.high is None
+    assert anywhere.swr_at_50_ohm.spread.low is None
+    assert anywhere.swr_at_50_ohm.spread.high is None
+    for figure in (anywhere.terminal_reactance, anywhere.terminal_resistance, anywhere.swr_at_50_ohm):
+        assert "centre_height" in figure.why
     tall = fed(100.0, site__ground="perfect", loop__centre_height="3 m").figures
     assert tall.terminal_resistance.spread.high is not None
     assert tall.swr_at_50_ohm.spread.high is not None

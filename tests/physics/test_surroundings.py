@@ -1,4 +1,4 @@
-"""The ground's bracket, held against the half-space integral that this version does not compute."""
+"""What the ground may do to a loop, held against the half-space integral in another form, and its bracket."""
 
 from itertools import pairwise
 from typing import Any
@@ -15,6 +15,10 @@ from magsafe.design.model import Design
 from magsafe.design.shape import outline
 from magsafe.physics import ground, inductance
 from magsafe.physics.arrays import ComplexArray
+from magsafe.physics.far_field import FarField
+from magsafe.physics.half_space import relative_permittivity
+from magsafe.physics.half_space_ring import ring_resistance_ratio
+from magsafe.physics.wave_spectrum import WaveSpectrum
 from magsafe.spread import Spread
 
 PLANES = ["vertical", "horizontal"]
@@ -77,7 +81,7 @@ def test_the_integral_is_that_of_the_reference_table() -> None:
 
 
 def over_soil(alone: Flow, soil: tuple[float, float], frequency: float) -> float:
-    """Resistance of a whole loop over soil (S/m, permittivity) with the current that it has alone [ohm].
+    """Resistance of a whole loop over soil (S/m, permittivity) with a given current [ohm].
 
     The current's plane waves, each reflected by Fresnel's coefficients, on the current again (Sommerfeld's integral in
     Weyl's form; memory): upward ones with the cosine of their angle from 1 to 0, then the evanescent ones.
@@ -116,7 +120,8 @@ def over_soil(alone: Flow, soil: tuple[float, float], frequency: float) -> float
         for u, w in zip(nodes, weights, strict=True):
             v = low + (high - low) * (u + 1.0) / 2.0
             total += 1j * w * (high - low) / 2.0 * reflected(-1j * v, int(64 + 4.0 * k * v * reach))
-    return alone.radiation + float(mu_0 * c * k**2 / (4.0 * np.pi) * total.real)
+    radiated = FarField.of(wire, frequency).power if alone.image else alone.radiation
+    return radiated + float(mu_0 * c * k**2 / (4.0 * np.pi) * total.real)
 
 
 @pytest.mark.parametrize("soil", [(0.005, 13.0), (0.003, 3.0)])
@@ -143,10 +148,13 @@ SOILS = [
 
 
 @pytest.mark.parametrize(("plane", "conductivity", "permittivity", "megahertz", "height"), SOILS)
-def test_no_soil_falls_below_the_bracket(
+def test_a_soil_stated_is_what_a_small_loop_draws_over_it(
     plane: str, conductivity: float, permittivity: float, megahertz: float, height: float
 ) -> None:
-    """Less resistance than the bracket's low end would be more volts than the sheet tells."""
+    """One soil, no span: its own resistance is the likely and the most; with less the sheet would tell more volts.
+
+    Each end may lie farther out by a hundredth, never farther in: the electric moment is under 0.5 %.
+    """
     metres = height * c / (megahertz * 1e6)
     there = small(
         megahertz,
@@ -154,16 +162,33 @@ def test_no_soil_falls_below_the_bracket(
         site__ground={"conductivity": f"{1e3 * conductivity:.5f} mS/m", "permittivity": permittivity},
     )
     true = half_space(plane == "vertical", (conductivity, permittivity), megahertz, height)
+    form = ground.image_ratio_vertical if plane == "vertical" else ground.image_ratio_horizontal
+    least = min(1.0, float(form(4.0 * np.pi * height)), true)
     known = around(megahertz, loop__centre_height=f"{metres:.6f} m", **there)
-    anywhere = around(megahertz, **there)
-    assert min(shares(anywhere)) <= min(shares(known))
-    assert max(shares(known)) <= true + 2e-3
-    for found in (known, anywhere):
-        assert found.most == ()
-        assert not found.ground_known
-        assert (found.likely.flow.image, found.likely.radiated) == (False, found.free[0].radiation)
+    assert known.likely.flow is known.free[0]
+    assert known.likely.radiated / known.free[0].radiation == pytest.approx(true, rel=0.005)
+    most = [state.radiated / known.free[0].radiation for state in known.most]
+    assert least - 0.016 < min(shares(known)) <= max(shares(known)) < least + 0.0035
+    assert true - 0.002 < min(most) <= max(most) < true * 1.016
+    assert max(shares(known)) <= true + 3.5e-3  # the charge of so small a loop still tells top from bottom
+    assert known.ground_known
     assert known.height_known
+
+
+@pytest.mark.parametrize(("plane", "conductivity", "permittivity", "megahertz", "height"), SOILS)
+def test_no_soil_falls_below_the_bracket_of_any_height(
+    plane: str, conductivity: float, permittivity: float, megahertz: float, height: float
+) -> None:
+    """Less resistance than the bracket's low end would be more volts than the sheet tells."""
+    soil = {"conductivity": f"{1e3 * conductivity:.5f} mS/m", "permittivity": permittivity}
+    true = half_space(plane == "vertical", (conductivity, permittivity), megahertz, height)
+    anywhere = around(megahertz, **small(megahertz, loop__plane=plane, site__ground=soil))
+    assert min(shares(anywhere)) <= true
+    assert not anywhere.most
+    assert not anywhere.over
+    assert not anywhere.ground_known
     assert not anywhere.height_known
+    assert (anywhere.likely.flow.image, anywhere.likely.radiated) == (False, anywhere.free[0].radiation)
 
 
 LARGER = [
@@ -181,16 +206,136 @@ LARGER = [
 
 
 @pytest.mark.parametrize(("megahertz", "plane", "place", "metres", "soil"), LARGER)
-def test_no_soil_falls_below_the_bracket_of_a_larger_loop(
+def test_a_larger_loop_over_soil_is_bracketed_by_both_of_its_currents(
     megahertz: float, plane: str, place: str | None, metres: float, soil: tuple[float, float]
 ) -> None:
-    """With the current that it has alone and with the one that it has over its image."""
+    """With the current that it has alone and with the one that it has over its image, and by how far they differ."""
     stated = {"conductivity": f"{1e3 * soil[0]:.4f} mS/m", "permittivity": soil[1]}
     changes = {} if place is None else {"capacitor__position": place}
     there = {"loop__plane": plane, "site__ground": stated, "loop__centre_height": f"{metres} m", **changes}
     design = design_at(megahertz, **there)
-    true = over_soil(flow(design, megahertz * 1e6, place, image=False), soil, megahertz * 1e6)
-    assert 0.0 <= max(state.radiated for state in around(megahertz, **there).least) <= true
+    alone, image = (flow(design, megahertz * 1e6, place, image) for image in (False, True))
+    true = [over_soil(current, soil, megahertz * 1e6) for current in (alone, image)]
+    apart, near = abs(true[0] - true[1]), 0.005 * max(alone.radiation, *true)
+    found = around(megahertz, **there)
+    assert found.likely.radiated == pytest.approx(true[0], abs=near)
+    assert [float(over.radiated[0]) for over in found.over] == pytest.approx(true, abs=near)
+    least = max(0.0, min(alone.radiation, image.radiation, min(true) - apart))
+    assert [state.radiated for state in found.least] == pytest.approx([least] * 2, abs=3.0 * near)
+    assert [state.radiated for state in found.most] == pytest.approx([max(true) + apart] * 2, abs=3.0 * near)
+    assert 0.0 <= max(state.radiated for state in found.least) <= min(true)
+    assert min(state.radiated for state in found.most) >= max(true)
+
+
+SPANS: list[tuple[Any, tuple[float, float], tuple[float, float]]] = [
+    # ground, ends of its conductivity [S/m] and of its permittivity as the list of soils has them (common practice)
+    ("average", (0.0015, 0.015), (8.0, 20.0)),
+    ("poor", (0.0003, 0.003), (3.0, 10.0)),
+    ("sea water", (3.0, 6.0), (70.0, 85.0)),
+    ("fresh water", (1e-4, 0.03), (78.0, 88.0)),
+    (
+        {"conductivity": {"low": "1 mS/m", "likely": "2 mS/m", "high": "40 mS/m"}, "permittivity": 9},
+        (0.001, 0.04),
+        (9.0, 9.0),
+    ),
+    (None, (1e-5, 10.0), (1.0, 90.0)),
+]
+STANDS: list[tuple[float, str, float]] = [
+    (1.8, "vertical", 0.6),
+    (3.6, "horizontal", 20.0),
+    (7.1, "vertical", 0.6),
+    (7.1, "horizontal", 1.5),
+    (14.2, "vertical", 5.0),
+    (30.0, "vertical", 1.0),
+    (100.0, "vertical", 3.0),
+]
+
+
+@pytest.mark.parametrize(("megahertz", "plane", "metres"), STANDS)
+@pytest.mark.parametrize(
+    ("name", "conductivity", "permittivity"), SPANS, ids=["average", "poor", "sea", "lake", "own", "any"]
+)
+def test_both_ends_hold_every_soil_of_the_span(
+    name: Any,
+    conductivity: tuple[float, float],
+    permittivity: tuple[float, float],
+    megahertz: float,
+    plane: str,
+    metres: float,
+) -> None:
+    """Forty by fifteen soils: between those that are sampled none draws more or less by a hundredth."""
+    changes = {"capacitor__position": "bottom"} if plane == "vertical" else {}
+    found = around(megahertz, site__ground=name, loop__plane=plane, loop__centre_height=f"{metres} m", **changes)
+    frequency = megahertz * 1e6
+    soils = relative_permittivity(
+        np.geomspace(*permittivity, 15), np.geomspace(*conductivity, 40)[:, None], frequency
+    ).ravel()
+    assert [over.flow.image for over in found.over[:2]] == [False, True]
+    for over in found.over[:2]:
+        spectrum = WaveSpectrum.of(over.flow.segments(), frequency, soils)
+        added = spectrum.power(soils, np.zeros(1))[:, 0] - spectrum.free_power
+        true = added + (spectrum.free_power if over.flow.image else over.alone)
+        assert max(state.radiated for state in found.least) <= true.min()
+        assert min(state.radiated for state in found.most[:2]) >= true.max()
+        gap = 0.01 * over.alone if true.min() < over.alone else 0.04 * true.min()  # there free space is the least
+        assert over.radiated.min() - true.min() <= gap
+        assert true.max() <= 1.01 * over.radiated.max()
+        assert over.radiated.min() >= true.min() - 0.01 * over.alone
+        assert over.radiated.max() <= 1.01 * true.max()
+
+
+@pytest.mark.parametrize("plane", PLANES)
+@pytest.mark.parametrize(("name", "conductivity", "permittivity"), SPANS[:4], ids=["average", "poor", "sea", "lake"])
+def test_the_span_of_a_ring_is_that_of_its_closed_form_spectrum(
+    name: str, conductivity: tuple[float, float], permittivity: tuple[float, float], plane: str
+) -> None:
+    """At a 300th of a wavelength round the current is even: `half_space_ring`, held against published values.
+
+    Over dry soil the little charge that there is counts for some hundredths: it grows as the current's field does.
+    """
+    found = around(0.3, site__ground=name, loop__plane=plane, loop__centre_height="0.9 m")
+    soils = relative_permittivity(np.geomspace(*permittivity, 15), np.geomspace(*conductivity, 40)[:, None], 3e5)
+    wavenumber = 6e5 * np.pi / c
+    ratio = ring_resistance_ratio(plane == "vertical", soils, 1.8 * wavenumber, 0.5 * wavenumber)
+    most = max(state.radiated for state in found.most) / found.free[0].radiation
+    assert ratio.max() < most < 1.06 * ratio.max()
+    assert max(shares(found)) < ratio.min()
+    drawn = np.concatenate([over.radiated / over.alone for over in found.over])
+    assert drawn.max() == pytest.approx(ratio.max(), rel=0.05)
+    assert drawn.min() == pytest.approx(ratio.min(), rel=0.05)
+
+
+def test_the_likely_soil_is_the_one_that_the_name_has() -> None:
+    """0.005 S/m and 13, common practice for average soil; every place of the capacitor has its pair of currents."""
+    found = around(site__ground="average", loop__centre_height="2 m")
+    assert found.likely.radiated == pytest.approx(over_soil(found.free[0], (0.005, 13.0), 7.1e6), rel=0.003)
+    assert [over.flow for over in found.over[:4]] == list(found.free)
+    assert [over.flow.image for over in found.over] == [False] * 4 + [True] * 4
+    assert [over.alone for over in found.over] == [each.radiation for each in found.free] * 2
+    assert all(over.likely for over in found.over)
+    for over in found.over:
+        most = [state for state in found.most if state.flow is over.flow]
+        assert sorted(state.shift for state in most) == sorted({over.shift.min(), over.shift.max()})
+        assert all(state.radiated >= over.radiated.max() for state in most)
+        assert over.permittivity[0] == pytest.approx(relative_permittivity(13.0, 0.005, 7.1e6), rel=1e-12)
+        assert over.sky.shape == (len(over.permittivity), 3)
+        assert (over.sky.sum(axis=1) < over.radiated).all()
+
+
+def test_without_a_soil_any_may_be_there_and_none_is_likely() -> None:
+    found = around(site__ground=None, loop__centre_height="2 m")
+    assert not found.ground_known
+    assert found.height_known
+    assert not any(over.likely for over in found.over)
+    assert (found.likely.flow.image, found.likely.radiated) == (False, found.free[0].radiation)
+    for name in ("average", "sea water", "poor", "fresh water", "very good"):
+        there = around(site__ground=name, loop__centre_height="2 m")
+        for least, own, over in zip(found.least, found.over[:8], there.over, strict=True):
+            most = [state for state in found.most[:12] if state.flow is own.flow]
+            assert least.radiated <= over.radiated.min()
+            assert min(state.radiated for state in most) >= over.radiated.max()
+            assert min(state.shift for state in most) <= over.shift.min() + 1e-3
+            assert max(state.shift for state in most) >= over.shift.max() - 1e-3
 
 
 @pytest.mark.parametrize(
@@ -202,31 +347,38 @@ def test_no_soil_falls_below_the_bracket_of_a_larger_loop(
         ("average", 0.095),
     ],
 )
-def test_the_least_permittivity_decides_what_soil_may_take(soil: Any, shortfall: float) -> None:
+def test_the_least_permittivity_decides_what_soil_may_take_at_any_height(soil: Any, shortfall: float) -> None:
     """Of any soil 0.145, from a permittivity of 3 upwards 0.095 of free space (half-space integral, computed)."""
-    found = around(site__ground=soil, loop__centre_height="9 m", capacitor__position="side")
-    alone, over = (state.flow.radiation for state in found.least)
-    assert found.least[0].radiated == pytest.approx(min(alone, over) - shortfall * alone, rel=1e-9)
+    found = around(site__ground=soil, capacitor__position="side")
+    alone = found.free[0].radiation
+    over = [state for state in found.least if state.flow.image]
+    assert len(over) > 10
+    for state in over:
+        wanted = min(alone, state.flow.radiation) - (shortfall + 0.03) * alone
+        assert state.radiated == pytest.approx(max(0.0, wanted), rel=1e-9)
     least = float(ground.image_ratio_vertical(np.linspace(0.1, 30.0, 3000)).min())
-    anywhere = around(site__ground=soil, capacitor__position="side")
-    assert min(shares(anywhere)) <= least - shortfall
+    assert min(shares(found)) <= least - shortfall
 
 
 @pytest.mark.parametrize(("megahertz", "share"), [(36.1, 0.3783), (36.4, 0.3814)])
 def test_above_0_38_wavelengths_the_whole_of_the_image_may_be_lost(megahertz: float, share: float) -> None:
     """Up to there the dipole's shortfall below free space and image holds (0.095 upright; its integral)."""
-    changes = {"site__ground": "average", "loop__centre_height": "4 m", "capacitor__position": "side"}
+    changes = {"site__ground": "average", "capacitor__position": "side"}
     design = design_at(megahertz, **changes)
     assert outline(design.loop).perimeter * megahertz * 1e6 / c == pytest.approx(share, abs=5e-4)
-    alone, over = (flow(design, megahertz * 1e6, "side", image) for image in (False, True))
-    moved = abs(complex(over.radiation - alone.radiation, over.reactance - alone.reactance))
-    wanted = min(alone.radiation, over.radiation) - 0.095 * alone.radiation
-    found = around(megahertz, **changes).least
-    assert wanted != pytest.approx(max(0.0, alone.radiation - 1.05 * moved), rel=0.01)
-    assert [state.radiated for state in found] == pytest.approx(
-        [max(0.0, alone.radiation - 1.05 * moved) if share > 0.38 else wanted] * 2, rel=1e-9
-    )
-    assert [state.flow.image for state in found] == [False, True]
+    found = around(megahertz, **changes)
+    alone, other = found.free[0], 0
+    for state in found.least:
+        if not state.flow.image:
+            continue
+        over = state.flow
+        moved = abs(complex(over.radiation - alone.radiation, over.reactance - alone.reactance))
+        by_dipole = max(0.0, min(alone.radiation, over.radiation) - 0.125 * alone.radiation)
+        by_image = max(0.0, alone.radiation * 0.97 - 1.05 * moved)
+        other += abs(by_dipole - by_image) > 0.01 * alone.radiation
+        assert state.radiated == pytest.approx(by_image if share > 0.38 else by_dipole, rel=1e-9)
+    assert other > 5
+    assert [state.flow.image for state in found.least[:2]] == [False, True]
 
 
 def test_no_resistance_is_negative_however_near_the_ground() -> None:
@@ -249,29 +401,39 @@ def test_a_missing_height_goes_below_every_height_of_a_small_loop() -> None:
 def test_a_missing_height_holds_the_volts_and_the_reactance_of_every_height(
     megahertz: float, plane: str, ground_name: str
 ) -> None:
-    """Low down the image raises the reactance near the anti-resonance, and the charge's image takes radiation away."""
+    """Low down the image raises the reactance near the anti-resonance, and the charge's image takes radiation away.
 
-    def highest(**changes: Any) -> tuple[float, float]:
+    Nearer to soil than 1.2 radii it may raise the reactance by more than either: what holds there are the solved ones.
+    """
+
+    def highest(corners: str = "every", **changes: Any) -> tuple[float, float]:
         design = design_at(megahertz, site__ground=ground_name, loop__plane=plane, **changes)
         made = chain(design, megahertz * 1e6, outline(design.loop), Spread.exact(100.0))
-        return made.dangerous(made.voltage, "bare"), max(corner.reactance for corner in made.every)
+        return made.dangerous(made.voltage, "bare"), max(corner.reactance for corner in getattr(made, corners))
 
     volts, ohms = highest()
     low = (0.55, 0.58, 0.7, 0.9) if plane == "vertical" else (0.08, 0.3)
     for metres in (*low, 1.15, 1.4, 1.75, 2.0, 2.35, 3.0, 4.6, 7.0, 12.0):
-        there = highest(loop__centre_height=f"{metres} m")
+        near_soil = ground_name != "perfect" and metres < 1.2 * 0.5
+        there = highest("least" if near_soil else "every", loop__centre_height=f"{metres} m")
         assert there[0] <= volts * (1.0 + 1e-12), metres
         assert there[1] <= ohms * (1.0 + 1e-12), metres
 
 
 def test_a_flat_loop_low_down_may_lose_all_its_resistance_but_not_more() -> None:
-    """The image cancels it towards the ground; what radiates and what heats the soil are never negative."""
+    """The image cancels it towards the ground; what radiates and what heats the soil are never negative.
+
+    Which soil it is decides: over average soil a low loop draws many times as much, and the image bounds the low end.
+    """
     flat: dict[str, Any] = {"loop__plane": "horizontal", "site__ground": "average"}
     assert min(shares(around(**flat))) == 0.0
-    for metres in ("0.3 m", "0.61 m", "1 m"):
-        assert shares(around(loop__centre_height=metres, **flat)) == [0.0, 0.0]
-    there = shares(around(loop__centre_height="3 m", **flat))
-    assert all(0.0 < share < 1.0 for share in there)
+    for metres, image in (("0.3 m", 0.001), ("0.61 m", 0.0034), ("1 m", 0.009)):
+        there = around(loop__centre_height=metres, **flat)
+        assert shares(there) == pytest.approx([there.least[1].flow.radiation / there.free[0].radiation] * 2, rel=1e-9)
+        assert shares(there)[0] == pytest.approx(image, rel=0.2)
+        assert min(over.radiated.min() for over in there.over) > 5.0 * there.free[0].radiation
+    there = around(loop__centre_height="3 m", **flat)
+    assert all(0.0 < share < 1.0 for share in shares(there))
 
 
 HEIGHTS = (0.05, 0.1, 0.2, 0.3, 0.45, 0.7)
@@ -343,11 +505,18 @@ def test_a_perfect_plane_may_be_there_or_not() -> None:
         assert all(state.radiated == state.flow.radiation for state in found.least)
 
 
-def test_fields_over_soil_are_those_of_free_space_at_its_least_and_of_the_image() -> None:
-    found = around(30.0, site__ground="average", loop__centre_height="2 m")
+@pytest.mark.parametrize("metres", ["0.9 m", "2 m", "5 m"])
+def test_fields_over_soil_are_those_of_free_space_at_its_least_and_of_the_image(metres: str) -> None:
+    """The image's with what the plane leaves, or with less where a soil that reflects as the plane leaves less."""
+    found = around(30.0, site__ground="average", loop__centre_height=metres)
     assert [state.flow.image for state in found.fields] == [False] * 4 + [True] * 4
     assert [s.radiated for s in found.fields[:4]] == [s.radiated for s in found.least[:4]]
-    assert all(state.radiated == state.flow.radiation for state in found.fields[4:])
+    for state, alone, over in zip(found.fields[4:], found.over[:4], found.over[4:], strict=True):
+        soil = float((np.minimum(alone.radiated, over.radiated) - np.abs(alone.radiated - over.radiated)).min())
+        soil -= 0.01 * alone.alone + 0.04 * max(0.0, soil - alone.alone)
+        assert state.flow is over.flow
+        assert state.radiated == pytest.approx(min(state.flow.radiation, soil), rel=1e-9)
+    assert 0 < sum(state.radiated == state.flow.radiation for state in found.fields[4:]) < 4
     assert len({round(state.radiated, 9) for state in found.least[4:]}) > 1  # each place of the capacitor has its own
 
 
