@@ -5,6 +5,20 @@ import subprocess
 import sys
 from collections.abc import Mapping
 
+COMMANDS = (
+    "check",
+    "capacitor",
+    "keepout",
+    "logsheet",
+    "recheck",
+    "draft",
+    "explain",
+    "rules",
+    "materials",
+    "bands",
+    "schema",
+)
+
 
 def run(*arguments: str, given: bytes = b"", env: Mapping[str, str] | None = None) -> subprocess.CompletedProcess[str]:
     base = {k: v for k, v in os.environ.items() if k not in ("COLUMNS", "NO_COLOR", "FORCE_COLOR")}

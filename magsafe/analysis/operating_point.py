@@ -12,6 +12,7 @@ from magsafe.analysis.exposure import use_of
 from magsafe.analysis.figures import NO_HEIGHT, Figure, Figures, figures_of, unknown_figures
 from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
 from magsafe.analysis.losses import conductivity
+from magsafe.analysis.sky import Pattern, sky
 from magsafe.analysis.sky_figures import sky_figures
 from magsafe.analysis.warmth import RUNS_AWAY, Warmth, warmth
 from magsafe.analysis.wires import clearance, electrical_radius, positions, shape_of, shortest_side, wire_of
@@ -41,7 +42,8 @@ class OperatingPoint:
     `tuning_limit` is the frequency above which no series capacitor tunes the loop [Hz], `beyond_tuning` says that the
     transmission lies above it. `bound_ratio` is Q over efficiency times the lower bound on Q. `opinion` is what the
     closed forms say, None where they do not reach. `chain` is what answers further questions, and `warmth`
-    the conductor's; both None with `out_of_range`.
+    the conductor's; both None with `out_of_range`. `pattern` is where the likely power goes, None where no ground or
+    height is stated.
     """
 
     transmission: Transmission
@@ -61,6 +63,7 @@ class OperatingPoint:
     field_error: float = VOLTAGE_ERROR
     chain: Chain | None = None
     warmth: Warmth | None = None
+    pattern: Pattern | None = None
 
 
 def operating_point(design: Design, transmission: Transmission) -> OperatingPoint:
@@ -87,7 +90,8 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         return OperatingPoint(transmission, power, arriving, figures, reasons, limit, beyond)
     warm, figures = warmth(made, design, use_of(transmission)), figures_of(made, design)
     free_gain = (figures.directivity_along_axis, figures.directivity_in_plane)
-    over_ground = sky_figures(made, arriving, use_of(transmission).duty, free_gain)
+    reaching = sky(made)
+    over_ground = sky_figures(made, reaching, arriving, use_of(transmission).duty, free_gain)
     bare_voltage = made.dangerous(made.voltage, "bare") * (1.0 + made.voltage_error)
     return OperatingPoint(
         transmission=transmission,
@@ -105,6 +109,7 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         field_error=made.voltage_error,
         chain=made,
         warmth=warm,
+        pattern=None if reaching is None else reaching.pattern,
     )
 
 

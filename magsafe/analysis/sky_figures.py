@@ -5,7 +5,7 @@ from math import degrees
 
 from magsafe.analysis.chain import RESISTANCE_ERROR, STUDY, Chain
 from magsafe.analysis.figures import NO_HEIGHT, Figure
-from magsafe.analysis.sky import HALF_WAVE_DIPOLE, sky
+from magsafe.analysis.sky import HALF_WAVE_DIPOLE, Sky
 from magsafe.analysis.surroundings import State
 from magsafe.spread import UNKNOWN, Spread
 
@@ -16,17 +16,19 @@ _NO_GROUND = "site.ground is not given: the ends are those of any soil there is"
 _FREE = "free space has no ground and no horizon"
 
 
-def sky_figures(chain: Chain, power: Spread, duty: float, free_gain: tuple[Figure, Figure]) -> dict[str, Figure]:
+def sky_figures(
+    chain: Chain, made: Sky | None, power: Spread, duty: float, free_gain: tuple[Figure, Figure]
+) -> dict[str, Figure]:
     """Return the figures of ground and sky by their names.
 
     Parameters
     ----------
     chain : the resonant loop
+    made : what of it reaches the sky, by `sky`
     power : peak envelope power at the loop [W]
     duty : mean over peak envelope power while transmitting [1]
     free_gain : the directivities in free space, which count where there is no ground
     """
-    made = sky(chain)
     if made is None:
         return _without_ground(chain, power, duty, free_gain)
     why = "" if chain.around.ground_known else _NO_GROUND

@@ -41,15 +41,16 @@ from magsafe.checks.view import View, view_of
 from magsafe.design.model import Design
 
 
-def check(design: Design, on: date | None = None) -> Sheet:
+def check(design: Design, on: date | None = None, points: Sequence[OperatingPoint] | None = None) -> Sheet:
     """Compute every figure and finding of a design.
 
     Parameters
     ----------
     design : a design that was read
     on : the date on the sheet; today where it is not given
+    points : its operating points, by `operating_points`, where they are at hand
     """
-    points = tuple(operating_point(design, transmission) for transmission in design.transmission)
+    points = operating_points(design) if points is None else tuple(points)
     shared = (*no_rules(design), *later(design))
     views = tuple(view_of(design, point, _worked_with(design, i)) for i, point in enumerate(points))
     worked, summed = sessions(design, views)
@@ -70,6 +71,11 @@ def check(design: Design, on: date | None = None) -> Sheet:
         deratings=deratings(design, points),
         cautions=cautions(points, tuned=design.capacitor.kind != "none"),
     )
+
+
+def operating_points(design: Design) -> tuple[OperatingPoint, ...]:
+    """Return the operating points of a design, one for each transmission."""
+    return tuple(operating_point(design, transmission) for transmission in design.transmission)
 
 
 def _worked_with(design: Design, index: int) -> int:

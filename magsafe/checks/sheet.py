@@ -414,6 +414,18 @@ class Sheet(Record):
         """Return the machine form."""
         return self.model_dump_json(by_alias=True, indent=2)
 
+    def __repr__(self) -> str:
+        from magsafe.checks.notebook import in_a_line  # noqa: PLC0415  (it is made of this module's records)
+
+        return in_a_line(self)
+
+    __str__ = __repr__
+
+    def _repr_html_(self) -> str:
+        from magsafe.checks.notebook import as_html  # noqa: PLC0415  (it is made of this module's records)
+
+        return as_html(self)
+
 
 class KeepoutPoint(Record):
     """The part of a transmission that is about people."""

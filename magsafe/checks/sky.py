@@ -6,14 +6,14 @@ import numpy as np
 
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.placing import Placing, placings
-from magsafe.analysis.sky import CUT_ANGLES, OVERHEAD, Direction, pattern
+from magsafe.analysis.sky import CUT_ANGLES, OVERHEAD, Direction
 from magsafe.checks.sheet import LobeRecord, PatternCut, PatternRecord, PlacingRecord
 from magsafe.design.model import Design, SoilConstants
 
 
 def pattern_record(design: Design, point: OperatingPoint) -> PatternRecord | None:
     """Return the pattern of a transmission; None in free space, and where ground or height is not stated."""
-    found = None if point.chain is None else pattern(point.chain)
+    found = point.pattern
     if found is None:
         return None
     sides = _sides(design)

@@ -5,7 +5,7 @@ from collections.abc import Sequence
 
 import typer
 
-from magsafe.cli import capacitor, check, keepout, schema, tables
+from magsafe.cli import capacitor, check, draft, explain, keepout, logsheet, recheck, schema, tables
 
 app = typer.Typer(
     name="magsafe",
@@ -19,9 +19,13 @@ app = typer.Typer(
 app.command("check")(check.check)
 app.command("capacitor")(capacitor.capacitor)
 app.command("keepout")(keepout.keepout)
+app.command("logsheet")(logsheet.logsheet)
+app.command("recheck")(recheck.recheck)
+app.command("draft")(draft.draft)
 app.command("rules")(tables.rules)
 app.command("materials")(tables.materials)
 app.command("bands")(tables.bands)
+app.command("explain")(explain.explain)
 app.command("schema")(schema.schema)
 
 

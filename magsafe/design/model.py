@@ -71,21 +71,30 @@ def _printable(text: str) -> str:
     return text
 
 
-def _rule(name: str) -> str:
+def _rule_names() -> tuple[str, ...]:
     from magsafe.rules.limit import rule_names  # noqa: PLC0415  (only when rules are named)
 
-    if name not in rule_names():
-        known = rule_names()
+    return rule_names()
+
+
+def _rule(name: str) -> str:
+    known = _rule_names()
+    if name not in known:
         raise field_error(("", show(name), f"one of {', '.join(known)}", nearest(name, known)))
     return name
 
 
+def _offered(table: Callable[[], Iterable[str]], *also: str) -> Any:
+    """Return a field whose JSON schema lists the rows of a table, which an editor then offers."""
+    return Field(json_schema_extra=lambda made: made.update(enum=[*table(), *also]))
+
+
 Name = Annotated[str, AfterValidator(_printable)]
-RuleName = Annotated[str, AfterValidator(_rule)]
-MaterialName = Annotated[str, _named(tables.materials)]
-PlasticName = Annotated[str, _named(warmth_tables.plastics)]
-DielectricName = Annotated[str, _named(warmth_tables.dielectrics, "air")]
-GroundName = Annotated[str, _named(tables.soils, "perfect", "none")]
+RuleName = Annotated[str, AfterValidator(_rule), _offered(_rule_names)]
+MaterialName = Annotated[str, _named(tables.materials), _offered(tables.materials)]
+PlasticName = Annotated[str, _named(warmth_tables.plastics), _offered(warmth_tables.plastics)]
+DielectricName = Annotated[str, _named(warmth_tables.dielectrics, "air"), _offered(warmth_tables.dielectrics, "air")]
+GroundName = Annotated[str, _named(tables.soils, "perfect", "none"), _offered(tables.soils, "perfect", "none")]
 
 LoopLength = Annotated[float, Quantity(LENGTH, 0.02, 200.0)]
 ConductorSize = Annotated[float, Quantity(LENGTH, 0.05e-3, 0.5)]
@@ -420,6 +429,12 @@ def _as_list(value: Any) -> Any:
     return [value] if isinstance(value, dict) else value
 
 
+def _or_one(made: dict[str, Any]) -> None:
+    """Let the JSON schema of a list take one entry alone, as `_as_list` does."""
+    listed = {key: made.pop(key) for key in ("type", "items", "maxItems")}
+    made["anyOf"] = [listed, listed["items"]]
+
+
 class DesignFile(Block):
     """A whole design file."""
 
@@ -434,7 +449,9 @@ class DesignFile(Block):
     place: Annotated[list[Place], Field(max_length=200)] = []
     probe: Annotated[list[Probe], Field(max_length=200)] = []
     margins: Margins = Margins()
-    measured: Annotated[list[Measured], Field(max_length=100), BeforeValidator(_as_list)] = []
+    measured: Annotated[
+        list[Measured], Field(max_length=100, json_schema_extra=_or_one), BeforeValidator(_as_list)
+    ] = []
 
 
 def titles_of(transmissions: Sequence[tuple[str | None, float]]) -> tuple[str, ...]:
@@ -467,3 +484,11 @@ class Design(DesignFile):
         """`none`, `perfect`, a row of the soil table, `as given`, or None where nothing is stated."""
         ground = self.site.ground
         return "as given" if isinstance(ground, SoilConstants) else ground
+
+    def __repr__(self) -> str:
+        used = ", ".join(f"{each.frequency / 1e6:.9g} MHz" for each in self.transmission[:4])
+        more = len(self.transmission) - 4
+        also = f" and {more} more" if more > 0 else ""
+        return f"<Design {self.origin.name[:60]!r}: {self.loop.shape}, {self.capacitor.kind}; {used}{also}>"
+
+    __str__ = __repr__

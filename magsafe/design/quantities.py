@@ -10,10 +10,12 @@ from magsafe.units import Kind, QuantityError, read_quantity
 
 _NUMBER = r"^ *-?[0-9]+(\.[0-9]+)? ?"
 _ENDS = ("low", "likely", "high")
+# Signs that look like a letter: the reader takes either for the other.
+_TWINS = {0x00B5: "[\u00b5\u03bc]", 0x03A9: "[\u03a9\u2126]"}
 
 
 def _schema_text(kind: Kind) -> dict[str, Any]:
-    units = "|".join(unit.replace("/", "\\/") for unit in kind.units)
+    units = "|".join(unit.replace("/", "\\/") for unit in kind.units).translate(_TWINS)
     return {
         "type": "string",
         "pattern": f"{_NUMBER}({units}) *$",

@@ -7,7 +7,7 @@ from typing import Any
 from magsafe.analysis.field_map import FieldMap, Grid, Layer
 from magsafe.design.model import Design
 from magsafe.design.shape import outline
-from magsafe.reports.map_views import EDGE, LEFT, Projection, View, arranged, round_length, view_of
+from magsafe.reports.map_views import EDGE, HEIGHT, LEFT, WIDTH, Projection, View, arranged, round_length, view_of
 from magsafe.reports.map_words import MapWords, Spot
 from magsafe.reports.svg import Box, Drawing, Labels, Point, around, everywhere, nearest, number, width_of
 
@@ -51,14 +51,14 @@ class Panels:
     def _grids(self) -> tuple[Grid, ...]:
         return () if self.made is None else (self.made.plan, *self.made.sides)
 
-    def draw(self, top: float) -> float:
-        """Draw all views below a height on the sheet, and return where they end [mm]."""
+    def draw(self, top: float, wide: float = WIDTH - 2.0 * EDGE, height: float = HEIGHT) -> float:
+        """Draw all views below a height on the sheet, in so much room, and return where they end [mm]."""
         widest = max((_label_width(spot) for spot in self.inside), default=0.0)
         plan, sides = self._plan(0.0), self._sides(0.0)
-        _, scale, _ = arranged(plan, sides, top)
+        _, scale, _ = arranged(plan, sides, top, wide, height)
         # The words beside places need room to the right, which makes the scale smaller in turn.
         room = 1.15 * widest / scale
-        views, scale, bottom = arranged(self._plan(room), self._sides(room), top)
+        views, scale, bottom = arranged(self._plan(room), self._sides(room), top, wide, height)
         for who, turn in (("public", 45), ("trained", -45)):
             stroke = f'stroke="{COLOURS[who]}" stroke-width="0.18"'
             self.drawing.define(

@@ -10,7 +10,7 @@ from magsafe.reports.svg import Box, Point
 WIDTH = 148.0  # mm, of an A5 sheet upright
 EDGE, LEFT = 7.0, 9.0  # mm, of the sheet, and beside a view for its measures
 _TOP, _BOTTOM, _GAP = 5.0, 9.0, 3.0
-_HEIGHT = 122.0  # mm that the views may take together
+HEIGHT = 122.0  # mm that the views may take together
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,19 +72,23 @@ def round_length(least: float) -> float:
     return next(step * power for step in (1.0, 2.0, 5.0, 10.0) if step * power >= least * (1.0 - 1e-9))
 
 
-def arranged(plan: View, sides: Sequence[View], top: float) -> tuple[list[View], float, float]:
+def arranged(
+    plan: View, sides: Sequence[View], top: float, room: float = WIDTH - 2.0 * EDGE, height: float = HEIGHT
+) -> tuple[list[View], float, float]:
     """Return the views at the largest scale that holds them, that scale [mm/m], and where they end [mm].
+
+    They take `room` across and `height` down together at the most [mm].
 
     Upright views stand under the plan, beside each other or not, or all views stand in one row: whichever leaves more
     room.
     """
-    wide, best = WIDTH - 2.0 * EDGE - LEFT, -inf
+    wide, best = room - LEFT, -inf
     places: list[list[int]] = []
     below = list(range(1, len(sides) + 1))
     everything = [plan, *sides]
     for rows in ([[0], below], [[i] for i in (0, *below)], [[0, *below]]):
         across = min((wide - (len(row) - 1) * (LEFT + _GAP)) / sum(everything[i].size[0] for i in row) for row in rows)
-        rest = _HEIGHT - len(rows) * (_TOP + _BOTTOM)
+        rest = height - len(rows) * (_TOP + _BOTTOM)
         scale = min(across, rest / sum(max(everything[i].size[1] for i in row) for row in rows))
         if scale > best:
             best, places = scale, rows
