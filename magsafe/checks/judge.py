@@ -171,14 +171,15 @@ def judge_between(check: Check, value: Spread, least: float, most: float, *, loo
     ends = [end for end in (value.low, value.likely, value.high) if end is not None]
     inside = all(least <= end <= most for end in ends)
     if inside and (value.low is None or value.high is None):
-        return unproven(check, "one end of what it needs is not known", value)
+        one = "its ends are" if value.low is None and value.high is None else "one end of what it needs is"
+        return unproven(check, f"{one} not known", value)
     verdict: Verdict = "stop" if not inside else "narrow" if loose else "clear"
     name = words.shown_unit(check.unit)
     likely = "" if value.likely is None else f"{words.amount(value.likely, check.unit)} likely, "
-    text = (
-        f"{likely}{words.number(min(ends), check.unit, name)} to {words.number(max(ends), check.unit, name)} at worst; "
-        f"it reaches {words.number(least, check.unit, name)} to {words.amount(most, check.unit)}"
-    )
+    worst = f"{words.number(min(ends), check.unit, name)} to {words.number(max(ends), check.unit, name)} at worst; "
+    if value.low is None and value.high is None:
+        worst = "more or less at worst; "
+    text = f"{likely}{worst}it reaches {words.number(least, check.unit, name)} to {words.amount(most, check.unit)}"
     made = _finding(check, value, verdict, text, most if max(ends) > most else least)
     return made.model_copy(update={"provenance": "stated in the design"})
 

@@ -26,7 +26,7 @@ from scipy.constants import c, mu_0
 from magsafe.physics.arrays import Array, ComplexArray
 from magsafe.physics.half_space import reflection
 from magsafe.physics.near_field import SegmentCurrents
-from magsafe.physics.soil_spectrum import PHASE, rule, squared
+from magsafe.physics.soil_spectrum import PHASE, SMALLEST, rule, squared
 
 IMPEDANCE = mu_0 * c  # of free space
 EDGES = (0.0, pi / 9.0, pi / 3.0, 0.5 * pi)  # elevations between which the sky's share is told: 20 and 60 degrees
@@ -93,7 +93,7 @@ class WaveSpectrum:
         sine, step, band = _travelling(nearest, 2.0 * (top + wires.reach))
         up, down, crossed = wires.travelling(sine)
         kinks = np.unique(np.sqrt(np.maximum(permittivity.real - 1.0, 0.0)).round(2))
-        end = min(DECAY / (2.0 * wavenumber * lowest), MOST_ACROSS / wires.reach)
+        end = min(DECAY / (2.0 * wavenumber * lowest), MOST_ACROSS / max(wires.reach, SMALLEST))
         nodes = list(_decaying(nearest, end, kinks))
         held = np.concatenate([wires.decaying(decay) for decay, _ in nodes])
         decay, decay_step = (np.concatenate(each) for each in zip(*nodes, strict=True))

@@ -50,7 +50,6 @@ CASES: dict[str, dict[str, Any]] = {
     "free space radiates most": {
         "site__ground": None,
         "loop__centre_height": "4 m",
-        "capacitor__position": "top",
         "transmission__0__frequency": "24 MHz",
     },
     "soil moves the reactance": {
@@ -119,12 +118,33 @@ CASES: dict[str, dict[str, Any]] = {
         "transmission__0__frequency": "70 MHz",
     },
     "full-wave over any soil": {
-        "capacitor": {"kind": "none"},
+        "capacitor": {"kind": "none", "position": "top"},
         "site__ground": None,
         "loop__centre_height": "2 m",
-        "capacitor__position": "top",
         "feed": {"line_loss": "1 dB"},
         "transmission__0__frequency": "95 MHz",
+    },
+    **{
+        f"full-wave at {frequency}": {
+            "capacitor": {"kind": "none", "position": "bottom"},
+            "loop__shape": "rectangle",
+            "loop__diameter": None,
+            "loop__width": "0.4 m",
+            "loop__height": "1.2 m",
+            "loop__centre_height": "3 m",
+            "loop__joint": [
+                {
+                    "name": "resistors",
+                    "count": 8,
+                    "at": "capacitor",
+                    "resistance": {"low": "0.01 ohm", "likely": "4 ohm", "high": "10 ohm"},
+                }
+            ],
+            "feed": {"line_loss": {"low": "0 dB", "likely": "0.3 dB", "high": "0.6 dB"}},
+            "site__ground": "average",
+            "transmission__0__frequency": frequency,
+        }
+        for frequency in ("98 MHz", "102 MHz")
     },
     "full-wave at any height": {
         "capacitor": {"kind": "none"},
@@ -440,6 +460,12 @@ def test_the_cases_reach_what_makes_an_end_of_the_ground() -> None:
     assert 0.0 < (likely or 0.0) < (high or 0.0)
     assert (ends("port_reactance", "Xs", "soil moves the reactance")[1] or 0.0) < 0.0
     assert ends("port_reactance", "Xs", "over a plane") == (0.0, 0.0, 0.0)
+    # No case leaves nothing of the resistance: the formula alone tells what would be.
+    letters = {"R1": 0.1, "a": -0.2, "b": 0.0, "R0": 0.3, "e": 0.0, "d": -0.005}
+    assert evaluated(figure_texts()["ground_resistance"], letters) == -0.3
+    # The likely terminal is the nearest to the line's 50 ohm.
+    matched = terms_of("swr_at_50_ohm", "full-wave at 102 MHz")[1]
+    assert matched.low == matched.likely != matched.high
     # Without a height both ends of the reactance are open.
     assert ends("port_reactance", "X0", "at any height")[::2] == (None, None)
 

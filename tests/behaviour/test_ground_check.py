@@ -243,10 +243,10 @@ def test_the_pattern_and_the_placings_are_recorded() -> None:
     assert [cut["name"] for cut in pattern["cuts"]] == ["along the axis", "in the loop's plane"]
     for cut in pattern["cuts"]:
         assert set(cut) == {"name", "towards", "away", "angle", "gain"}
-        assert cut["angle"] == pytest.approx([2.0 * step for step in range(91)])
-        assert len(cut["gain"]) == 91
+        assert cut["angle"] == pytest.approx([float(step) for step in range(181)])
+        assert len(cut["gain"]) == 181
         assert max(cut["gain"]) <= figures["gain"]["likely"] * (1.0 + 1e-6)
-    assert pattern["cuts"][0]["gain"][45] == pytest.approx(pattern["cuts"][1]["gain"][45])  # the zenith is of both
+    assert pattern["cuts"][0]["gain"][90] == pytest.approx(pattern["cuts"][1]["gain"][90])  # the zenith is of both
     lobes = pattern["lobes"]
     assert all(set(each) == {"cut", "side", "elevation", "gain", "strength"} for each in lobes)
     assert lobes[0]["strength"] == pytest.approx(1.0)
@@ -312,7 +312,7 @@ def test_the_sides_are_named_as_the_design_names_them(
         assert {"the capacitor's side", "the far side"} <= {each.side for each in lobes}
         for each in lobes:
             half = uneven[0].gain if each.side == "the capacitor's side" else uneven[0].gain[::-1]
-            assert half[round(each.elevation / 2.0)] == pytest.approx(each.gain, rel=0.01)
+            assert half[round(each.elevation)] == pytest.approx(each.gain, rel=0.01)
     else:
         assert said <= {"overhead", "both sides"}
 

@@ -145,7 +145,7 @@ def test_a_capacitor_on_top_sends_less_overhead_than_one_below_as_if_the_loop_we
 
     def overhead(position: str) -> float:
         found = made(7.1, **placed("vertical", height * c / 7.1e6, "perfect", position))
-        return float(pattern_of(found).cuts[0].gain[45]) * found.resistance("likely", found.likely)
+        return float(pattern_of(found).cuts[0].gain[90]) * found.resistance("likely", found.likely)
 
     up, size = 2.0 * pi * height, 2.0 * pi * 0.5 * 7.1e6 / c
     above, below = (np.cos(up) + sign * 2.0 * size * np.sin(up) for sign in (-1.0, 1.0))
