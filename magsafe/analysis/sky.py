@@ -218,8 +218,10 @@ def pattern(chain: Chain) -> Pattern | None:
 
 
 def _ground_pattern(chain: Chain) -> GroundPattern:
+    """Return the pattern of the likely current, whose powers are known already."""
     over = chain.around.over[0]
-    return GroundPattern.of(over.flow.segments(), chain.frequency, complex(over.permittivity[0]))
+    free = FarField(over.flow.segments(), chain.frequency, over_plane=False, power=over.alone)
+    return GroundPattern(free, complex(over.permittivity[0]), float(over.sky[0].sum()))
 
 
 def _lobes(made: GroundPattern, azimuth: float, into: float, top: float) -> Iterator[Direction]:

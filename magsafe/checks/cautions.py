@@ -1,16 +1,87 @@
 """What can happen to whom, and how to avoid it. On every sheet, whatever its verdict."""
 
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from math import ceil, inf
+
 from scipy.constants import zero_Celsius
 
 from magsafe import words
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.design.warmth_tables import touch_thresholds
+from magsafe.checks.sheet import Finding
+from magsafe.design.warmth_tables import TouchThreshold, touch_thresholds
 
 MELTED = 1300.0  # K: above, no loop is left
+_JOINT = "joint.heat."
+_MOST_PARTS = 3  # named; a reader needs the hottest, and that there are more
 
 
-def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, ...]:
-    """Return the cautions, the computed volts in the first of them."""
+@dataclass(frozen=True, slots=True)
+class HotPart:
+    """A part that may burn skin, and how hot it may get [K]."""
+
+    name: str
+    temperature: float
+
+
+def least_touch() -> TouchThreshold:
+    """Return the lowest temperature at which bare metal burns at all, however long it is touched."""
+    return min(touch_thresholds(), key=lambda each: each.temperature)
+
+
+def hot_parts(conductor: float, joints: Sequence[tuple[str, float]]) -> tuple[HotPart, ...]:
+    """Return what may be hot enough to burn, the hottest first.
+
+    Parameters
+    ----------
+    conductor : its temperature at the high end [K]
+    joints : name and temperature at the high end of each [K], by `joint_temperatures`
+    """
+    hottest: dict[str, float] = {}
+    for name, temperature in (("conductor", conductor), *joints):
+        hottest[name] = max(temperature, hottest.get(name, 0.0))
+    burning = [HotPart(name, each) for name, each in hottest.items() if each >= least_touch().temperature]
+    return tuple(sorted(burning, key=lambda each: -each.temperature))
+
+
+def joint_temperatures(findings: Sequence[Finding], air: float, stronger: float = 1.0) -> Iterator[tuple[str, float]]:
+    """Yield each joint with its temperature at the high end [K], infinite where that is not known.
+
+    Parameters
+    ----------
+    findings : those about joints are looked at
+    air : the temperature of the air [K]
+    stronger : times what the findings counted as a joint's power
+    """
+    for finding in findings:
+        if finding.id.startswith(_JOINT):
+            rise = None if finding.value is None else finding.value.high
+            name = f"joint {words.short(finding.id.removeprefix(_JOINT))}"
+            yield name, inf if rise is None else air + rise * stronger
+
+
+def told_hot(parts: Sequence[HotPart]) -> str:
+    """Return hot parts with their temperatures, rounded up: `joint wiper 162 degC, conductor 60 degC`."""
+    named = [f"{each.name} {_degrees(each.temperature)}" for each in parts[:_MOST_PARTS]]
+    rest = len(parts) - _MOST_PARTS
+    return f"{', '.join(named)}{f', {rest} more' if rest > 0 else ''}"
+
+
+def _degrees(kelvin: float) -> str:
+    if kelvin == inf:
+        return "a temperature that is not known"
+    return f"{ceil(kelvin - zero_Celsius - 1e-9)} degC" if kelvin < MELTED else "a temperature at which it melts"
+
+
+def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool, findings: Sequence[Finding] = ()) -> tuple[str, ...]:
+    """Return the cautions, the computed volts in the first of them.
+
+    Parameters
+    ----------
+    points : every transmission
+    tuned : whether a capacitor tunes the loop
+    findings : those of all transmissions; how hot each joint gets comes from them
+    """
     return (
         f"RF burns. {_volts(points, tuned=tuned)} A touch burns deeply, without the warning of a shock. "
         "Fence the loop, keep people, pets and dry or flammable things a metre and more from conductor and capacitor, "
@@ -21,8 +92,8 @@ def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, .
         "protect against established short-term effects only.",
         "Implants. The limits do not protect wearers of pacemakers, pumps, neurostimulators or hearing implants. "
         "They keep out until their clinician has cleared it.",
-        f"Hot parts. {_warm(points)}Conductor, joints and capacitor stay hot after key-down; solder can let go under "
-        "load.",
+        f"Hot parts. {_warm(points, findings)}Conductor, joints and capacitor stay hot after key-down; solder can "
+        "let go under load.",
         "Stored charge. Capacitors may hold a charge from wind or static. Discharge them before touching. Vacuum "
         "glass can implode: wear eye protection.",
         "Power lines. Keep at least one and a half times the full height of mast and loop away from overhead lines.",
@@ -33,17 +104,20 @@ def cautions(points: tuple[OperatingPoint, ...], *, tuned: bool) -> tuple[str, .
     )
 
 
-def _warm(points: tuple[OperatingPoint, ...]) -> str:
-    """Return how hot the conductor may get, where that burns skin."""
-    hottest = max((point.warmth.temperature().high or 0.0 for point in points if point.warmth is not None), default=0.0)
-    burns = [each for each in touch_thresholds() if each.temperature <= hottest]
-    if not burns:
+def _warm(points: tuple[OperatingPoint, ...], findings: Sequence[Finding]) -> str:
+    """Return how hot conductor and joints may get, where that burns skin."""
+    warm = [point.warmth for point in points if point.warmth is not None]
+    hottest = max((each.temperature().high or 0.0 for each in warm), default=0.0)
+    air = max((each.air_temperature for each in warm), default=inf)
+    parts = hot_parts(hottest, tuple(joint_temperatures(findings, air)))
+    if not parts:
         return ""
+    burns = [each for each in touch_thresholds() if each.temperature <= parts[0].temperature]
     least = min(burns, key=lambda each: each.contact)
-    reached = f"{hottest - zero_Celsius:.0f} degC" if hottest < MELTED else "a temperature at which it melts"
     return (
-        f"The conductor may reach {reached}; from {least.temperature - zero_Celsius:.0f} degC a touch of "
-        f"{words.duration(least.contact)} burns ({least.source}; {least.provenance}). "
+        f"At worst: {told_hot(parts)}; measure before a hand touches it. From "
+        f"{least.temperature - zero_Celsius:.0f} degC a touch of {words.duration(least.contact)} burns "
+        f"({least.source}; {least.provenance}). "
     )
 
 

@@ -4,18 +4,20 @@ It is computed for this loop from its sheet, and is no permission: what is a sto
 a proven ceiling there are no steps.
 """
 
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
-from math import inf, isfinite, sqrt
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from math import ceil, inf, log2, sqrt
 
 import numpy as np
 from scipy.integrate import trapezoid
 
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.warmth import RUNS_AWAY, Warmth
-from magsafe.checks.sheet import ExposureRecord, Finding, OperatingPointRecord, Sheet
+from magsafe.checks.cautions import HotPart, hot_parts, joint_temperatures, least_touch
+from magsafe.checks.keydown_people import again, keep_off, occupied, wait
+from magsafe.checks.sheet import Finding, OperatingPointRecord, Sheet
 from magsafe.design import warmth_tables
-from magsafe.design.model import Design
+from magsafe.design.model import Conductor, Design
 from magsafe.physics.arrays import Array
 from magsafe.physics.heat import absorbed_sunshine, frequency_drift, lost_heat
 from magsafe.spread import Spread
@@ -23,9 +25,9 @@ from magsafe.words import floor_two_digits
 
 FIRST = 5.0  # W, at most, of the first carrier (common practice, as in the cautions)
 CARRIER = 10.0  # s of each carrier: joints warm in seconds (common practice)
-_DOUBLE = 2.0  # 3 dB from step to step: volts and amps grow by 1.41
-_NEAR_TOP = 1.25  # a step nearer to the last one is left out
-_COOL = 0.1  # of its rise that a conductor may keep when hands come back
+_DOUBLE = 2.0  # at most 3 dB from step to step: volts and amps grow by 1.41
+_ALL = 4.0 * CARRIER  # s of the strongest carrier that hold more than all steps, each 1.41 to 2 times the one before
+_AM_CARRIER = 0.25  # of the crest of full amplitude modulation, which doubles the volts
 _COOLING_STEPS = 400
 
 
@@ -48,13 +50,18 @@ class FirstKeydown:
     """The procedure of one transmission.
 
     `tuned` tells whether a capacitor tunes it. `before` are the findings that come first, `others` tells that only
-    other transmissions have such. `steps` is empty where no power is proven; `carrier` is how long each is held [s].
-    `empty` are the places that nobody may be in during them, `wait` is how long after them the first over comes, so
-    that both do not add up where somebody stays [s]; `keep_off` are the distances of an unbroken carrier at the planned
+    other transmissions have such. `steps` is empty where no power is proven and with either of these; `carrier` is how
+    long each is held [s]. `keyed` are the envelope powers in the mode itself after them [W], the last the most; they
+    are several where the mode's mean is less than an unbroken carrier, which then ends lower. `am_carrier` is the most
+    of an AM carrier that nobody speaks on [W], None in other modes.
+    `empty` are the places that nobody may be in during the steps, `wait` is how long after them the first over comes,
+    so that both do not add up where somebody stays, and `again` before another procedure or the same once more [s];
+    `keep_off` are the distances of an unbroken carrier at the planned
     power [m] by tier, None where the search did not bound it. `resonance` is the frequency to tune to [Hz],
     `capacitance` what tunes it [F], `width` the width between the points of SWR 2 [Hz]; each None where not known.
-    `over` and `pause` are those of the design [s], infinite and 0 without; `rise` is the conductor's at the end of the
-    longest over [K], `cooling` how long it then takes to lose nine tenths of that at the worst end [s], `settling` how
+    `over` and `pause` are those of the design [s], infinite and 0 without; `hottest` is the conductor after steps and
+    longest over [K], `hot` what may then burn, the hottest first. `cooling` is how long the conductor takes to cool to
+    where no touch burns at the worst end [s]; `idle` what the air and the sun alone make of it [K]. `settling` is how
     long it takes to come within 5 % of a steady temperature [s]; each None where not known.
     """
 
@@ -64,16 +71,21 @@ class FirstKeydown:
     others: bool
     steps: tuple[Step, ...]
     carrier: float
+    keyed: tuple[float, ...]
+    am_carrier: float | None
     empty: tuple[str, ...]
     wait: float
+    again: float
     keep_off: tuple[tuple[str, float | None], ...]
     resonance: float
     capacitance: Spread | None
     width: Spread | None
     over: float
     pause: float
-    rise: float | None
+    hottest: float | None
+    hot: tuple[HotPart, ...]
     cooling: float | None
+    idle: float | None
     settling: float | None
 
 
@@ -92,29 +104,35 @@ def first_keydown(design: Design, sheet: Sheet, points: Sequence[OperatingPoint]
 def _procedure(design: Design, sheet: Sheet, index: int, warm: Warmth | None) -> FirstKeydown:
     point = sheet.operating_points[index]
     before = tuple(f for f in (*sheet.findings, *point.findings) if f.verdict in ("stop", "unproven"))
-    powers = step_powers(point)
-    metal = warmth_tables.metals().get(design.loop.conductor.material or "copper")
-    expansion = None if metal is None else metal.expansion
-    steps = tuple(_step(point, power, warm, expansion) for power in powers)
-    empty = tuple(dict.fromkeys(_occupied(point, sum(powers) * CARRIER)))
-    figures = point.figures
+    others = not before and sheet.verdict in ("stop", "unproven")
+    powers = () if before or others else step_powers(point, warm)
+    expansion = _expansion(design.loop.conductor)
+    energy = sum(powers) * CARRIER
+    empty = tuple(dict.fromkeys(occupied(design, sheet, index, energy)))
+    figures, most = point.figures, _most(point)
+    hottest = None if warm is None else _hottest(warm, point, powers)
     return FirstKeydown(
         transmission=index,
         tuned=_tuned(point),
         before=before,
-        others=not before and sheet.verdict in ("stop", "unproven"),
-        steps=steps,
+        others=others,
+        steps=tuple(_step(point, power, warm, expansion) for power in powers),
         carrier=CARRIER,
+        keyed=_rising(powers[-1], most)[1:] or (most,) if powers else (),
+        am_carrier=_AM_CARRIER * most if point.mode == "AM" and powers else None,
         empty=empty,
-        wait=_wait(point, empty),
-        keep_off=tuple(_keep_off(point.exposure)),
+        wait=wait(point, empty),
+        again=again(point, empty, energy, len(sheet.operating_points)),
+        keep_off=tuple(keep_off(point.exposure)),
         resonance=point.frequency,
         capacitance=_spread(point, "tuning_capacitance") if "tuning_capacitance" in figures else None,
         width=_spread(point, "swr2_bandwidth") if "swr2_bandwidth" in figures else None,
         over=inf if warm is None else warm.over,
         pause=0.0 if warm is None else warm.pause,
-        rise=None if warm is None else _rise(warm),
-        cooling=None if warm is None else cooling_time(warm),
+        hottest=hottest,
+        hot=() if warm is None or hottest is None else _hot(point, warm, hottest, powers),
+        cooling=None if warm is None or hottest is None else cooling_time(warm, hottest),
+        idle=None if warm is None else warm.idle,
         settling=None if warm is None else settling_time(warm),
     )
 
@@ -122,19 +140,62 @@ def _procedure(design: Design, sheet: Sheet, index: int, warm: Warmth | None) ->
 # Powers ----------------------------------------------------------------------------------------------------
 
 
-def step_powers(point: OperatingPointRecord) -> tuple[float, ...]:
-    """Return the powers of the carriers [W], the first no more than 5 W, the last the ceiling or what is planned.
+def step_powers(point: OperatingPointRecord, warm: Warmth | None) -> tuple[float, ...]:
+    """Return the powers of the carriers [W], the first no more than 5 W, none more than twice the one before.
 
-    Empty where the ceiling is not known, is 0, or leaves something out.
+    The last is what is planned or the ceiling, or less: findings about heat count the mean power of the mode, and these
+    carriers are unbroken. Empty where the ceiling is not known, is 0, or leaves something out.
+
+    Parameters
+    ----------
+    point : the transmission on the sheet
+    warm : its conductor; None where it is not known, which no complete ceiling goes with
     """
+    most = _most(point)
+    top = _floored(_unbroken(point, warm, most))
+    return _rising(min(FIRST, top), top) if top > 0.0 else ()
+
+
+def _most(point: OperatingPointRecord) -> float:
+    """Return the most envelope power in the mode as it is keyed [W]; 0 where none is proven."""
     made = point.power_ceiling
-    if not made.complete or not made.value:
-        return ()
-    top = _floored(min(made.value, point.power))
-    powers = [min(FIRST, top)]
-    while powers[-1] * _DOUBLE * _NEAR_TOP < top:
-        powers.append(powers[-1] * _DOUBLE)
-    return (*powers, top) if top > powers[-1] else tuple(powers)
+    return _floored(min(made.value, point.power)) if made.complete and made.value else 0.0
+
+
+def _unbroken(point: OperatingPointRecord, warm: Warmth | None, most: float) -> float:
+    """Return the most power of carriers of 10 s that heat nothing more than its finding allows [W]."""
+    share = point.duty if warm is None else warm.strongest_share
+    for finding in point.findings:
+        allowed = finding.power_at_margin
+        if allowed is None:
+            continue
+        if _warms_in_seconds(finding.id):
+            most = min(most, allowed * share)
+        if warm is not None and finding.id.startswith(("joint.heat.", "conductor.temperature")):
+            # All steps together may not warm the conductor more than the keying does that the finding allows.
+            kept = float(warm.bare.high_at(np.array([allowed / point.power]))[0])
+            most = min(most, point.power * _of_carriers(warm.bare, _ALL).power_to(kept))
+    return most
+
+
+def _warms_in_seconds(name: str) -> bool:
+    padding = name.startswith("capacitor.padding.") and name.endswith(".heat")
+    return padding or name.startswith(("joint.heat.", "capacitor.heat"))
+
+
+def _of_carriers(warm: Warmth, lasting: float) -> Warmth:
+    """Return a conductor that starts idle and carries an unbroken carrier for so long [s]."""
+    return replace(warm, duty=1.0, over=lasting, pause=inf, tune_share=0.0, tune_time=0.0)
+
+
+def _rising(first: float, last: float) -> tuple[float, ...]:
+    """Return powers from the first to the last [W], as even as two digits allow and none more than doubled."""
+    powers = [first]
+    for left in range(ceil(log2(last / first) - 1e-9), 1, -1):
+        even = powers[-1] * (last / powers[-1]) ** (1.0 / left)
+        low = _floored(even)
+        powers.append(low if last <= low * _DOUBLE ** (left - 1) * (1.0 + 1e-9) else even)
+    return (*powers, last) if last > first else (first,)
 
 
 def _floored(power: float) -> float:
@@ -187,21 +248,56 @@ def _creep(frequency: float, warm: Warmth, share: float, expansion: float) -> fl
     return abs(float(most))
 
 
-def _rise(warm: Warmth) -> float | None:
-    hottest = warm.temperature().high
-    return None if hottest is None or hottest >= RUNS_AWAY else hottest - warm.idle
+def _expansion(made_of: Conductor) -> float | None:
+    """Return the linear expansion of a conductor [1/K], over its heat capacity as the warmth takes it.
 
-
-def cooling_time(warm: Warmth) -> float | None:
-    """Return how long the conductor takes to lose nine tenths of its rise after the longest over [s], at the worst end.
-
-    None where the section or the rise is not known. It follows the heat lost at each temperature, which falls as it
-    cools.
+    Of a metal that is not stated the warmth takes copper's capacity, so what moves most for the same heat is taken.
     """
-    rise = _rise(warm)
-    if rise is None or rise <= 0.0 or warm.capacity == 0.0:
+    metals = warmth_tables.metals()
+    if made_of.material is not None:
+        metal = metals.get(made_of.material)
+        return None if metal is None else metal.expansion
+    copper = metals["copper"].density * metals["copper"].specific_heat
+    return max(each.expansion * max(1.0, copper / (each.density * each.specific_heat)) for each in metals.values())
+
+
+def _hottest(warm: Warmth, point: OperatingPointRecord, powers: Sequence[float]) -> float | None:
+    """Return the conductor's high end after the steps and the longest over [K]; None where nothing holds it."""
+    over = warm.temperature().high
+    if over is None or over >= RUNS_AWAY:
         return None
-    temperatures = warm.idle + np.geomspace(_COOL * rise, rise, _COOLING_STEPS)
+    if not powers:
+        return over
+    one = np.ones(1)
+    share = powers[-1] / point.power
+    steps = float(_of_carriers(warm, sum(powers) / powers[-1] * CARRIER).high_at(share * one)[0])
+    # What the steps leave is never more than added to an over, nor is it hotter than either going on for ever.
+    endless = float(replace(warm, over=inf, pause=0.0).high_at(one)[0])
+    found = min(over + steps - warm.idle, max(endless, over, steps))
+    return None if found >= RUNS_AWAY else found
+
+
+def _hot(point: OperatingPointRecord, warm: Warmth, hottest: float, powers: Sequence[float]) -> tuple[HotPart, ...]:
+    """Return what may burn after steps and over."""
+    # An unbroken carrier may heat a joint more than the planned power does in the mode.
+    stronger = max(1.0, max(powers, default=0.0) / (point.power * warm.strongest_share))
+    after = hottest - (warm.temperature().high or 0.0)
+    joints = joint_temperatures(point.findings, warm.air_temperature + max(0.0, after), stronger)
+    return hot_parts(hottest, tuple(joints))
+
+
+def cooling_time(warm: Warmth, hottest: float) -> float | None:
+    """Return how long a conductor at `hottest` [K] takes until no touch burns, however long [s], at the worst end.
+
+    None where the section is not known, or where air and sun alone keep it hotter than that; 0 where it is no hotter.
+    It follows the heat lost at each temperature, which falls as it cools.
+    """
+    least = least_touch().temperature
+    if warm.idle < least and hottest <= least:
+        return 0.0
+    if warm.idle >= least or warm.capacity == 0.0:
+        return None
+    temperatures = warm.idle + np.geomspace(least - warm.idle, hottest - warm.idle, _COOLING_STEPS)
     lost = _lost_at_worst(warm, temperatures)
     if not bool((lost > 0.0).all()):
         return None
@@ -223,46 +319,3 @@ def settling_time(warm: Warmth) -> float | None:
         float(np.broadcast_to(lost_heat(likely + step, warm.surface, warm.air), 3)[1]) for step in (1, -1)
     )
     return 3.0 * warm.capacity / ((warmer - cooler) / 2.0)
-
-
-# People ----------------------------------------------------------------------------------------------------
-
-
-def _occupied(point: OperatingPointRecord, energy: float) -> Iterator[str]:
-    """Yield the places in which the carriers, `energy` at the transmitter [J], would be more than the rule averages.
-
-    Those that are not proven to be within the limit are among them.
-    """
-    for exposure in point.exposure:
-        for place in exposure.places:
-            if exposure.without or place.when == "tuning":
-                continue
-            bears = bool(place.times) and all(
-                each.carrier >= each.averaging_time or each.carrier * point.power >= energy for each in place.times
-            )
-            if place.verdict in ("stop", "unproven") or not bears:
-                yield place.name
-
-
-def _wait(point: OperatingPointRecord, empty: Sequence[str]) -> float:
-    """Return the longest averaging time of what somebody is exposed to who stays in a place that time limits [s]."""
-    return max(
-        (
-            each.averaging_time
-            for exposure in point.exposure
-            for place in exposure.places
-            if place.name not in empty and place.when != "tuning"
-            for each in place.times
-            if each.carrier < each.averaging_time
-        ),
-        default=0.0,
-    )
-
-
-def _keep_off(exposures: Sequence[ExposureRecord]) -> Iterator[tuple[str, float | None]]:
-    """Yield the farthest distance of an unbroken carrier for each tier [m]."""
-    for who in ("public", "trained"):
-        found = [e.keepout.key_down.any_direction.distance for e in exposures if e.who == who and e.keepout is not None]
-        known = [each for each in found if each is not None and isfinite(each)]
-        if found:
-            yield who, max(known) if len(known) == len(found) else None

@@ -69,7 +69,7 @@ def check(design: Design, on: date | None = None, points: Sequence[OperatingPoin
         sessions=worked,
         measure_first=measure_first(design, points),
         deratings=deratings(design, points),
-        cautions=cautions(points, tuned=design.capacitor.kind != "none"),
+        cautions=cautions(points, tuned=design.capacitor.kind != "none", findings=everything),
     )
 
 

@@ -116,9 +116,7 @@ class Panels:
 
     def _panel(self, view: View, grid: Grid | None) -> None:
         draw, labels, box = self.drawing, Labels(), view.box
-        over = width_of(view.title) > box[2] - box[0]
-        anchor = "end" if over else "start"
-        draw.text((box[2] if over else box[0], box[1] - 1.2), view.title, font_weight="bold", text_anchor=anchor)
+        draw.text((box[0], box[1] - 1.2), view.title, font_weight="bold")
         draw.clip(f"clip-{view.name}", box)
         ground = None if view.name == "plan" or not self.known_height else view.at(0.0, 0.0)[1]
         above = box if ground is None or self._free else (*box[:3], min(box[3], ground))

@@ -5,7 +5,7 @@ from dataclasses import dataclass, replace
 from math import floor, inf, log10
 
 from magsafe.physics.arrays import Array
-from magsafe.reports.svg import Box, Point
+from magsafe.reports.svg import Box, Point, width_of
 
 WIDTH = 148.0  # mm, of an A5 sheet upright
 EDGE, LEFT = 7.0, 9.0  # mm, of the sheet, and beside a view for its measures
@@ -72,6 +72,20 @@ def round_length(least: float) -> float:
     return next(step * power for step in (1.0, 2.0, 5.0, 10.0) if step * power >= least * (1.0 - 1e-9))
 
 
+def _scale_across(row: Sequence[View], wide: float) -> float:
+    """Return the largest scale at which views beside each other fit [mm/m], each at least as wide as its title."""
+    room, titled = wide - (len(row) - 1) * (LEFT + _GAP), [False] * len(row)
+    while not all(titled):
+        held = sum(width_of(view.title) for view, narrow in zip(row, titled, strict=True) if narrow)
+        scale = (room - held) / sum(view.size[0] for view, narrow in zip(row, titled, strict=True) if not narrow)
+        narrower = [width_of(view.title) > view.size[0] * scale for view in row]
+        if not any(now and not before for now, before in zip(narrower, titled, strict=True)):
+            return scale
+        titled = [now or before for now, before in zip(narrower, titled, strict=True)]
+    fits = sum(width_of(view.title) for view in row) <= room
+    return min(width_of(view.title) / view.size[0] for view in row) if fits else -inf
+
+
 def arranged(
     plan: View, sides: Sequence[View], top: float, room: float = WIDTH - 2.0 * EDGE, height: float = HEIGHT
 ) -> tuple[list[View], float, float]:
@@ -87,7 +101,7 @@ def arranged(
     below = list(range(1, len(sides) + 1))
     everything = [plan, *sides]
     for rows in ([[0], below], [[i] for i in (0, *below)], [[0, *below]]):
-        across = min((wide - (len(row) - 1) * (LEFT + _GAP)) / sum(everything[i].size[0] for i in row) for row in rows)
+        across = min(_scale_across([everything[i] for i in row], wide) for row in rows)
         rest = height - len(rows) * (_TOP + _BOTTOM)
         scale = min(across, rest / sum(max(everything[i].size[1] for i in row) for row in rows))
         if scale > best:
@@ -100,6 +114,6 @@ def arranged(
         for i in row:
             view = everything[i]
             made[i] = replace(view, corner=(x, y + tallest - view.size[1] * best), scale=best)
-            x += view.size[0] * best + LEFT + _GAP
+            x += max(view.size[0] * best, width_of(view.title)) + LEFT + _GAP
         y += tallest + _BOTTOM
     return [made[i] for i in sorted(made)], best, y

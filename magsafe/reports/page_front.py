@@ -12,7 +12,7 @@ from magsafe.reports.page import Block, Boxes, Break, Facts, Heading, Items, Par
 from magsafe.reports.page_map import map_blocks
 
 MOST_REASONS, MOST_PLACES = 8, 5  # what leaves the first page room for the rest; all are told on the following ones
-_TALLEST, _SHORTEST, _REASON = 112.0, 60.0, 7.0  # mm: of the map's views, and what each reason takes off them
+_TALLEST, _SHORTEST, _REASON = 108.0, 56.0, 8.7  # mm: of the map's views, and what each reason takes off them
 NAME = 60  # letters of a name
 
 
@@ -37,11 +37,11 @@ def front(
         yield Paragraph(left)
     told = list(telling.in_the_way(sheet))
     yield from _reasons(told)
-    height = max(_SHORTEST, _TALLEST - _REASON * len(told))
+    height = max(_SHORTEST, _TALLEST - _REASON * min(len(told), MOST_REASONS))
     yield Heading("Where people must not be")
     yield from map_blocks(people, design, index, fields, height=height, most=MOST_PLACES)
-    yield Heading("Cautions, in short")
-    yield Items(tuple(_first_sentence(each) for each in sheet.cautions), columns=2, style="small")
+    yield Heading("Cautions")
+    yield Items(tuple(sheet.cautions), columns=2, style="small")
     yield Paragraph(
         "This sheet tells what was computed against the limits that it names. It permits nothing: local regulation, "
         "the licence and the practice of a licensed operator go before it.",
@@ -73,7 +73,10 @@ def _reasons(told: Sequence[telling.Told]) -> Iterator[Block]:
         for each in told[:MOST_REASONS]
     )
     yield Table(
-        "What is not clear, the worst first", ("verdict", "figure and limit", "what to do"), rows, (0.13, 0.5, 0.37)
+        "What is not clear, the worst first; of several powers the lowest counts",
+        ("verdict", "figure and limit", "what to do"),
+        rows,
+        (0.13, 0.5, 0.37),
     )
     if len(told) > MOST_REASONS:
         worst = told[MOST_REASONS].finding.verdict
@@ -106,9 +109,3 @@ def _begun(text: str, most: int = 170) -> str:
         end = found.start()
     begun = words.short(text[:end] if end else text, most)
     return f"{begun}{')' * (begun.count('(') - begun.count(')'))}."
-
-
-def _first_sentence(caution: str) -> str:
-    """Return what a caution is about and its first sentence; the whole of it stands at the end."""
-    about, _, rest = caution.partition(". ")
-    return f"{about}. {rest.partition('. ')[0].rstrip('.')}."

@@ -1,19 +1,21 @@
 """The first key-down in words: what comes first, the steps, what to watch, how long to wait, when to stop."""
 
 from collections.abc import Iterator, Sequence
-from math import inf
+from math import ceil, floor, inf, log10
+
+from scipy.constants import zero_Celsius
 
 from magsafe import words
+from magsafe.checks.cautions import least_touch, told_hot
 from magsafe.checks.first_keydown import FirstKeydown
 from magsafe.checks.sheet import Sheet
 from magsafe.reports.page import Block, Heading, Items, Paragraph, Said, Table
 from magsafe.reports.page_people import use
 from magsafe.spread import Spread
-from magsafe.units import significant
+from magsafe.units import magnitude, significant
 
 _MOST_BEFORE = 8
 _MOST_NAMES = 6
-_COOL_ENOUGH = 5.0  # K of rise that no hand minds
 
 
 def first_keydowns(sheet: Sheet, found: Sequence[FirstKeydown]) -> Iterator[Block]:
@@ -34,7 +36,8 @@ def _procedure(sheet: Sheet, each: FirstKeydown) -> Iterator[Block]:
     yield from _before(sheet, each)
     if not each.steps:
         yield Paragraph(
-            "No steps are told: no power is proven to be clear. They come with the sheet on which one is.", "strong"
+            "No steps are told while something stops or is unproven. They come with the sheet on which nothing does.",
+            "strong",
         )
         return
     yield Items(tuple(_preparing(sheet, each)), numbered=True)
@@ -56,8 +59,6 @@ def _before(sheet: Sheet, each: FirstKeydown) -> Iterator[Block]:
             "design, and compute a new sheet.",
             "strong",
         )
-    if each.steps and (each.before or each.others):
-        yield Paragraph("When the new sheet shows neither stop nor unproven, and its steps are still these:", "strong")
 
 
 def _to_do(each: FirstKeydown) -> Iterator[str]:
@@ -115,9 +116,9 @@ def _steps(found: FirstKeydown) -> Table:
         (
             str(number),
             _watts(each.power),
-            "not known" if each.volts is None else words.number(each.volts, "V", "kV"),
-            "not known" if each.amps is None else words.number(each.amps, "A", "A"),
-            "not known" if each.creep is None else words.number(each.creep, "Hz", "Hz"),
+            "not known" if each.volts is None else up(each.volts, "V", "kV"),
+            "not known" if each.amps is None else up(each.amps, "A", "A"),
+            "not known" if each.creep is None else up(each.creep, "Hz", "Hz"),
         )
         for number, each in enumerate(found.steps, 1)
     )
@@ -125,7 +126,7 @@ def _steps(found: FirstKeydown) -> Table:
         f"Carriers of {found.carrier:.0f} s each, from a distance; listen and look after each",
         (
             "step",
-            "power, W",
+            "power, W PEP",
             f"{where}, kV peak at worst",
             "largest current, A RMS at worst",
             "warmth moves it by, Hz at most",
@@ -140,6 +141,16 @@ def _watts(power: float) -> str:
     return f"{power:.6g}"
 
 
+def up(value: float, si: str, unit: str) -> str:
+    """Return a worst end as a number of `unit` with three digits, rounded up and never down."""
+    shown = magnitude(value, si, unit)
+    if shown <= 0.0:
+        return "0"
+    digit = 10.0 ** (floor(log10(shown)) - 2)
+    # The guard keeps a value that has three digits, but for its last bit, from gaining one.
+    return significant(ceil(shown / digit * (1.0 - 1e-12)) * digit)
+
+
 def _watching(each: FirstKeydown) -> Iterator[str]:
     """Yield what to watch during the steps, the waits, and when to stop."""
     yield (
@@ -149,8 +160,13 @@ def _watching(each: FirstKeydown) -> Iterator[str]:
     )
     yield (
         "Stop, and look for the reason with the transmitter off, when the SWR jumps or creeps past 2, at a glow, a "
-        f"crackle, a smell, or when the power falls by itself. Never beyond {words.watts(each.steps[-1].power)}."
+        f"crackle, a smell, or when the power falls by itself. {_never(each)}"
     )
+    if each.am_carrier is not None:
+        yield (
+            f"AM: before anybody speaks, the carrier alone is at most {words.power(each.am_carrier)}, a quarter of "
+            f"{words.watts(each.keyed[-1])} PEP, to which full modulation raises it."
+        )
     if each.over < inf:
         then = f"{words.duration(each.pause)} of listening" if each.pause else "no pause"
         over = f"send one over as the design has it, {words.duration(each.over)} of transmitting and then {then}"
@@ -159,24 +175,63 @@ def _watching(each: FirstKeydown) -> Iterator[str]:
     else:
         over = "transmit as the design has it"
     wait = f"wait {words.duration(each.wait)}, so that nobody's exposure adds up, and then " if each.wait else ""
-    yield f"After the last carrier {wait}{over}, at no more power, and watch the SWR again. {_warmth(each)}"
+    yield f"After the last carrier {wait}{over}, at {_keyed(each)}, and watch the SWR again. {_warmth(each)}"
+    if each.again:
+        yield (
+            f"Wait {words.duration(each.again)} with nothing on the air before the procedure of another transmission, "
+            "and before these steps are repeated: what people were exposed to adds up over that time."
+        )
+
+
+def _never(each: FirstKeydown) -> str:
+    """Return the powers that nothing goes beyond: of a carrier, and of the mode as it is keyed where that is more."""
+    top, most = each.steps[-1].power, each.keyed[-1]
+    if most <= top:
+        return f"Never beyond {words.watts(top)} PEP."
+    return (
+        f"Never an unbroken carrier beyond {words.watts(top)}: joints and capacitor are proven for the mean power of "
+        f"the mode. As the mode keys it, never beyond {words.watts(most)} PEP."
+    )
+
+
+def _keyed(each: FirstKeydown) -> str:
+    """Return the power of the first over, and how it goes up from there."""
+    if each.keyed[-1] <= each.steps[-1].power:
+        return "no more power"
+    rising = ", ".join(words.floor_two_digits(power) for power in each.keyed[:-1])
+    via = f"{rising} and " if rising else ""
+    pause = ", each after its pause," if each.pause else ""
+    return f"the power of the last carrier, then{pause} at {via}{words.watts(each.keyed[-1])} PEP"
 
 
 def _warmth(each: FirstKeydown) -> str:
-    """Return how long hands stay off."""
-    if each.rise is None:
-        return "How warm the conductor gets is not known: no hand on it before its temperature was measured."
-    rise = significant(each.rise)
-    if each.rise < _COOL_ENOUGH:
-        return f"The conductor warms by {rise} K at most; joints and capacitor may be hotter: wait a minute at least."
-    if each.cooling is None:
-        return (
-            f"The conductor may be {rise} K warmer then; how long it stays so is not known: measure it before a hand."
-        )
-    return (
-        f"The conductor may be {rise} K warmer then, and takes {_minutes(each.cooling)} to lose nine tenths of that: "
-        "no hand on it before."
-    )
+    """Return what is hot, and how long hands stay off."""
+    capacitor = "How hot the capacitor gets is not computed: measure it before a hand touches it."
+    return " ".join((*_hot(each), *((capacitor,) if each.tuned else ())))
+
+
+def _hot(each: FirstKeydown) -> Iterator[str]:
+    """Yield how hot conductor and joints get, and when a hand may touch them."""
+    least = least_touch().temperature
+    if each.hottest is None or each.idle is None:
+        yield "How warm the conductor gets is not known: no hand on it before its temperature was measured."
+    elif not each.hot:
+        yield f"Conductor and joints stay below {_degrees(least)}, where a long touch begins to burn."
+    else:
+        yield f"At worst: {told_hot(each.hot)}; measure before a hand touches it."
+        if each.idle >= least:
+            yield (
+                f"Air and sun alone may keep the conductor at {_degrees(each.idle)}: no hand touches it, or any joint, "
+                "before it is measured."
+            )
+        elif each.cooling:
+            yield f"The conductor takes {_minutes(each.cooling)} to cool to {_degrees(least)}: no hand on it before."
+        elif each.cooling is None:
+            yield f"How long the conductor stays above {_degrees(least)} is not known."
+
+
+def _degrees(kelvin: float) -> str:
+    return f"{ceil(kelvin - zero_Celsius - 1e-9)} degC"
 
 
 def _minutes(seconds: float) -> str:

@@ -19,9 +19,9 @@ from magsafe.reports.marks import MARKS
 from magsafe.reports.page import Page, tree
 
 PAPERS = {"a4": "a4", "letter": "us-letter"}
-_LONG = re.compile(r"\S{22,}")
+_LONG = re.compile(r"\S{18,}")
 _SIGN = re.compile(r"(?<=\w)[._/-](?=\w)")
-_ANYWHERE = re.compile("[^\u200b]{18}(?=[^\u200b]{4})")
+_ANYWHERE = re.compile("[^\u200b]{12}(?=[^\u200b]{3})")
 _BREAK = "\u200b"  # of no width
 _AS_IT_IS = ("kind", "style", "verdict", "svg", "alt")
 

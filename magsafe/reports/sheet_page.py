@@ -124,14 +124,13 @@ def _rests_on(sheet: Sheet) -> Iterator[Block]:
 
 
 def _ending(sheet: Sheet) -> Iterator[Block]:
-    yield Heading("Cautions")
-    yield Items(tuple(sheet.cautions), style="small")
     yield Heading("This sheet")
     digits = sheet.design.sha256
     grouped = " ".join(digits[i : i + 8] for i in range(0, len(digits), 8))
     yield Paragraph(
         f"Made by magsafe {sheet.magsafe}, dated {sheet.date}, from {sheet.design.name}, whose bytes have the SHA-256 "
-        f"{grouped}. The machine form (.json) holds the design's text and every number. What is printed here was "
+        f"{grouped}. The machine form (.json) holds the design's text, every figure and every finding; the "
+        "first key-down follows from them. What is printed here was "
         "computed against the limits it names and promises nothing; local regulation, the licence and a qualified "
         "person's judgement go before it.",
         "small",

@@ -80,11 +80,11 @@ def test_what_is_told_and_in_which_order() -> None:
     places = [lines.index(heading) for heading in headings]
     assert places == sorted(places)
     assert text.startswith(("▲ narrow", "[narrow]"))
-    assert "Volts: 7.58 kV peak at worst in 20 m voice; rated 11.4 kV peak or more" in " ".join(text.split())
+    assert "Volts: 7.36 kV peak at worst in 20 m voice; rated 11.0 kV peak or more" in " ".join(text.split())
     assert "7 to 7.2 MHz (40 m, Regions 1 and 3); 7 to 7.3 MHz (40 m, Region 2)" in " ".join(text.split())
     assert "common practice" in text
     row = next(line for line in lines if line.startswith("100 "))
-    assert row.split() == ["100", "7.58", "15", "43.5", "75", "12.1", "5.0", "56.1"]
+    assert row.split() == ["100", "7.36", "15", "43.2", "75", "11.6", "4.8", "55.7"]
 
 
 def test_the_machine_form_is_that_of_its_model() -> None:
