@@ -684,6 +684,7 @@ def test_a_person_makes_a_file_leaves_and_goes_on(terminal: Callable[..., Any], 
     say(first, WHOLE[0], "", *WHOLE[1:5])
     say(first, "1,5 m")
     first.expect("write a decimal point instead of the comma")
+    first.expect(PROMPT)
     first.sendintr()
     first.expect("\n  magsafe draft -o slipway_west_side.toml\r\n")
     assert status(first) == 2
