@@ -9,7 +9,8 @@ import numpy as np
 
 from magsafe.analysis.flow import Flow
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.analysis.people import HALF_WIDTH, POSTURES
+from magsafe.analysis.people import nearest_to
+from magsafe.analysis.sky import HALF_WAVE_DIPOLE
 from magsafe.design.model import Design, Place
 from magsafe.physics import near_field
 from magsafe.physics.arrays import Array
@@ -17,15 +18,14 @@ from magsafe.physics.far_field import FarField
 from magsafe.physics.near_field import SegmentCurrents
 from magsafe.rules.exemption import Exemption
 
-HALF_WAVE_DIPOLE = 1.64  # gain that ERP is counted against: 47 CFR 1.1307(b), as quoted in a regulatory note
 _PIECES = np.linspace(0.0, 1.0, 9)  # of a segment, for distances
 
 
 def most_eirp(point: OperatingPoint, power: float) -> float | None:
     """Return the most equivalent isotropically radiated power [W] for a power at the transmitter [W].
 
-    Least line loss, highest efficiency, greater directivity in free space; over the ground, where that is known, if it
-    sends more into one direction. None where one of them is not known.
+    Least line loss, highest efficiency, greater directivity: in free space, or over the ground if that sends more into
+    one direction. None where one of them is not known.
     """
     arriving = point.power_at_loop.high
     efficiency = point.figures.conductor_efficiency.spread.high
@@ -33,8 +33,10 @@ def most_eirp(point: OperatingPoint, power: float) -> float | None:
     known = [gain for gain in gains if gain is not None]
     if arriving is None or efficiency is None or len(known) < len(gains):
         return None
-    over_ground = (point.figures.effective_isotropic_radiated_power.spread.high or 0.0) / point.power
-    return power * max(arriving / point.power * efficiency * max(known), over_ground)
+    over_ground = point.figures.effective_isotropic_radiated_power.spread.high
+    if over_ground is None:
+        return None
+    return power / point.power * max(arriving * efficiency * max(known), over_ground)
 
 
 def threshold_power(exemption: Exemption, distances: Array, frequency: float) -> Array:
@@ -55,27 +57,8 @@ def nearest_part(design: Design, point: OperatingPoint, place: Place) -> float |
     """
     if not point.ground_cases or design.loop.centre_height is None:
         return None
-    parts = _parts(design, point)
-    x, y, z = parts.T
-    from_axis = np.hypot(x, y)
-    if place.fence:
-        aside = np.maximum(0.0, place.fence - from_axis)
-        floors = design.site.floors or [0.0]
-        spans = [(floor, floor + POSTURES["standing"]) for floor in floors]
-    else:
-        upright = design.loop.plane == "vertical"
-        first, second = (place.along_axis, place.in_plane) if upright else (place.in_plane, place.across)
-        low = place.floor or 0.0 if place.height is None else place.height
-        tall = POSTURES[place.posture or "standing"] if place.height is None else 0.0
-        half = HALF_WIDTH if place.height is None else 0.0
-        spans = [(low, low + tall)]
-        middle = np.array([first or 0.0, second or 0.0])
-        if design.loop.rotates:
-            aside = np.maximum(0.0, np.abs(np.hypot(*middle) - from_axis) - sqrt(2.0) * half)
-        else:
-            aside = np.linalg.norm(np.maximum(0.0, np.abs(parts[:, :2] - middle) - half), axis=1)
-    above = np.min([np.maximum(0.0, np.maximum(low - z, z - high)) for low, high in spans], axis=0)
-    return max(0.0, float(np.hypot(aside, above).min()) - point.ground_cases[0].flow.shape.radius)
+    nearest = nearest_to(_parts(design, point), design, place)
+    return max(0.0, nearest - point.ground_cases[0].flow.shape.radius)
 
 
 def axis_field(point: OperatingPoint, erp: float, distance: float) -> float | None:

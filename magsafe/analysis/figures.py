@@ -76,10 +76,10 @@ class Figures:
 _LOOP_SOURCE = f"Harrington 1968 (memory); {STUDY}"
 _YAGHJIAN = "Yaghjian & Best 2005 (memory)"
 NO_HEIGHT = "loop.centre_height is not given, so nothing bounds what the ground takes"
-_NO_SOIL = f"{NO_HEIGHT}: it lowers this, so only the other end is known"
-_SOIL_ADDS = f"{NO_HEIGHT}: it adds to this"
+_LOWERED = f"{NO_HEIGHT}: it lowers this, so only the other end is known"
+_ADDED = f"{NO_HEIGHT}: it adds to this"
 _NO_REACTANCE = "loop.centre_height is not given: how far the ground moves the reactance is open"
-_SOIL_WIDENS = f"{NO_HEIGHT}: it widens this"
+_WIDENED = f"{NO_HEIGHT}: it widens this"
 
 
 def figures_of(chain: Chain, design: Design) -> Figures:
@@ -143,7 +143,7 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
     """Return the figures of a loop that is fed as it is."""
     every = chain.terminals()
     likely = complex(chain.resistance("likely", chain.likely), chain.likely.reactance)
-    swr = [tuned_circuit.standing_wave_ratio(each, 50.0) for each in every]
+    swr = tuned_circuit.standing_wave_ratio(np.array(every), 50.0)
     crest = _crest(likely, chain.power.likely or 0.0)
     volts = [[crest, *(_crest(each, power or 0.0) for each in every)] for power in (chain.power.low, chain.power.high)]
     resonance = nearest_resonance(design, chain.frequency)
@@ -159,11 +159,11 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
         likely.imag,
         max(each.imag for each in every_or_likely) if chain.around.height_known else None,
     )
-    match = tuned_circuit.standing_wave_ratio(likely, 50.0)
+    match = float(tuned_circuit.standing_wave_ratio(likely, 50.0))
     found = Spread(
-        None if open_end else min(match, *swr),
+        None if open_end else min(match, float(swr.min())),
         match,
-        None if open_end else max(match, *swr),
+        None if open_end else max(match, float(swr.max())),
     )
     return {
         "terminal_resistance": Figure(
@@ -171,25 +171,25 @@ def _terminals(chain: Chain, design: Design) -> dict[str, Figure]:
             "ohm",
             f"radiation, conductor and joints, seen through a port of any usual width{say}",
             _LOOP_SOURCE,
-            _SOIL_ADDS if open_end else "",
+            _ADDED if open_end else "",
         ),
         "terminal_reactance": Figure(
             reactance, "ohm", f"of a port of any usual width{say}", _LOOP_SOURCE, _no_height(chain)
         ),
         "terminal_peak_voltage": Figure(
-            # More resistance may mean more volts or less, so soil leaves both ends open.
+            # More resistance may mean more volts or less, so an unknown height leaves both ends open.
             Spread(None, crest, None) if open_end else Spread(min(volts[0]), crest, max(volts[1])),
             "V",
             f"crest of the RF at the crest of the envelope, all of the power in the loop{say}",
             _LOOP_SOURCE,
-            _SOIL_WIDENS if open_end else "",
+            _WIDENED if open_end else "",
         ),
         "swr_at_50_ohm": Figure(
             found,
             "1",
             f"of the terminal impedance on a line of 50 ohm, no match between{say}",
             "definition",
-            _SOIL_WIDENS if open_end else "",
+            _WIDENED if open_end else "",
         ),
         "nearest_resonance": Figure(
             UNKNOWN if resonance is None else Spread.exact(resonance).widened(REACTANCE_ERROR, REACTANCE_ERROR),
@@ -208,7 +208,7 @@ def _crest(impedance: complex, power: float) -> float:
 
 def _answer(chain: Chain, ask: Question, error: float, unit: str, method: str, source: str) -> Figure:
     """Return the figure of a question whose answer rises as the resistance falls."""
-    lowers = "" if chain.most else _NO_SOIL
+    lowers = "" if chain.most else _LOWERED
     return Figure(chain.spread(ask).widened(error, error), unit, f"{method}{_say(chain)}", source, lowers)
 
 
@@ -303,7 +303,7 @@ def _total(chain: Chain) -> Figure:
         max((chain.resistance("high", corner) for corner in chain.most), default=None),
     ).widened(RESISTANCE_ERROR, RESISTANCE_ERROR)
     method = f"sum of all, its low end with the least of free space, perfect image and any soil{_say(chain)}"
-    return Figure(found, "ohm", method, _LOOP_SOURCE, "" if chain.most else _SOIL_ADDS)
+    return Figure(found, "ohm", method, _LOOP_SOURCE, "" if chain.most else _ADDED)
 
 
 def _reactance_ends(chain: Chain) -> Spread:
@@ -366,7 +366,7 @@ def _directivities(chain: Chain) -> dict[str, Figure]:
 def _bandwidth(chain: Chain, quality: Spread, factor: float, method: str) -> Figure:
     falling = (quality.high, quality.likely, quality.low)
     ends = [None if q is None else factor * chain.frequency / q for q in falling]
-    why = "" if chain.most else _SOIL_WIDENS
+    why = "" if chain.most else _WIDENED
     return Figure(Spread(*ends), "Hz", f"{method}{_say(chain)}", _YAGHJIAN, why)
 
 
@@ -376,7 +376,7 @@ def _dissipation(chain: Chain) -> Figure:
         "W",
         f"key-down, all parts together; its high end with its own loss high and every other low{_say(chain)}",
         _LOOP_SOURCE,
-        "" if chain.most else _NO_SOIL,
+        "" if chain.most else _LOWERED,
     )
 
 

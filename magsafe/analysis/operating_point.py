@@ -113,6 +113,11 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
     )
 
 
+def operating_points(design: Design) -> tuple[OperatingPoint, ...]:
+    """Return the operating points of a design, one for each transmission."""
+    return tuple(operating_point(design, transmission) for transmission in design.transmission)
+
+
 def _rise(warm: Warmth) -> Figure:
     found, air = warm.temperature(), warm.air_temperature
     ends = [None if end is None or end >= RUNS_AWAY else end - air for end in (found.low, found.likely, found.high)]

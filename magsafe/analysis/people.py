@@ -1,7 +1,7 @@
 """The strongest field where somebody can be: columns, points and fences."""
 
 from dataclasses import dataclass, replace
-from math import ceil, hypot
+from math import ceil, hypot, sqrt
 
 import numpy as np
 
@@ -156,15 +156,8 @@ def _boxes(design: Design, place: Place) -> list[_Box]:
     """Return the box of a place, or one for each bearing of a loop that rotates; none for a fence."""
     if place.fence:
         return []
-    if design.loop.plane == "vertical":
-        x, y = place.along_axis or 0.0, place.in_plane or 0.0
-    else:
-        x, y = place.in_plane or 0.0, place.across or 0.0
-    if place.height is not None:
-        low, high, half = place.height, place.height, 0.0
-    else:
-        low, half = place.floor or 0.0, HALF_WIDTH
-        high = low + POSTURES[place.posture or "standing"]
+    (x, y), half = _middle(design, place), _half_width(place)
+    ((low, high),) = _heights(design, place)
     centres = np.array([[x, y, 0.0]])
     if design.loop.rotates:
         centres = at_bearings(
@@ -173,6 +166,53 @@ def _boxes(design: Design, place: Place) -> list[_Box]:
         )
     wide = np.array([half, half, 0.0])
     return [_Box(centre - wide + [0.0, 0.0, low], centre + wide + [0.0, 0.0, high]) for centre in centres]
+
+
+def from_centre(design: Design, place: Place) -> float:
+    """Return how near somebody at a place comes to the loop's centre [m]; without its height, as if at its height."""
+    level = design.loop.centre_height
+    level = _heights(design, place)[0][0] if level is None else level
+    return nearest_to(np.array([[0.0, 0.0, level]]), design, place)
+
+
+def nearest_to(parts: Array, design: Design, place: Place) -> float:
+    """Return how near somebody at a place comes to the nearest of some parts of the loop [m], shape (part, 3).
+
+    That is the nearest point of the column that they take up; of a rotating loop at its worst bearing.
+    """
+    x, y, z = parts.T
+    from_axis = np.hypot(x, y)
+    half, middle = _half_width(place), np.array(_middle(design, place))
+    if place.fence:
+        aside = np.maximum(0.0, place.fence - from_axis)
+    elif design.loop.rotates:
+        aside = np.maximum(0.0, np.abs(np.hypot(*middle) - from_axis) - sqrt(2.0) * half)
+    else:
+        aside = np.linalg.norm(np.maximum(0.0, np.abs(parts[:, :2] - middle) - half), axis=1)
+    spans = _heights(design, place)
+    above = np.min([np.maximum(0.0, np.maximum(low - z, z - high)) for low, high in spans], axis=0)
+    return float(np.hypot(aside, above).min())
+
+
+def _middle(design: Design, place: Place) -> tuple[float, float]:
+    """Return where the middle of a place is on the ground, x and y [m]."""
+    upright = design.loop.plane == "vertical"
+    first, second = (place.along_axis, place.in_plane) if upright else (place.in_plane, place.across)
+    return first or 0.0, second or 0.0
+
+
+def _half_width(place: Place) -> float:
+    """Return how far a place reaches either way of its middle [m]; a stated height makes it a point."""
+    return HALF_WIDTH if place.height is None else 0.0
+
+
+def _heights(design: Design, place: Place) -> list[tuple[float, float]]:
+    """Return from which height to which a place reaches [m], of a fence on every floor."""
+    if place.height is not None:
+        return [(place.height, place.height)]
+    floors = (design.site.floors or [0.0]) if place.fence else [place.floor or 0.0]
+    tall = POSTURES["standing" if place.fence else place.posture or "standing"]
+    return [(floor, floor + tall) for floor in floors]
 
 
 def _grid(boxes: list[_Box]) -> Array:

@@ -49,7 +49,7 @@ def placings(design: Design, chain: Chain) -> tuple[Placing, ...]:
     Empty in free space, and where ground or height is not stated.
     """
     over, height = chain.around.over, design.loop.centre_height
-    if height is None or not over or not over[0].likely:
+    if height is None or not over or not chain.around.ground_known:
         return ()
     own = design.loop.plane
     first = over[0]

@@ -15,7 +15,7 @@ from magsafe.physics.far_field import FarField
 from magsafe.physics.ground_pattern import GroundPattern, intensities
 from magsafe.spread import Spread
 
-HALF_WAVE_DIPOLE = 1.64  # its gain, which effective radiated power is counted against
+HALF_WAVE_DIPOLE = 1.64  # gain that ERP is counted against: 47 CFR 1.1307(b), as quoted in a regulatory note
 BEARINGS, LEVELS = 24, 30  # directions that are tried for the strongest, over a quarter of a turn of elevation
 PER_WAVE = 8  # levels for each wave of the squared pattern, of a loop high above the ground
 BETWEEN_DIRECTIONS = 0.02  # of the gain, for what lies between them (computed)
@@ -84,11 +84,11 @@ def sky(chain: Chain) -> Sky | None:
     if not over:
         return None
     asked = [_asked(chain, each) for each in over]
-    if not over[0].likely:
+    if not chain.around.ground_known:
         asked.append(_in_free_space(chain, asked[0]))
     found = pattern(chain)
     likely = None if found is None else _likely(chain, found)
-    error = 2.0 * RESISTANCE_ERROR + (2.0 * BETWEEN_SOILS if len(over[0].radiated) > 1 else 0.0)
+    error = soil_error(chain)
     return Sky(
         efficiency=_most_one(
             _spread([one.efficiency for one in asked], None if likely is None else likely.efficiency, error)
@@ -118,7 +118,7 @@ class _Values:
 
 def _asked(chain: Chain, over: OverGround) -> _Values:
     """Return what a current sends over each soil, at each end of the losses and with each excess of the reactance."""
-    elevation, azimuth = _directions(over, chain.frequency)
+    elevation, azimuth = directions(over, chain.frequency)
     sent = intensities(over.flow.segments(), chain.frequency, over.permittivity, elevation, azimuth)
     best = np.argmax(sent, axis=1)
     whole = over.sky.sum(axis=1)
@@ -130,6 +130,11 @@ def _asked(chain: Chain, over: OverGround) -> _Values:
         above_60=over.sky[:, 2] / whole,
         below_20=over.sky[:, 0] / whole,
     )
+
+
+def soil_error(chain: Chain) -> float:
+    """Return the stated relative error of what is sent over soil [1]."""
+    return 2.0 * RESISTANCE_ERROR + (2.0 * BETWEEN_SOILS if len(chain.around.over[0].radiated) > 1 else 0.0)
 
 
 def _in_free_space(chain: Chain, like: _Values) -> _Values:
@@ -163,7 +168,7 @@ def _likely(chain: Chain, found: "Pattern") -> _Values:
     )
 
 
-def _directions(over: OverGround, frequency: float) -> tuple[Array, Array]:
+def directions(over: OverGround, frequency: float) -> tuple[Array, Array]:
     """Return elevations and azimuths that stand for all, shape (direction,) each."""
     levels = _levels(over, frequency)
     up, across = np.meshgrid(
@@ -200,7 +205,7 @@ def _most_one(share: Spread) -> Spread:
 def pattern(chain: Chain) -> Pattern | None:
     """Return where the likely power goes; None in free space, and where ground or height is not stated."""
     over = chain.around.over
-    if not over or not over[0].likely:
+    if not over or not chain.around.ground_known:
         return None
     made, into = _ground_pattern(chain), chain.resistance("likely", chain.likely)
     beyond = 0.5 * pi < CUT_ANGLES

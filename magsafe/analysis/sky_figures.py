@@ -87,7 +87,7 @@ def _ground(chain: Chain, why: str) -> Figure:
         for corner in chain.corners([State(over.flow, over.most)])
     ]
     first = chain.around.over[0]
-    likely = float(first.radiated[0]) - first.alone if first.likely else None
+    likely = float(first.radiated[0]) - first.alone if chain.around.ground_known else None
     found = Spread(min(low), likely, max(high))
     if chain.around.ground_known and first.flow.image:
         method = "the loop with its image in a perfect plane, solved, less the loop alone"
@@ -129,9 +129,9 @@ def _powers(gain: Spread, power: Spread, duty: float, how: str, why: str) -> dic
 
 def _ground_name(chain: Chain) -> str:
     first = chain.around.over[0]
-    if first.flow.image and first.likely:
+    if first.flow.image and chain.around.ground_known:
         return "a perfect plane"
-    return "the soil as stated" if first.likely else "any soil"
+    return "the soil as stated" if chain.around.ground_known else "any soil"
 
 
 def _times(one: Spread, other: Spread) -> Spread:

@@ -2,23 +2,22 @@
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
-from math import ceil, pi
+from math import pi
 
 import numpy as np
-from scipy.constants import c
 
 from magsafe.analysis import terms
 from magsafe.analysis.chain import RESISTANCE_ERROR, Chain
 from magsafe.analysis.exposure import use_of
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.analysis.sky import BEARINGS, BETWEEN_DIRECTIONS, LEVELS, PER_WAVE
+from magsafe.analysis.sky import BETWEEN_DIRECTIONS, directions, soil_error
 from magsafe.analysis.soil import BETWEEN_LOSSES, BETWEEN_SOILS, PERFECT
 from magsafe.analysis.surroundings import OverGround, State
 from magsafe.analysis.terms import Term
 from magsafe.design.model import Design
 from magsafe.physics.arrays import Array
 from magsafe.physics.far_field import IMPEDANCE, FarField
-from magsafe.physics.ground_pattern import GroundPattern, intensities
+from magsafe.physics.ground_pattern import intensities
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +63,7 @@ def _cases(chain: Chain) -> Iterator[_Case]:
 
 def _without_soil(chain: Chain) -> tuple[_Case, ...]:
     """Return what free space makes of the losses at either end; it counts where no ground is stated."""
-    if chain.around.over[0].likely:
+    if chain.around.ground_known:
         return ()
     low, _, high = terms.efficient(chain)
     return tuple(
@@ -77,9 +76,9 @@ def _losses(chain: Chain, each: terms.Column) -> float:
 
 
 def _likely(chain: Chain) -> _Case | None:
-    over = chain.around.over[0]
-    if not over.likely:
+    if not chain.around.ground_known:
         return None
+    over = chain.around.over[0]
     losses = chain.resistance("likely", chain.likely) - chain.likely.radiated
     return _Case(over, 0, chain.likely.radiated, losses, likely=True)
 
@@ -119,17 +118,13 @@ def _chosen(chain: Chain, ask: Callable[[_Case], float], error: float, *, anywhe
     return _Chosen(low, likely, high, error)
 
 
-def _soil_error(chain: Chain) -> float:
-    return 2.0 * RESISTANCE_ERROR + (2.0 * BETWEEN_SOILS if len(chain.around.over[0].radiated) > 1 else 0.0)
-
-
 def _ground(chain: Chain, _: Design, __: OperatingPoint) -> tuple[Term, ...]:
     if not chain.around.over:
         return ()
     low = min(_ground_ends(chain, -1.0), key=lambda each: each.added)
     high = max(_ground_ends(chain, 1.0), key=lambda each: each.added)
     first = chain.around.over[0]
-    likely = (float(first.radiated[0]), first.alone, 0.0) if first.likely else (None, None, None)
+    likely = (float(first.radiated[0]), first.alone, 0.0) if chain.around.ground_known else (None, None, None)
     return (
         Term("R1", (low.radiated, likely[0], high.radiated), "ohm"),
         Term("a", (low.changed, likely[2], high.changed), "ohm"),
@@ -197,7 +192,7 @@ def _efficiency(chain: Chain, _: Design, __: OperatingPoint) -> tuple[Term, ...]
             terms.term("L", "W", columns, lambda each: _losses(chain, each)),
             terms.stated_error(RESISTANCE_ERROR),
         )
-    made = _chosen(chain, lambda case: case.sky / case.whole, _soil_error(chain))
+    made = _chosen(chain, lambda case: case.sky / case.whole, soil_error(chain))
     return (
         made.term("S", "W", lambda case: case.sky),
         made.term("G", "W", lambda case: case.ground),
@@ -225,8 +220,7 @@ def _gain(chain: Chain, _: Design, point: OperatingPoint) -> tuple[Term, ...]:
     if not chain.around.over:
         return _gain_in_free_space(chain, point)
     strongest: dict[int, Array] = {id(over): _strongest(over, chain.frequency) for over in chain.around.over}
-    first = chain.around.over[0]
-    alone, radiated = (0.0, 1.0) if first.likely else _strongest_alone(chain, point)
+    alone, radiated = (0.0, 1.0) if chain.around.ground_known else _strongest_alone(chain, point)
 
     def sent(case: _Case) -> float:
         if case.over is None:
@@ -234,26 +228,15 @@ def _gain(chain: Chain, _: Design, point: OperatingPoint) -> tuple[Term, ...]:
         return likely if case.likely else float(strongest[id(case.over)][case.soil])
 
     # The likely case counts here by its own search, finer than that of the others.
-    likely = _strongest_likely(chain, first) if first.likely else 0.0
-    made = _chosen(chain, lambda case: sent(case) / case.whole, _soil_error(chain) + BETWEEN_DIRECTIONS)
+    found = point.pattern
+    likely = 0.0 if found is None else found.gain * chain.resistance("likely", chain.likely) / (4.0 * pi)
+    made = _chosen(chain, lambda case: sent(case) / case.whole, soil_error(chain) + BETWEEN_DIRECTIONS)
     return made.term("U", "W/sr", sent), made.term("P", "W", lambda case: case.whole), made.off
-
-
-def _strongest_likely(chain: Chain, first: OverGround) -> float:
-    """Return the same in the strongest direction over the likely soil, found by search [W/sr]."""
-    pattern = GroundPattern.of(first.flow.segments(), chain.frequency, complex(first.permittivity[0]))
-    elevation, azimuth = pattern.strongest()
-    return float(pattern.intensity(np.array([elevation]), np.array([azimuth]))[0])
 
 
 def _strongest(over: OverGround, frequency: float) -> Array:
     """Return the power per solid angle in the strongest of the directions that are tried [W/sr], shape (soil,)."""
-    waves = 4.0 * over.flow.shape.height * frequency / c
-    levels = max(LEVELS, PER_WAVE * ceil(waves))
-    up, across = np.meshgrid(
-        0.5 * pi * np.linspace(0.0, 1.0, levels + 1), 2.0 * pi * np.arange(BEARINGS) / BEARINGS, indexing="ij"
-    )
-    sent = intensities(over.flow.segments(), frequency, over.permittivity, up.ravel(), across.ravel())
+    sent = intensities(over.flow.segments(), frequency, over.permittivity, *directions(over, frequency))
     return np.asarray(sent.max(axis=1))
 
 

@@ -16,9 +16,9 @@ from magsafe.physics.small_loop import UNIFORM_CURRENT
 PERFECT = 1.0 - 1e24j  # relative permittivity that stands for sheet metal where only its reflection is asked
 NEARLY_PERFECT = 1.0 - 1e12j  # the same where power is integrated, with fewer samples near the horizon
 CONDUCTIVITIES, PERMITTIVITIES = 9, 4  # samples between the ends of a span: see BETWEEN_SOILS
-ANY_CONDUCTIVITY = np.geomspace(1e-5, 10.0, 37)  # S/m: from dry ice and sand to brine
+ANY_CONDUCTIVITY = np.geomspace(1e-5, 10.0, 37)  # S/m: from dry ice and sand to brine (common practice)
 ANY_PERMITTIVITY = np.array([1.0, 2.0, 3.0, 5.0, 10.0, 20.0, 40.0, 90.0])
-LOWEST = 1.2  # radii: nearer to soil a loop's current is no longer that of free space or of the image (reference notes)
+LOWEST = 1.2  # radii: from there up the current over soil keeps between those of free space and image (computed)
 BETWEEN_SOILS = 0.01  # of a resistance, for what lies between the samples (computed)
 BETWEEN_LOSSES = 0.04  # of what soil adds, for the same at its low end (computed)
 

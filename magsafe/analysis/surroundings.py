@@ -2,7 +2,8 @@
 
 Over soil the current is solved alone and with its image in a perfect plane. What either current draws over the soil is
 integrated, so the two tell how far the current's own change matters: from 1.2 radii up what the current that flows over
-the soil draws lies between them (held against the soil's own field in the matrix).
+the soil draws lies between them, each moved outwards by how far they are apart (computed, with the soil's own field in
+the matrix).
 """
 
 from dataclasses import dataclass, replace
@@ -45,9 +46,9 @@ class OverGround:
     `alone` is the radiation resistance in free space of the loop with its port there [ohm], `radiated` that of its
     radiation and the ground together [ohm], shape (soil,), `shift` what soil adds to the reactance of a current solved
     in free space [ohm], shape (soil,), and `sky` what leaves into the sky, in the bands of elevation of
-    `wave_spectrum.EDGES` [ohm], shape (soil, 3). `permittivity` is the soil's [1], shape (soil,); where
-    `likely` holds, its first is the likely one. `least` and `most` are the ends of `radiated`, with what lies between
-    the samples and with the current's own change.
+    `wave_spectrum.EDGES` [ohm], shape (soil, 3). `permittivity` is the soil's [1], shape (soil,), the likely
+    one first where a ground is stated. `least` and `most` are the ends of `radiated`, with what lies between the
+    samples and with the current's own change.
     """
 
     flow: Flow
@@ -56,7 +57,6 @@ class OverGround:
     radiated: Array
     shift: Array
     sky: Array
-    likely: bool
     least: float
     most: float
 
@@ -67,7 +67,8 @@ class Surroundings:
 
     `free` are the currents in free space, one for each place where the capacitor may be; `likely` is the state that
     likely values are told for. `least` are the states with the least resistance that free space, a perfect image or any
-    soil of the span can give; `most` those with the most that the ground stated gives, empty where no height bounds it.
+    soil of the span can give; `most` those with the most that the ground stated gives, or any where none is,
+    empty where no height bounds it.
     `fields` are the states whose fields are compared; `over` the currents over the ground that may be, those of `free`
     and those with their image, empty in free space and without a height. `ground_known` tells whether the likely state
     is that of the ground stated, `height_known` whether the image's part in the reactance is.
@@ -100,7 +101,7 @@ def surroundings(design: Design, frequency: float) -> Surroundings:
         return Surroundings(free, own[0], both, both, both, over, ground_known=True, height_known=True)
     soils, known = permittivities(design, frequency), design.ground_name is not None
     pairs = tuple(
-        _with_change(*(over_soil(each, one.radiation, frequency, soils, likely=known) for each in (one, other)))
+        _with_change(*(over_soil(each, one.radiation, frequency, soils) for each in (one, other)))
         for one, other in zip(free, imaged, strict=True)
     )
     # Soil that reflects as the plane does may leave less resistance than the plane.
@@ -119,24 +120,27 @@ def surroundings(design: Design, frequency: float) -> Surroundings:
     over = tuple(each for currents in zip(*pairs, strict=True) for each in currents)
     if not known:
         most += (*alone, *own)
-        over += tuple(
-            over_plane(each, one.radiation, frequency, likely=False) for each, one in zip(imaged, free, strict=True)
-        )
+        over += tuple(over_plane(each, one.radiation, frequency) for each, one in zip(imaged, free, strict=True))
     fields = (*least_alone, *(State(each, least) for each, least in zip(imaged, with_image, strict=True)))
     return Surroundings(
         free, likely, (*least_alone, *least_imaged), most, fields, over, ground_known=known, height_known=True
     )
 
 
-def over_soil(current: Flow, alone: float, frequency: float, soils: ComplexArray, *, likely: bool) -> OverGround:
-    """Return what a current draws over soils at a frequency [Hz]; `alone` and `likely` as in `OverGround`."""
+def over_soil(current: Flow, alone: float, frequency: float, soils: ComplexArray) -> OverGround:
+    """Return what a current draws over soils at a frequency [Hz]; `alone` as in `OverGround`."""
     spectrum = WaveSpectrum.of(current.segments(), frequency, soils)
     # What the current radiates alone is told by the solver; the spectrum tells what the soil adds.
     own = alone if not current.image else spectrum.free_power
     radiated = own + spectrum.power(soils, HERE)[:, 0] - spectrum.free_power
     shift = np.zeros(len(soils)) if current.image else spectrum.reactive_power(soils, HERE)[:, 0]
     sky = spectrum.sky_power(soils, HERE)[:, 0]
-    return OverGround(current, alone, soils, radiated, shift, sky, likely, *_ends(radiated, radiated, alone))
+    return OverGround(current, alone, soils, radiated, shift, sky, *_ends(radiated, radiated, alone))
+
+
+def soil_shift(current: Flow, frequency: float, soils: ComplexArray) -> Array:
+    """Return what soils add to the reactance of a current solved in free space [ohm], shape (soil,)."""
+    return WaveSpectrum.of(current.segments(), frequency, soils).reactive_power(soils, HERE)[:, 0]
 
 
 def _with_change(free: OverGround, imaged: OverGround) -> tuple[OverGround, OverGround]:
@@ -157,7 +161,7 @@ def _ends(lower: Array, upper: Array, alone: float) -> tuple[float, float]:
     return max(0.0, least), most
 
 
-def over_plane(current: Flow, alone: float, frequency: float, *, likely: bool = True) -> OverGround:
+def over_plane(current: Flow, alone: float, frequency: float) -> OverGround:
     """Return what a current with its image radiates over a perfect plane at a frequency [Hz]."""
     plane, radiation = np.array([NEARLY_PERFECT]), current.radiation
     sky = WaveSpectrum.of(current.segments(), frequency, plane).sky_power(plane, HERE)[:, 0]
@@ -168,7 +172,6 @@ def over_plane(current: Flow, alone: float, frequency: float, *, likely: bool = 
         radiated=np.array([radiation]),
         shift=np.zeros(1),
         sky=sky,
-        likely=likely,
         least=radiation,
         most=radiation,
     )

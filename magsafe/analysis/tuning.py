@@ -18,7 +18,7 @@ from magsafe.analysis.chain import (
 from magsafe.analysis.flow import TUNING_SCAN, flow, inductance, reactances, tuning_limit
 from magsafe.analysis.losses import Corner, conductor_loss
 from magsafe.analysis.soil import permittivities
-from magsafe.analysis.surroundings import over_soil
+from magsafe.analysis.surroundings import soil_shift
 from magsafe.analysis.wires import electrical_radius, positions
 from magsafe.design import tables
 from magsafe.design.model import Capacitor, Design
@@ -171,7 +171,7 @@ def _over_soil(
         for frequency in asked:
             alone = flow(design, float(frequency), position, image=False)
             soils = permittivities(design, float(frequency))
-            shift = over_soil(alone, alone.radiation, float(frequency), soils, likely=True).shift
+            shift = soil_shift(alone, float(frequency), soils)
             shares.append([shift[0] / alone.reactance, shift.min() / alone.reactance, shift.max() / alone.reactance])
         share = CubicSpline(2.0 * pi * asked, np.array(shares))(place)
         found += [(bare + each * perfect, perfect + each * perfect) for each in share.T]

@@ -42,10 +42,10 @@ class Warmth:
 
     `heat` is key-down [W/m], by its own worst corner; `surface` and `air` hold the ends (low, likely, high) of the
     temperature, shape (3,); `bare_heat` is the high end without credit for what is typical of other parts; `growth` is
-    the resistance at the start of an over over that at 20 degC [1]. `capacity` is what a metre holds [J/K], 0 where the
-    section is not known. `over` and `pause` are the longest over and what follows it [s]; an over without end is
-    infinite. `tune_share` is the tune-up's carrier over the envelope [1], which lasts `tune_time` [s]. `finish_stated`
-    tells whether the surface is the design's word.
+    the resistance at the start of an over over that at 20 degC [1]. `capacity` is what a metre holds at least [J/K] and
+    `most_capacity` at most, the same where the metal is stated, 0 where the section is not known. `over` and `pause`
+    are the longest over and what follows it [s]; an over without end is infinite. `tune_share` is the tune-up's carrier
+    over the envelope [1], which lasts `tune_time` [s]. `finish_stated` tells whether the surface is the design's word.
     """
 
     heat: Spread
@@ -56,6 +56,7 @@ class Warmth:
     exponent: float
     growth: float
     capacity: float
+    most_capacity: float
     duty: float
     over: float
     pause: float
@@ -104,19 +105,24 @@ class Warmth:
         surface = self.surface if self.finish_stated else replace(self.surface, emissivity=0.0, absorptivity=1.0)
         return replace(self, surface=surface, heat=Spread(None, None, self.bare_heat))
 
+    @property
+    def slowest(self) -> "Warmth":
+        """The same of the metal that holds most heat: the slowest to warm and to cool."""
+        return replace(self, capacity=self.most_capacity)
+
     def high_at(self, powers: Array) -> Array:
         """Return the high end [K] at powers that are so many times the one computed, shape (power,)."""
         key_down = (self.heat.high or 0.0) * powers
         heats = key_down * self.duty
         over = np.minimum(
-            self._steady_high(heats), self._steady_high(heats * self.share) + self._added(heats, self.over)
+            self._steady_high(heats), self._steady_high(heats * self.share) + self.rise_of(heats, self.over)
         )
         if self.tune_time == 0.0:
             return over
         # A design's tune-up is no stronger than its envelope, so it goes with the power.
         tuning = key_down * self.tune_share
         ever = np.maximum(over, self._steady_high(tuning))
-        return np.minimum(ever, over + self._added(tuning, self.tune_time))
+        return np.minimum(ever, over + self.rise_of(tuning, self.tune_time))
 
     @property
     def strongest_share(self) -> float:
@@ -139,6 +145,20 @@ class Warmth:
             low, high = float(powers[kept[-1]]), float(powers[min(int(kept[-1]) + 1, _TRIED - 1)])
         return low
 
+    def rise_of(self, heat: Values, lasting: float) -> Array:
+        """Return what a heat [W/m] brings at most [K] while it lasts [s], none of it lost; infinite where not known."""
+        endless = self.capacity == 0.0 or lasting == inf
+        return np.full(np.shape(heat), inf) if endless else np.asarray(heat) * (lasting / self.capacity)
+
+    def time_constant(self, temperature: float) -> float:
+        """Return the time constant about a temperature [K] at the likely end [s]; 0 where the section is not known."""
+        return self.capacity / self._conductance(temperature)
+
+    def _conductance(self, temperature: float) -> float:
+        """Return what a metre loses more for each kelvin about a temperature at the likely end [W/(m K)]."""
+        cooler, warmer = (lost_heat(temperature + step, self.surface, self.air) for step in (-0.5, 0.5))
+        return float(np.broadcast_to(warmer - cooler, 3)[1])
+
     def _steady_high(self, heats: Array) -> Array:
         return self._steady_at(2, heats)
 
@@ -152,11 +172,6 @@ class Warmth:
         temperatures, kept = _balance(tuple(floats), self.coefficient, self.exponent)
         return np.interp(heats / self.growth, kept, temperatures, right=RUNS_AWAY)
 
-    def _added(self, heats: Array, lasting: float) -> Array:
-        """Return what so much heat [W/m] brings at most [K] to a metre while it lasts [s]."""
-        endless = self.capacity == 0.0 or lasting == inf
-        return np.full(heats.shape, inf) if endless else heats * (lasting / self.capacity)
-
     def _steady(self, heats: Array) -> Array:
         return np.array([float(self._steady_at(end, heats[end : end + 1])[0]) for end in range(3)])
 
@@ -164,11 +179,10 @@ class Warmth:
         """Return how far an over ends above the mean [K m/W], for a body that loses in proportion."""
         if self.share == 1.0:
             return 0.0
-        cooler, warmer = (lost_heat(temperature + step, self.surface, self.air) for step in (-0.5, 0.5))
-        conductance = float(np.broadcast_to(warmer - cooler, 3)[1])
+        conductance = self._conductance(temperature)
         if self.capacity == 0.0:
             return (1.0 - self.share) / conductance
-        constant = self.capacity / conductance
+        constant = self.time_constant(temperature)
         end = np.expm1(-self.over / constant) / np.expm1(-(self.over + self.pause) / constant)
         return (float(end) - self.share) / conductance
 
@@ -198,6 +212,7 @@ def warmth(chain: Chain, design: Design, use: Use) -> Warmth:
     warm = ElectricHeat(1.0, coefficient, exponent).growth(made_of.temperature)
     over, pause = _pattern(use)
     heat, bare = _heat(chain, design)
+    capacity, most = _capacities(made_of)
     return Warmth(
         heat=heat,
         bare_heat=bare,
@@ -206,7 +221,8 @@ def warmth(chain: Chain, design: Design, use: Use) -> Warmth:
         coefficient=coefficient,
         exponent=exponent,
         growth=float(warm),
-        capacity=_capacity(made_of),
+        capacity=capacity,
+        most_capacity=most,
         duty=use.duty,
         over=over,
         pause=pause,
@@ -325,12 +341,30 @@ def _depth(made_of: Conductor, frequency: float) -> float:
     return float(skin_depth(frequency, poorest_conductivity(made_of)))
 
 
-def _capacity(made_of: Conductor) -> float:
-    """Return the heat that warms a metre by one kelvin [J/(m K)]; 0 where nothing tells how much metal is in it."""
-    metal, section = warmth_tables.metals().get(made_of.material or "copper"), _section(made_of)
-    if metal is None or section is None:
-        return 0.0
-    return float(heat_capacity_per_metre(section, metal.density, metal.specific_heat))
+def expansion_of(made_of: Conductor) -> float | None:
+    """Return the linear expansion of a conductor [1/K], None where no table has it.
+
+    Where its metal is not stated it is that of the metal that expands most.
+    """
+    return max((metal.expansion for metal in _metals(made_of)), default=None)
+
+
+def _capacities(made_of: Conductor) -> tuple[float, float]:
+    """Return the least and the most heat that may warm a metre by one kelvin [J/(m K)], one where its metal is stated.
+
+    Both are 0 where nothing tells how much metal is in it.
+    """
+    section = _section(made_of)
+    if section is None:
+        return 0.0, 0.0
+    held = [float(heat_capacity_per_metre(section, each.density, each.specific_heat)) for each in _metals(made_of)]
+    return min(held, default=0.0), max(held, default=0.0)
+
+
+def _metals(made_of: Conductor) -> list[warmth_tables.Metal]:
+    """Return the metals that a conductor may be of: every one of the table where only its conductivity is stated."""
+    table = warmth_tables.metals()
+    return [metal for name, metal in table.items() if made_of.material in (None, name)]
 
 
 def _section(made_of: Conductor) -> float | None:

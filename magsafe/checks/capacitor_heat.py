@@ -14,8 +14,9 @@ from magsafe.checks.sheet import Finding
 from magsafe.design.model import Capacitor, Design, Padding
 from magsafe.spread import Spread
 
+CAPACITOR_HEAT = "capacitor.heat"  # id of the finding
 _HEAT = Check(
-    "capacitor.heat",
+    CAPACITOR_HEAT,
     "Does the capacitor stand its own heat?",
     "fit a capacitor with a higher Q or one that may be hotter, or use shorter overs",
     "the dissipation rating as stated; the losses as listed",

@@ -8,11 +8,11 @@ from scipy.constants import zero_Celsius
 
 from magsafe import words
 from magsafe.analysis.operating_point import OperatingPoint
+from magsafe.checks.heat import JOINT
 from magsafe.checks.sheet import Finding
 from magsafe.design.warmth_tables import TouchThreshold, touch_thresholds
 
 MELTED = 1300.0  # K: above, no loop is left
-_JOINT = "joint.heat."
 _MOST_PARTS = 3  # named; a reader needs the hottest, and that there are more
 
 
@@ -54,9 +54,9 @@ def joint_temperatures(findings: Sequence[Finding], air: float, stronger: float 
     stronger : times what the findings counted as a joint's power
     """
     for finding in findings:
-        if finding.id.startswith(_JOINT):
+        if finding.id.startswith(JOINT):
             rise = None if finding.value is None else finding.value.high
-            name = f"joint {words.short(finding.id.removeprefix(_JOINT))}"
+            name = f"joint {words.short(finding.id.removeprefix(JOINT))}"
             yield name, inf if rise is None else air + rise * stronger
 
 

@@ -77,7 +77,7 @@ def compare(first: Source, second: Source, not_compared: Sequence[str] = ()) -> 
         *findings(before, after, pairs, renamed),
         *compare_people.rules(before, after),
         *compare_people.places_gone_and_new(before, after),
-        *compare_people.people(pairs),
+        *compare_people.people(pairs, compare_people.editions(after)),
         *compare_people.worked_in_turn(before, after, renamed),
         *figures(pairs),
         *inputs(before, after),

@@ -1,6 +1,6 @@
 """What differs about people between two sheets: rules, places, distances, sessions, exemptions."""
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Collection, Iterator, Mapping, Sequence
 
 from magsafe import words
 from magsafe.checks.comparison import Change, differ, factor, toward
@@ -85,10 +85,13 @@ def places_gone_and_new(before: Sheet, after: Sheet) -> Iterator[Change]:
         )  # fmt: skip
 
 
-def people(pairs: Pairs) -> Iterator[Change]:
-    """Yield what differs in places, distances and exemptions of transmissions that both sheets have."""
+def people(pairs: Pairs, judged: Collection[str]) -> Iterator[Change]:
+    """Yield what differs in places, distances and exemptions of transmissions that both sheets have.
+
+    `judged` are the rules that the second sheet judges anything by.
+    """
     for old, new in pairs:
-        yield from _exposures(old.exposure, new.exposure, new.name, None)
+        yield from _exposures(old.exposure, new.exposure, judged, new.name, None)
         yield from _exemptions(old.exemptions, new.exemptions, new.name)
 
 
@@ -97,13 +100,14 @@ def worked_in_turn(before: Sheet, after: Sheet, renamed: Mapping[str, str]) -> I
 
     `renamed` gives today's names of the transmissions of the first sheet.
     """
+    judged = editions(after)
     old = {_members(session, before, renamed): session for session in before.sessions}
     new = {_members(session, after, {}): session for session in after.sessions}
     for members in {**old, **new}:
         was, now = old.get(members), new.get(members)
         name = ", ".join(sorted(members))
         if was is not None and now is not None:
-            yield from _exposures(was.exposure, now.exposure, None, name)
+            yield from _exposures(was.exposure, now.exposure, judged, None, name)
         elif was is not None:
             text = f"{name} are not counted as worked in turn any more"
             yield Change(
@@ -122,13 +126,17 @@ def _members(session: SessionRecord, sheet: Sheet, renamed: Mapping[str, str]) -
 
 
 def _exposures(
-    before: Sequence[_Exposure], after: Sequence[_Exposure], transmission: str | None, session: str | None
+    before: Sequence[_Exposure],
+    after: Sequence[_Exposure],
+    judged: Collection[str],
+    transmission: str | None,
+    session: str | None,
 ) -> Iterator[Change]:
     new = {(each.rule, each.who): each for each in after}
     for was in before:
         now = new.get((was.rule, was.who))
         if now is None:
-            if any(each.rule == was.rule for each in after):
+            if was.rule in judged:  # else the rule itself is told as gone
                 yield _tier_gone(was, transmission, session)
             continue
         yield from _distances(was, now, transmission, session)
@@ -203,11 +211,27 @@ def _distances(was: _Exposure, now: _Exposure, transmission: str | None, session
                 weight=1e6,
             )
         return
-    new = dict(_all_distances(now.keepout))
-    for part, old in _all_distances(was.keepout):
-        if part not in new or old.distance == new[part].distance:
+    old, new = dict(_all_distances(was.keepout)), dict(_all_distances(now.keepout))
+    for part in {**old, **new}:
+        if part not in old or part not in new:
+            gone = part in old
+            distance = (old if gone else new)[part].distance
+            yield Change(
+                kind="keepout",
+                direction="worse" if gone else "other",
+                transmission=transmission,
+                session=session,
+                of=of,
+                part=part,
+                before=distance if gone else None,
+                after=None if gone else distance,
+                unit="m",
+                text=f"keep-out {of}{where}: {part} {metres(distance)}, {'not told any more' if gone else 'told now'}",
+            )
             continue
-        first, second = old.distance, new[part].distance
+        if old[part].distance == new[part].distance:
+            continue
+        first, second = old[part].distance, new[part].distance
         # Unbounded is further than any distance.
         grown = second is None or (first is not None and second > first)
         yield Change(
@@ -254,7 +278,14 @@ def _exemptions(
     new = {(each.rule, each.jurisdiction, each.name): each for each in after}
     for was in before:
         now = new.get((was.rule, was.jurisdiction, was.name))
-        if now is None or _exempt(was) == _exempt(now):
+        if now is None:
+            yield Change(
+                kind="exemption", direction="other", transmission=transmission, of=f"{was.rule}, {was.name}",
+                before=_told(was), after=None,
+                text=f"{was.rule}, {was.name}{_where(transmission, None)}: {_told(was)} before, not told any more",
+            )  # fmt: skip
+            continue
+        if _exempt(was) == _exempt(now):
             continue
         yield Change(
             kind="exemption",

@@ -4,7 +4,7 @@ from collections.abc import Iterator, Sequence
 
 from magsafe import words
 from magsafe.checks.comparison import Change, Direction, differ, factor, toward
-from magsafe.checks.sheet import ORDER, OperatingPointRecord, Verdict
+from magsafe.checks.sheet import ORDER, OperatingPointRecord, Verdict, worst
 from magsafe.units import significant
 
 _NEAR = 0.05  # of the frequency: as far as one transmission may have moved and still be the same without its name
@@ -89,4 +89,4 @@ def _use(old: _Point, now: _Point) -> Iterator[Change]:
 
 
 def _worst_of(point: _Point) -> Verdict:
-    return min((finding.verdict for finding in point.findings), key=ORDER.index, default="clear")
+    return worst(tuple(finding.verdict for finding in point.findings))

@@ -1,7 +1,7 @@
 """What a recheck finds, in machine form. JSON comes from these models; values are in SI units, as on the sheet."""
 
 from math import floor, log10
-from typing import Annotated, Literal
+from typing import Annotated, Literal, get_args
 
 from pydantic import Field
 
@@ -13,6 +13,7 @@ DIGITS = 3
 
 Answer = Literal["holds", "outdated", "does not hold"]
 Direction = Literal["worse", "unknown", "better", "other"]
+# The most dangerous first: what decides about the key, then people, then what is asked at all.
 Kind = Literal[
     "verdict",
     "ceiling",
@@ -30,25 +31,8 @@ Kind = Literal[
     "software",
     "layout",
 ]
-DIRECTIONS: tuple[Direction, ...] = ("worse", "unknown", "better", "other")
-# The most dangerous first: what decides about the key, then people, then what is asked at all.
-KINDS: tuple[Kind, ...] = (
-    "verdict",
-    "ceiling",
-    "finding",
-    "place",
-    "keepout",
-    "rule",
-    "margin",
-    "transmission",
-    "figure",
-    "exemption",
-    "input",
-    "assumption",
-    "caution",
-    "software",
-    "layout",
-)
+DIRECTIONS: tuple[Direction, ...] = get_args(Direction)
+KINDS: tuple[Kind, ...] = get_args(Kind)
 HARMLESS: frozenset[Kind] = frozenset({"software", "layout"})  # a sheet holds in spite of these
 
 

@@ -3,12 +3,12 @@
 import numpy as np
 
 from magsafe.analysis.exemption import (
-    HALF_WAVE_DIPOLE,
     axis_field,
     most_eirp,
     nearest_part,
     threshold_power,
 )
+from magsafe.analysis.sky import HALF_WAVE_DIPOLE
 from magsafe.checks.sheet import ExemptionPlace, ExemptionRecord
 from magsafe.checks.view import View
 from magsafe.rules.exemption import Exemption
@@ -67,7 +67,8 @@ def _power(view: View, exemption: Exemption, time: float) -> tuple[float | None,
         return power, ""
     eirp = most_eirp(view.point, power)
     if eirp is None:
-        reason = view.point.figures.conductor_efficiency.why or view.point.figures.directivity_in_plane.why
+        figures = view.point.figures
+        reason = figures.conductor_efficiency.why or figures.effective_isotropic_radiated_power.why
         return None, f"its gain is not known{f': {reason}' if reason else ''}"
     return (eirp if exemption.kind == "EIRP" else eirp / HALF_WAVE_DIPOLE), ""
 

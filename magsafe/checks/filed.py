@@ -13,7 +13,8 @@ from unicodedata import category
 
 from pydantic import ValidationError
 
-from magsafe.checks.sheet import SCHEMA, Sheet, worst
+from magsafe.checks.ceiling import ceiling, least
+from magsafe.checks.sheet import SCHEMA, PowerCeiling, Sheet, worst
 from magsafe.design.model import Design
 from magsafe.design.quantities import printable, show
 from magsafe.design.reading import LARGEST_FILE, parse_design, written
@@ -292,6 +293,25 @@ def _check_unaltered(sheet: Sheet, name: str) -> None:
             name, "verdict", f'"{sheet.verdict}", where the findings give "{given}": the sheet was altered',
             "the sheet as it was filed", _DISTRUST,
         )  # fmt: skip
+    for index, point in enumerate(sheet.operating_points):
+        _check_ceiling(
+            name,
+            f"operating_points[{index}].power_ceiling",
+            point.power_ceiling,
+            ceiling((*point.findings, *sheet.findings), index),
+        )
+    _check_ceiling(name, "power_ceiling", sheet.power_ceiling, least([p.power_ceiling for p in sheet.operating_points]))
+
+
+def _check_ceiling(name: str, key: str, filed: PowerCeiling, given: PowerCeiling) -> None:
+    """Refuse a power that the findings do not give; which of them it names may be another version's way."""
+    for part in ("value", "at_limit"):
+        told, true = getattr(filed, part), getattr(given, part)
+        if told != true:
+            _refuse(
+                name, f"{key}.{part}", f"{told}, where the findings give {true}: the sheet was altered",
+                "the sheet as it was filed", _DISTRUST,
+            )  # fmt: skip
 
 
 def _check_spreads(sheet: Sheet, name: str) -> None:

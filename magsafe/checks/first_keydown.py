@@ -6,20 +6,21 @@ a proven ceiling there are no steps.
 
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
-from math import ceil, inf, log2, sqrt
+from math import ceil, inf, isfinite, log2, sqrt
 
 import numpy as np
-from scipy.integrate import trapezoid
 
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.analysis.warmth import RUNS_AWAY, Warmth
+from magsafe.analysis.warmth import RUNS_AWAY, Warmth, expansion_of
+from magsafe.checks.capacitor_heat import CAPACITOR_HEAT
 from magsafe.checks.cautions import HotPart, hot_parts, joint_temperatures, least_touch
+from magsafe.checks.heat import CONDUCTOR, JOINT
 from magsafe.checks.keydown_people import again, keep_off, occupied, wait
+from magsafe.checks.padding import is_padding_heat
 from magsafe.checks.sheet import Finding, OperatingPointRecord, Sheet
-from magsafe.design import warmth_tables
-from magsafe.design.model import Conductor, Design
-from magsafe.physics.arrays import Array
-from magsafe.physics.heat import absorbed_sunshine, frequency_drift, lost_heat
+from magsafe.design.model import AM_CREST, Design
+from magsafe.physics.heat import CEILING, frequency_drift
+from magsafe.physics.warming import time_to_cool
 from magsafe.spread import Spread
 from magsafe.words import floor_two_digits
 
@@ -27,8 +28,6 @@ FIRST = 5.0  # W, at most, of the first carrier (common practice, as in the caut
 CARRIER = 10.0  # s of each carrier: joints warm in seconds (common practice)
 _DOUBLE = 2.0  # at most 3 dB from step to step: volts and amps grow by 1.41
 _ALL = 4.0 * CARRIER  # s of the strongest carrier that hold more than all steps, each 1.41 to 2 times the one before
-_AM_CARRIER = 0.25  # of the crest of full amplitude modulation, which doubles the volts
-_COOLING_STEPS = 400
 
 
 @dataclass(frozen=True, slots=True)
@@ -106,20 +105,21 @@ def _procedure(design: Design, sheet: Sheet, index: int, warm: Warmth | None) ->
     before = tuple(f for f in (*sheet.findings, *point.findings) if f.verdict in ("stop", "unproven"))
     others = not before and sheet.verdict in ("stop", "unproven")
     powers = () if before or others else step_powers(point, warm)
-    expansion = _expansion(design.loop.conductor)
+    expansion = expansion_of(design.loop.conductor)
+    tuned = design.capacitor.kind != "none"
     energy = sum(powers) * CARRIER
     empty = tuple(dict.fromkeys(occupied(design, sheet, index, energy)))
     figures, most = point.figures, _most(point)
     hottest = None if warm is None else _hottest(warm, point, powers)
     return FirstKeydown(
         transmission=index,
-        tuned=_tuned(point),
+        tuned=tuned,
         before=before,
         others=others,
-        steps=tuple(_step(point, power, warm, expansion) for power in powers),
+        steps=tuple(_step(point, power, warm, expansion, tuned=tuned) for power in powers),
         carrier=CARRIER,
         keyed=_rising(powers[-1], most)[1:] or (most,) if powers else (),
-        am_carrier=_AM_CARRIER * most if point.mode == "AM" and powers else None,
+        am_carrier=most / AM_CREST if point.mode == "AM" and powers else None,
         empty=empty,
         wait=wait(point, empty),
         again=again(point, empty, energy, len(sheet.operating_points)),
@@ -171,7 +171,7 @@ def _unbroken(point: OperatingPointRecord, warm: Warmth | None, most: float) -> 
             continue
         if _warms_in_seconds(finding.id):
             most = min(most, allowed * share)
-        if warm is not None and finding.id.startswith(("joint.heat.", "conductor.temperature")):
+        if warm is not None and (finding.id == CONDUCTOR or finding.id.startswith(JOINT)):
             # All steps together may not warm the conductor more than the keying does that the finding allows.
             kept = float(warm.bare.high_at(np.array([allowed / point.power]))[0])
             most = min(most, point.power * _of_carriers(warm.bare, _ALL).power_to(kept))
@@ -179,8 +179,7 @@ def _unbroken(point: OperatingPointRecord, warm: Warmth | None, most: float) -> 
 
 
 def _warms_in_seconds(name: str) -> bool:
-    padding = name.startswith("capacitor.padding.") and name.endswith(".heat")
-    return padding or name.startswith(("joint.heat.", "capacitor.heat"))
+    return name == CAPACITOR_HEAT or is_padding_heat(name) or name.startswith(JOINT)
 
 
 def _of_carriers(warm: Warmth, lasting: float) -> Warmth:
@@ -202,27 +201,19 @@ def _floored(power: float) -> float:
     return float(floor_two_digits(power))
 
 
-def _step(point: OperatingPointRecord, power: float, warm: Warmth | None, expansion: float | None) -> Step:
+def _step(
+    point: OperatingPointRecord, power: float, warm: Warmth | None, expansion: float | None, *, tuned: bool
+) -> Step:
     share = power / point.power
-    volts, amps = (_high(point, name) for name in _CARRIED[_tuned(point)])
+    # An untuned loop has its volts at the terminals.
+    volts = _high(point, "capacitor_peak_voltage" if tuned else "terminal_peak_voltage")
+    amps = _high(point, "largest_current")
     return Step(
         power=power,
         volts=None if volts is None else volts * sqrt(share),
         amps=None if amps is None else amps * sqrt(share),
         creep=None if warm is None or expansion is None else _creep(point.frequency, warm, share, expansion),
     )
-
-
-_CARRIED = {
-    True: ("capacitor_peak_voltage", "largest_current"),
-    False: ("terminal_peak_voltage", "largest_current"),
-}
-
-
-def _tuned(point: OperatingPointRecord) -> bool:
-    """Return whether a capacitor tunes the loop; a full-wave loop has its volts at the terminals."""
-    figure = point.figures.get("terminal_peak_voltage")
-    return figure is None or figure.likely is None
 
 
 def _high(point: OperatingPointRecord, name: str) -> float | None:
@@ -243,22 +234,8 @@ def _creep(frequency: float, warm: Warmth, share: float, expansion: float) -> fl
     """Return how far one carrier's heat moves the resonance at most [Hz], none of it lost; None where not known."""
     if warm.capacity == 0.0 or warm.heat.high is None:
         return None
-    rise = warm.heat.high * share * CARRIER / warm.capacity
-    _, most = frequency_drift(frequency, expansion, rise)
+    _, most = frequency_drift(frequency, expansion, warm.rise_of(warm.heat.high * share, CARRIER))
     return abs(float(most))
-
-
-def _expansion(made_of: Conductor) -> float | None:
-    """Return the linear expansion of a conductor [1/K], over its heat capacity as the warmth takes it.
-
-    Of a metal that is not stated the warmth takes copper's capacity, so what moves most for the same heat is taken.
-    """
-    metals = warmth_tables.metals()
-    if made_of.material is not None:
-        metal = metals.get(made_of.material)
-        return None if metal is None else metal.expansion
-    copper = metals["copper"].density * metals["copper"].specific_heat
-    return max(each.expansion * max(1.0, copper / (each.density * each.specific_heat)) for each in metals.values())
 
 
 def _hottest(warm: Warmth, point: OperatingPointRecord, powers: Sequence[float]) -> float | None:
@@ -289,33 +266,21 @@ def _hot(point: OperatingPointRecord, warm: Warmth, hottest: float, powers: Sequ
 def cooling_time(warm: Warmth, hottest: float) -> float | None:
     """Return how long a conductor at `hottest` [K] takes until no touch burns, however long [s], at the worst end.
 
-    None where the section is not known, or where air and sun alone keep it hotter than that; 0 where it is no hotter.
-    It follows the heat lost at each temperature, which falls as it cools.
+    None where the section is not known, where air and sun alone keep it hotter than that, or where it melts; 0 where it
+    is no hotter.
     """
     least = least_touch().temperature
     if warm.idle < least and hottest <= least:
         return 0.0
-    if warm.idle >= least or warm.capacity == 0.0:
+    if warm.idle >= least or warm.most_capacity == 0.0 or hottest > CEILING:
         return None
-    temperatures = warm.idle + np.geomspace(least - warm.idle, hottest - warm.idle, _COOLING_STEPS)
-    lost = _lost_at_worst(warm, temperatures)
-    if not bool((lost > 0.0).all()):
-        return None
-    return float(trapezoid(warm.capacity / lost, temperatures))
-
-
-def _lost_at_worst(warm: Warmth, temperatures: Array) -> Array:
-    """Return the heat that a metre loses at the end that loses least, less what the sun brings [W/m], shape (n,)."""
-    lost = lost_heat(temperatures[:, None], warm.surface, warm.air) - absorbed_sunshine(warm.surface, warm.air)
-    return np.broadcast_to(lost, (len(temperatures), 3))[:, 2]
+    longest = float(time_to_cool(hottest, least, warm.surface, warm.air, warm.most_capacity).max())
+    return longest if isfinite(longest) else None
 
 
 def settling_time(warm: Warmth) -> float | None:
     """Return how long the conductor takes to come within 5 % of a steady temperature [s]: three time constants."""
     likely = warm.temperature().likely
-    if likely is None or likely >= RUNS_AWAY or warm.capacity == 0.0:
+    if likely is None or likely >= RUNS_AWAY or warm.most_capacity == 0.0:
         return None
-    warmer, cooler = (
-        float(np.broadcast_to(lost_heat(likely + step, warm.surface, warm.air), 3)[1]) for step in (1, -1)
-    )
-    return 3.0 * warm.capacity / ((warmer - cooler) / 2.0)
+    return 3.0 * warm.slowest.time_constant(likely)

@@ -1,5 +1,6 @@
 """Does what is under the loop lie within the range of its methods, and what does it do to the volts?"""
 
+from dataclasses import replace
 from math import ceil, sqrt
 
 from magsafe import words
@@ -12,6 +13,7 @@ from magsafe.checks.sky import ground_words
 from magsafe.design.model import Design
 from magsafe.spread import Spread
 
+IMAGE = "the loop and its image in one matrix: Harrington 1968 (memory)"
 WORTH_SAYING = 1.02  # by how much the ground raises volts
 WORTH_SIZE = 0.005  # by how much a ring differs from a dipole
 
@@ -35,7 +37,8 @@ def ground(design: Design, point: OperatingPoint) -> Finding | None:
     if factor is not None and abs(factor - 1.0) >= WORTH_SIZE:
         said += f"; its size makes that {factor:.3g} times what it would be for a dipole"
     if design.ground_name == "perfect":
-        return holds(_CHECK, Spread.exact(up), LOWEST, f"{said}; the loop is solved with its image at any height")
+        image = replace(_CHECK, source=IMAGE)
+        return holds(image, Spread.exact(up), None, f"{said}; the loop is solved with its image at any height")
     if not is_too_low(design):
         return holds(_CHECK, Spread.exact(up), LOWEST, said)
     text = (

@@ -8,7 +8,7 @@ from scipy.constants import zero_Celsius
 
 from magsafe import words
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.analysis.warmth import RUNS_AWAY, JointWarmth, Warmth, joint_warmth
+from magsafe.analysis.warmth import RUNS_AWAY, JointWarmth, Warmth, expansion_of, joint_warmth
 from magsafe.checks.judge import Check, judge, stopped, unproven
 from magsafe.checks.sheet import Finding
 from magsafe.design import warmth_tables
@@ -17,8 +17,9 @@ from magsafe.design.warmth_tables import Softening
 from magsafe.physics.heat import frequency_drift
 from magsafe.spread import Spread
 
+CONDUCTOR, JOINT = "conductor.temperature", "joint.heat."  # id of a finding, and what those of joints begin with
 _TEMPERATURE = Check(
-    "conductor.temperature",
+    CONDUCTOR,
     "How hot does the conductor get by the end of the longest over?",
     "use shorter overs or a thicker conductor, paint it, or keep it out of the sun",
     "Churchill & Chu 1975 by the ht library; finishes and temperatures as listed",
@@ -135,7 +136,7 @@ def _celsius(row: Softening) -> str:
 
 def _joint_check(joint: Joint) -> Check:
     return Check(
-        f"joint.heat.{words.slug(joint.name)}",
+        f"{JOINT}{words.slug(joint.name)}",
         f"How hot does a joint of {joint.name} get?",
         _DO_JOINT,
         "fin of infinite length (Incropera & DeWitt, memory); temperatures as listed",
@@ -209,13 +210,13 @@ def _standing(joint: Joint) -> Softening:
 def _drift(design: Design, point: OperatingPoint, warm: Warmth) -> Finding:
     """Return how far the resonance moves in the longest over. At worst narrow: to be off resonance harms nobody."""
     width = point.figures.swr2_bandwidth.spread
-    metal = warmth_tables.metals().get(design.loop.conductor.material or "copper")
+    expansion = expansion_of(design.loop.conductor)
     hottest, likely = warm.temperature().high or 0.0, warm.temperature().likely or 0.0
-    if width.low is None or metal is None or hottest == RUNS_AWAY:
+    if width.low is None or expansion is None or hottest == RUNS_AWAY:
         return unproven(_DRIFT, "the bandwidth or the conductor's warmth is not known")
     frequency = point.transmission.frequency
-    least, _ = frequency_drift(frequency, metal.expansion, max(0.0, likely - warm.likely_idle))
-    _, worst = frequency_drift(frequency, metal.expansion, max(0.0, hottest - warm.idle))
+    least, _ = frequency_drift(frequency, expansion, max(0.0, likely - warm.likely_idle))
+    _, worst = frequency_drift(frequency, expansion, max(0.0, hottest - warm.idle))
     # What the sun has heated already loses more, so that the hotter end may rise by less.
     most = max(abs(float(least)), abs(float(worst)))
     found = Spread(None, abs(float(least)), most)
@@ -223,4 +224,6 @@ def _drift(design: Design, point: OperatingPoint, warm: Warmth) -> Finding:
     after = "an over without end" if warm.over == inf else f"{words.duration(warm.over)} of transmitting"
     moved, between = words.amount(most, "Hz"), words.amount(width.low, "Hz")
     said = f"after {after} it has moved down by up to {moved}, of {between} between the points of SWR 2"
+    if design.loop.conductor.material is None:
+        said = f"{said}; no metal is stated, so the one that expands most is taken"
     return finding.model_copy(update={"because": f"{said}: {finding.because.partition(': ')[2]}"})

@@ -1,11 +1,11 @@
 """People during a first key-down: who leaves, how far all keep off, how long until exposure no longer adds up."""
 
 from collections.abc import Iterator, Sequence
-from math import hypot, isfinite, sqrt
+from math import isfinite
 
-from magsafe.analysis.people import HALF_WIDTH, POSTURES
+from magsafe.analysis.people import from_centre
 from magsafe.checks.sheet import ExposureRecord, OperatingPointRecord, Sheet
-from magsafe.design.model import Design, Place
+from magsafe.design.model import Design
 
 
 def occupied(design: Design, sheet: Sheet, index: int, energy: float) -> Iterator[str]:
@@ -35,26 +35,6 @@ def occupied(design: Design, sheet: Sheet, index: int, energy: float) -> Iterato
     for session in sheet.sessions:
         if index in session.transmissions:
             yield from (each.name for e in session.exposure for each in e.places if each.verdict != "clear")
-
-
-def from_centre(design: Design, place: Place) -> float:
-    """Return how near somebody at a place comes to the loop's centre [m]; without its height, as if at its height."""
-    floors = (design.site.floors or [0.0]) if place.fence else [place.floor or 0.0]
-    tall = POSTURES["standing" if place.fence else place.posture or "standing"]
-    spans = [(floor, floor + tall) for floor in floors] if place.height is None else [(place.height, place.height)]
-    if place.fence:
-        aside = place.fence
-    else:
-        half = HALF_WIDTH if place.height is None else 0.0
-        upright = design.loop.plane == "vertical"
-        pair = (place.along_axis, place.in_plane) if upright else (place.in_plane, place.across)
-        first, second = (abs(each or 0.0) for each in pair)
-        aside = hypot(max(0.0, first - half), max(0.0, second - half))
-        if design.loop.rotates:
-            aside = min(aside, max(0.0, hypot(first, second) - sqrt(2.0) * half))
-    centre = design.loop.centre_height
-    beside = 0.0 if centre is None else min(max(0.0, low - centre, centre - high) for low, high in spans)
-    return hypot(aside, beside)
 
 
 def wait(point: OperatingPointRecord, empty: Sequence[str]) -> float:

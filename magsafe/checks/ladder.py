@@ -1,16 +1,15 @@
 """The power ladder: up to which power each check holds by itself, the lowest first."""
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 
-from magsafe.checks.sheet import Finding, Sheet
+from magsafe.checks.sheet import Sheet
 
 
 @dataclass(frozen=True, slots=True)
 class Rung:
     """One check's own ceiling: the envelope power [W] that keeps its margin, and the one that reaches its limit.
 
-    `lowest` marks the one that holds the transmission's ceiling. `known` is false where a doubt leaves both as upper
+    `lowest` marks the lowest of them. `known` is false where a doubt leaves both as upper
     bounds: more than that is too much in any case.
     """
 
@@ -36,23 +35,18 @@ def ladder(sheet: Sheet, index: int) -> Ladder:
     """Return the ladder of one transmission of a sheet: of its own findings and those of the whole sheet."""
     point = sheet.operating_points[index]
     found = (*point.findings, *sheet.findings)
-    counted = sorted((f for f in found if f.power_at_margin is not None), key=lambda f: f.power_at_margin or 0.0)
-    held = _lowest(counted)
+    counted = [f for f in found if f.power_at_margin is not None]
+    lowest = min(counted, key=lambda f: (f.power_at_margin, f.id), default=None)
     rungs = tuple(
-        Rung(f.id, f.place, f.power_at_margin or 0.0, f.power_at_limit, f is held, not f.doubt and not _open(f))
-        for f in counted
+        Rung(
+            f.id,
+            f.place,
+            f.power_at_margin or 0.0,
+            f.power_at_limit,
+            f is lowest,
+            known=not f.doubt and f.verdict != "unproven",
+        )
+        for f in sorted(counted, key=lambda f: f.power_at_margin or 0.0)
     )
-    fatal = tuple(f.id for f in found if f.verdict == "stop" and f.power_at_margin is None)
+    fatal = tuple(f.id for f in found if f.verdict == "stop" and f.power_at_margin is None and not f.doubt)
     return Ladder(index, point.power, rungs, tuple(dict.fromkeys(fatal)))
-
-
-def _lowest(counted: Sequence[Finding]) -> Finding | None:
-    """Return the finding that holds the ceiling: the one that the ceiling names where several hold the same power."""
-    if not counted:
-        return None
-    least = counted[0].power_at_margin
-    return min((f for f in counted if f.power_at_margin == least), key=lambda f: f.id)
-
-
-def _open(finding: Finding) -> bool:
-    return finding.verdict == "unproven"

@@ -15,6 +15,7 @@ from magsafe.checks.reactive_power import against_reactive_power
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Design, Padding
 
+_PADDING, _HEAT = "capacitor.padding.", ".heat"  # how the ids of findings begin, and how those about heat end
 _AS_STATED = "the padding's rating as stated"
 _LOOK_VOLTS = (
     "look in the part's data sheet for its volts at radio frequency, and state rated_voltage and rated_voltage_kind; "
@@ -60,13 +61,18 @@ def padding_names(design: Design) -> dict[int, str]:
     return found
 
 
+def is_padding_heat(finding: str) -> bool:
+    """Return whether the id of a finding is that of the heat in a padding part."""
+    return finding.startswith(_PADDING) and finding.endswith(_HEAT)
+
+
 def _called(part: Padding) -> str:
     return f"{part.capacitance * 1e12:.6g} pF in {'series' if part.connection == 'series' else 'parallel'}"
 
 
 def _volts(name: str, part: Padding) -> Check:
     return Check(
-        f"capacitor.padding.{name}.voltage",
+        f"{_PADDING}{name}.voltage",
         f"Does the padding of {_called(part)} stand its own crest of the RF?",
         "fit a part with a higher peak RF rating, or several in series",
         _AS_STATED,
@@ -77,7 +83,7 @@ def _volts(name: str, part: Padding) -> Check:
 
 def _amps(name: str, part: Padding) -> Check:
     return Check(
-        f"capacitor.padding.{name}.current",
+        f"{_PADDING}{name}.current",
         f"Does the padding of {_called(part)} carry its own current?",
         "fit a part with a higher RF current rating, or several in parallel",
         _AS_STATED,
@@ -88,7 +94,7 @@ def _amps(name: str, part: Padding) -> Check:
 
 def _reactive(name: str, part: Padding) -> Check:
     return Check(
-        f"capacitor.padding.{name}.reactive_power",
+        f"{_PADDING}{name}.reactive_power",
         f"Does the padding of {_called(part)} stand its own reactive power, RMS volts times RMS amps?",
         "fit a part with a higher reactive-power rating, or several in parallel",
         _AS_STATED,
@@ -99,7 +105,7 @@ def _reactive(name: str, part: Padding) -> Check:
 
 def _warmth(name: str, part: Padding) -> Check:
     return Check(
-        f"capacitor.padding.{name}.heat",
+        f"{_PADDING}{name}{_HEAT}",
         f"Does the padding of {_called(part)} stand its own heat?",
         "fit a part with a higher Q or one that may be hotter, or several in parallel",
         "the padding's dissipation rating as stated; the losses as listed",

@@ -7,7 +7,7 @@ from datetime import date
 from magsafe import __version__
 from magsafe.analysis.exposure import use_of
 from magsafe.analysis.figures import Figure
-from magsafe.analysis.operating_point import OperatingPoint, operating_point
+from magsafe.analysis.operating_point import OperatingPoint, operating_points
 from magsafe.checks import capacitor, loop
 from magsafe.checks.assumptions import assumptions
 from magsafe.checks.capacitor_heat import capacitor_heat
@@ -71,11 +71,6 @@ def check(design: Design, on: date | None = None, points: Sequence[OperatingPoin
         deratings=deratings(design, points),
         cautions=cautions(points, tuned=design.capacitor.kind != "none", findings=everything),
     )
-
-
-def operating_points(design: Design) -> tuple[OperatingPoint, ...]:
-    """Return the operating points of a design, one for each transmission."""
-    return tuple(operating_point(design, transmission) for transmission in design.transmission)
 
 
 def _worked_with(design: Design, index: int) -> int:

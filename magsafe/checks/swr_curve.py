@@ -6,6 +6,7 @@ import numpy as np
 
 from magsafe.checks.sheet import OperatingPointRecord
 from magsafe.physics.arrays import Array
+from magsafe.physics.tuned_circuit import detuned_impedance, standing_wave_ratio
 
 REACH = 4.0  # times the width between the points of SWR 2, on either side
 _POINTS = 321
@@ -36,31 +37,12 @@ def swr_curve(point: OperatingPointRecord) -> SwrCurve | None:
     return SwrCurve(
         frequency=point.frequency,
         offset=offset,
-        likely=series_swr(offset, point.frequency, q.likely),
-        narrowest=None if q.high is None else series_swr(offset, point.frequency, q.high),
-        widest=None if q.low is None else series_swr(offset, point.frequency, q.low),
+        likely=_ratio(offset, point.frequency, q.likely),
+        narrowest=None if q.high is None else _ratio(offset, point.frequency, q.high),
+        widest=None if q.low is None else _ratio(offset, point.frequency, q.low),
         width=width.likely,
     )
 
 
-def series_swr(offset: Array, frequency: float, unloaded_q: float) -> Array:
-    """Return the standing-wave ratio of a series resonance whose resistance is matched to the line.
-
-    Parameters
-    ----------
-    offset : from resonance [Hz], shape (point,), above -frequency
-    frequency : of the resonance [Hz]
-    unloaded_q : reactance of coil or capacitor over the resistance, at resonance [1]
-
-    Returns
-    -------
-    ratio [1], shape (point,)
-
-    Valid     a single resonance; the transformer between loop and line does not change over the offsets.
-    Source    impedance 1 + j Q (f/f0 - f0/f) of a series circuit over its own resistance, and the definition of the
-              ratio by the reflection factor (textbook circuit theory).
-    """
-    tuned = 1.0 + np.asarray(offset) / frequency
-    detuning = unloaded_q * (tuned - 1.0 / tuned)
-    reflected = np.abs(detuning) / np.hypot(2.0, detuning)
-    return np.asarray((1.0 + reflected) / (1.0 - reflected))
+def _ratio(offset: Array, frequency: float, unloaded_q: float) -> Array:
+    return standing_wave_ratio(detuned_impedance(offset, frequency, unloaded_q), 1.0)

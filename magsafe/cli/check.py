@@ -66,13 +66,9 @@ def _file(pattern: str | None, transmission: str | None, *, replace: bool) -> Pa
                     option, "no --pattern beside it", "a picture to draw", "add --pattern FILE, or leave it out"
                 )
         return None
-    path = Path(pattern)
-    if path.suffix.lower() not in (".svg", ".png"):
-        raise CommandError("--pattern", repr(pattern), "a name that ends in .svg or .png", "write .svg")
-    from magsafe.cli.saving import require_writable  # noqa: PLC0415
+    from magsafe.cli.saving import picture_file  # noqa: PLC0415
 
-    require_writable("--pattern", path, replace=replace)
-    return path
+    return picture_file("--pattern", pattern, replace=replace)
 
 
 def _index(design: "Design", transmission: str | None) -> int:

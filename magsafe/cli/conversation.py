@@ -4,7 +4,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import replace
 from pathlib import Path
 
-from magsafe.analysis.operating_point import operating_point
+from magsafe.analysis.operating_point import operating_point, operating_points
 from magsafe.cli.unfinished import Unfinished
 from magsafe.design.answers import entries_of, problems_of, refused, sound, spelled, without
 from magsafe.design.model import Design
@@ -231,8 +231,7 @@ class Conversation:
             return
         design = self._design(entries)
         if design is not None:
-            points = [operating_point(design, transmission) for transmission in design.transmission]
-            self.teller.capacitor(design.titles, points, design.capacitor)
+            self.teller.capacitor(design.titles, operating_points(design), design.capacitor)
 
     def _design(self, entries: Sequence[Entry]) -> Design | None:
         """Return what is known so far as a design; None where that is none yet."""

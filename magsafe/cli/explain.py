@@ -8,7 +8,6 @@ import typer
 from magsafe.cli.common import load, reader_may_leave
 
 if TYPE_CHECKING:
-    from magsafe.analysis.operating_point import OperatingPoint
     from magsafe.design.model import Design
     from magsafe.errors import CommandError
     from magsafe.reports.explanations import FindingText
@@ -40,29 +39,25 @@ def explain(figure: Name = None, design: OfDesign = None) -> None:
 
     told, asked = figure_texts().get(figure), finding_text(figure)
     if told is not None:
+        from magsafe.analysis.operating_point import operating_points  # noqa: PLC0415
         from magsafe.reports.explain import show_figure  # noqa: PLC0415
 
         read = None if design is None else load(design)
-        points = () if read is None else _points(read)
+        points = () if read is None else operating_points(read)
         with reader_may_leave():
             show_figure(told, read, points)
     elif asked is not None:
         _explain_finding(asked, figure, None if design is None else load(design))
     elif design is None and (figure == "-" or _is_file(figure)):
+        from magsafe.analysis.operating_point import operating_points  # noqa: PLC0415
         from magsafe.reports.explain import show_design  # noqa: PLC0415
 
         read = load(figure)
-        points = _points(read)
+        points = operating_points(read)
         with reader_may_leave():
             show_design(read, points)
     else:
         raise _unknown(figure, design)
-
-
-def _points(design: "Design") -> "tuple[OperatingPoint, ...]":
-    from magsafe.analysis.operating_point import operating_point  # noqa: PLC0415  (keeps --help quick)
-
-    return tuple(operating_point(design, transmission) for transmission in design.transmission)
 
 
 def _explain_finding(text: "FindingText", name: str, design: "Design | None") -> None:

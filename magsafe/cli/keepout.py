@@ -101,21 +101,15 @@ def _files(
 
 def _target(option: str, to: str | None, *, replace: bool) -> Path | None:
     """Return the file that an option names; raise CommandError where it cannot be written."""
-    from magsafe.errors import CommandError  # noqa: PLC0415
+    from magsafe.cli.saving import picture_file  # noqa: PLC0415
 
     if to is None:
         return None
-    path = Path(to)
-    if path.suffix.lower() not in (".svg", ".png"):
-        raise CommandError(option, repr(to), "a name that ends in .svg or .png", "write .svg")
-    if path.suffix.lower() == ".png":
+    if to.lower().endswith(".png"):
         from magsafe.reports.png import require_png  # noqa: PLC0415
 
         require_png(option)
-    from magsafe.cli.saving import require_writable  # noqa: PLC0415
-
-    require_writable(option, path, replace=replace)
-    return path
+    return picture_file(option, to, replace=replace)
 
 
 def fields_about(

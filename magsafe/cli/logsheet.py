@@ -56,7 +56,8 @@ def logsheet(
     """
     path, day = _file(output, paper, remarks, replace=replace), _date(on)
     from magsafe.__main__ import say  # noqa: PLC0415  (keeps --help quick)
-    from magsafe.checks.run import check, operating_points  # noqa: PLC0415
+    from magsafe.analysis.operating_point import operating_points  # noqa: PLC0415
+    from magsafe.checks.run import check  # noqa: PLC0415
     from magsafe.cli.saving import save  # noqa: PLC0415
 
     read = load(design)

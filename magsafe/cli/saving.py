@@ -41,6 +41,15 @@ def require_writable(option: str, path: Path, *, replace: bool) -> None:
             trial.unlink()
 
 
+def picture_file(option: str, name: str, *, replace: bool) -> Path:
+    """Return the file of a picture that an option names; raise CommandError where it cannot be written."""
+    path = Path(name)
+    if path.suffix.lower() not in (".svg", ".png"):
+        raise CommandError(option, repr(name), "a name that ends in .svg or .png", "write .svg")
+    require_writable(option, path, replace=replace)
+    return path
+
+
 def save(option: str, path: Path, data: bytes, *, replace: bool) -> None:
     """Write a file so that nobody ever meets a part of it; with `replace` in the place of one that is there."""
     aside = _aside(path)

@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from magsafe.physics.arrays import Array, Values
+from magsafe.physics.arrays import Array, ComplexArray, Values
 
 
 def port_current(power: Values, resistance: Values) -> Array:
@@ -61,23 +61,43 @@ def unloaded_q(resistance: Values, reactance: Values, slope_factor: Values) -> A
     return np.asarray(np.abs(reactance) / resistance * slope_factor)
 
 
-def standing_wave_ratio(impedance: complex, line: float) -> float:
+def standing_wave_ratio(impedance: ComplexArray | complex, line: float) -> Array:
     """Return the standing-wave ratio of an impedance at the end of a line.
 
     Parameters
     ----------
-    impedance : at the end [ohm], resistance above 0
+    impedance : at the end [ohm], resistance above 0, shape (...)
     line : impedance of the lossless line [ohm]
 
     Returns
     -------
-    ratio [1], 1 or more
+    ratio [1], 1 or more, same shape
 
     Valid     any.
     Source    definition by the reflection factor.
     """
-    reflected = abs((impedance - line) / (impedance + line))
-    return (1.0 + reflected) / (1.0 - reflected)
+    reflected = np.abs((impedance - line) / (impedance + line))
+    return np.asarray((1.0 + reflected) / (1.0 - reflected))
+
+
+def detuned_impedance(offset: Values, frequency: Values, unloaded_q: Values) -> ComplexArray:
+    """Return the impedance of a series resonance beside its resonance, over its resistance there.
+
+    Parameters
+    ----------
+    offset : from resonance [Hz], shape (...), above -frequency
+    frequency : of the resonance [Hz], broadcast
+    unloaded_q : reactance of coil or capacitor over the resistance, at resonance [1], broadcast
+
+    Returns
+    -------
+    impedance over the resistance [1], broadcast shape: 1 at resonance
+
+    Valid     a single resonance, its resistance the same over the offsets.
+    Source    1 + j Q (f/f0 - f0/f): textbook circuit theory.
+    """
+    tuned = 1.0 + np.asarray(offset) / frequency
+    return np.asarray(1.0 + 1j * unloaded_q * (tuned - 1.0 / tuned))
 
 
 def swr_bandwidth_factor(swr: Values) -> Array:

@@ -18,6 +18,7 @@ from magsafe.physics.heat import (
 _RELATIVE, _ABSOLUTE = 1e-8, 1e-7  # of the solver, on temperature over that of the air [K]
 _CLOSE_ENOUGH = 1e-5  # K
 _MOST_STEPS = 60
+_COOLING_STEPS = 400  # between two temperatures, even in the logarithm of what is left to cool
 
 
 def heat_capacity_per_metre(section: Values, density: Values, specific_heat: Values) -> Array:
@@ -72,6 +73,47 @@ def temperature_after(
     _refuse_times(duration, 0.0)
     ends = _warmed(np.ones(1), duration, start, heat, surface, surroundings, heat_capacity)
     return np.asarray(np.where(ends[0] > CEILING, np.inf, ends[0]))
+
+
+def time_to_cool(
+    start: Values, end: Values, surface: Surface, surroundings: Surroundings, heat_capacity: Values
+) -> Array:
+    """Return how long a conductor without current takes to cool from one temperature to another.
+
+    Parameters
+    ----------
+    start : temperature at its beginning [K], up to `CEILING`, shape (...)
+    end : temperature to cool to [K], broadcast
+    surface : outside of the conductor [m, 1], broadcast
+    surroundings : air and sun [K, Pa, W/m2], broadcast
+    heat_capacity : per metre [J/(m K)], above 0, broadcast
+
+    Returns
+    -------
+    time [s], broadcast shape; 0 where it starts no warmer, inf where air and sun alone keep it as warm as the end
+
+    Raises
+    ------
+    ValueError : a start or a heat capacity out of those ranges
+
+    Valid     as `temperature_after`, of which it is the inverse.
+    Source    conservation of energy: the capacity over the heat lost, summed over temperature.
+    """
+    _refuse_start(start)
+    _refuse_capacity(heat_capacity)
+    sun = absorbed_sunshine(surface, surroundings)
+    idle = steady_temperature(ElectricHeat(0.0, 0.0), surface, surroundings)
+    first, last, idle, _ = np.broadcast_arrays(start, end, idle, heat_capacity)
+    reached, cools = last > idle, first > last
+    idle = np.where(reached, idle, 0.0)
+    left = np.where(reached, last - idle, 1.0)
+    # A body that loses in proportion takes as long for every step of the logarithm.
+    steps = np.linspace(np.log(left), np.log(np.where(reached & cools, first - idle, left)), _COOLING_STEPS)
+    lost = np.where(reached, lost_heat(idle + np.exp(steps), surface, surroundings) - sun, 1.0)
+    reached = reached & (lost > 0.0).all(axis=0)
+    paces = heat_capacity * np.exp(steps) / np.where(lost > 0.0, lost, 1.0)
+    taken = np.sum(0.5 * (paces[1:] + paces[:-1]) * np.diff(steps, axis=0), axis=0)
+    return np.asarray(np.where(reached, taken, np.where(cools, np.inf, 0.0)))
 
 
 def temperature_history(
@@ -191,6 +233,16 @@ def _refuse_times(times: Values, least: float) -> None:
         raise ValueError(f"times must be finite and {'0 or more' if least == 0.0 else 'above 0'}")
 
 
+def _refuse_start(start: Values) -> None:
+    if not np.all((np.asarray(start) > 0.0) & (np.asarray(start) <= CEILING * (1.0 + 1e-9))):
+        raise ValueError(f"a start must be between 0 and {CEILING:g} K")
+
+
+def _refuse_capacity(heat_capacity: Values) -> None:
+    if not np.all(np.isfinite(heat_capacity) & (np.asarray(heat_capacity) > 0.0)):
+        raise ValueError("a heat capacity must be above 0")
+
+
 def _warmed(
     shares: Array,
     duration: Values,
@@ -201,10 +253,8 @@ def _warmed(
     heat_capacity: Values,
 ) -> Array:
     """Return the temperatures after shares of the duration [1], rising, the last 1; shape (shares, ...)."""
-    if not np.all(np.isfinite(heat_capacity) & (np.asarray(heat_capacity) > 0.0)):
-        raise ValueError("a heat capacity must be above 0")
-    if not np.all((np.asarray(start) > 0.0) & (np.asarray(start) <= CEILING * (1.0 + 1e-9))):
-        raise ValueError(f"a start must be between 0 and {CEILING:g} K")
+    _refuse_capacity(heat_capacity)
+    _refuse_start(start)
     sun = absorbed_sunshine(surface, surroundings)
     air = np.asarray(surroundings.temperature, dtype=np.float64)
     shape = np.broadcast_shapes(

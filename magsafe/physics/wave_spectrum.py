@@ -26,6 +26,7 @@ from scipy.constants import c, mu_0
 from magsafe.physics.arrays import Array, ComplexArray
 from magsafe.physics.half_space import reflection
 from magsafe.physics.near_field import SegmentCurrents
+from magsafe.physics.rooftops import gauss
 from magsafe.physics.soil_spectrum import PHASE, SMALLEST, rule, squared
 
 IMPEDANCE = mu_0 * c  # of free space
@@ -134,7 +135,7 @@ class WaveSpectrum:
         -------
         reactive power [W], inductive above 0, shape (soil, height)
 
-        Valid     as `power`, for currents nearly in phase all along.
+        Valid     as `power`, to a tenth for currents nearly in phase all along; a full-wave loop's may be 20 ohm off.
         Source    as `power`.
         """
         return self._turned_back(permittivity, lift).imag
@@ -193,12 +194,12 @@ class _Points:
     def on(cls, currents: SegmentCurrents, wavenumber: float) -> Self:
         ends = np.concatenate([currents.start, currents.end])
         origin = np.append(0.5 * (ends[:, :2].min(axis=0) + ends[:, :2].max(axis=0)), 0.0)
-        node, weight = np.polynomial.legendre.leggauss(POINTS)
-        share = 0.5 + 0.5 * node[:, None]
+        node, weight = gauss(POINTS)
+        share = node[:, None]
         along = currents.end - currents.start
         flow = currents.current_start + share * (currents.current_end - currents.current_start)
         place = currents.start + share[..., None] * along - origin
-        moment = (0.5 * weight[:, None] * flow)[..., None] * along
+        moment = (weight[:, None] * flow)[..., None] * along
         return cls(wavenumber * place.reshape(-1, 3), moment.reshape(-1, 3))
 
     @property

@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING
 
 from magsafe import words
 from magsafe.checks.sheet import LobeRecord, PatternCut, PatternRecord, Sheet
-from magsafe.reports import plotting, sky
+from magsafe.reports import plotting, sky, telling
 from magsafe.reports.svg import Box, Labels, Point, around
 
 if TYPE_CHECKING:
@@ -86,7 +86,7 @@ def elevation_figure(sheet: Sheet, index: int) -> str:
     about = sky.pattern_in_words(point)
     with plotting.own_settings():
         figure = _Picture(sheet, index).drawn()
-        return plotting.as_svg(figure, f"{sky.PATTERN_HEADING}: {sky.use(point)}", about)
+        return plotting.as_svg(figure, f"{sky.PATTERN_HEADING}: {telling.use(point)}", about)
 
 
 def elevation_dots(sheet: Sheet, index: int) -> bytes:
@@ -136,7 +136,7 @@ class _Picture:
 
     def _head(self) -> None:
         self._say(sky.PATTERN_HEADING, TITLE, bold=True)
-        self._say(sky.use(self.point), bold=True)
+        self._say(telling.use(self.point), bold=True)
         placing = sky.designed(self.point)
         how = "Loop"
         if placing is not None:

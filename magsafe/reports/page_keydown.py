@@ -9,8 +9,8 @@ from magsafe import words
 from magsafe.checks.cautions import least_touch, told_hot
 from magsafe.checks.first_keydown import FirstKeydown
 from magsafe.checks.sheet import Sheet
+from magsafe.reports import telling
 from magsafe.reports.page import Block, Heading, Items, Paragraph, Said, Table
-from magsafe.reports.page_people import use
 from magsafe.spread import Spread
 from magsafe.units import magnitude, significant
 
@@ -28,7 +28,7 @@ def first_keydowns(sheet: Sheet, found: Sequence[FirstKeydown]) -> Iterator[Bloc
     )
     for each in found:
         if len(found) > 1:
-            yield Heading(use(sheet.operating_points[each.transmission]), 3)
+            yield Heading(telling.use(sheet.operating_points[each.transmission]), 3)
         yield from _procedure(sheet, each)
 
 

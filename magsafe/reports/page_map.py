@@ -1,6 +1,7 @@
 """The map of a keep-out as a page shows it: the views alone, with what their letters and lines mean beside them."""
 
 from collections.abc import Iterator
+from math import ceil
 
 from magsafe import words
 from magsafe.analysis.field_map import FieldMap
@@ -61,7 +62,7 @@ def _warnings(said: MapWords, made: FieldMap | None) -> Iterator[Block]:
 def _key(said: MapWords, panels: Panels) -> Iterator[str]:
     for each in said.contours:
         yield f"{each.letter} ({_LINES[each.who]}): {each.text}."
-    yield f"T (dash and dot): touch, {panels.touch:.2f} m from the centre; nobody comes nearer."
+    yield f"T (dash and dot): touch, {ceil(100.0 * panels.touch) / 100.0:.2f} m from the centre; nobody comes nearer."
 
 
 def _places(spots: tuple[Spot, ...], panels: Panels, most: int) -> Iterator[str]:

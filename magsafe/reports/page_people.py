@@ -4,7 +4,7 @@ from collections.abc import Iterator
 
 from magsafe import words
 from magsafe.checks.sheet import ORDER, ExposureRecord, OperatingPointRecord, PlaceRecord, Sheet
-from magsafe.reports import exemption, people, sessions
+from magsafe.reports import exemption, people, sessions, telling
 from magsafe.reports.page import Block, Heading, Items, Paragraph, Said, Table
 
 _DISTANCES = "Keep-out in metres from the loop's centre, averaged as the rule averages; last column key-down"
@@ -25,8 +25,8 @@ def exposure(sheet: Sheet) -> Iterator[Block]:
             columns = people.distance_columns(point)
             share = 0.7 / len(columns)
             yield Table(
-                f"{_DISTANCES}: {use(point)}", ("rule and tier", *columns), rows, (0.3, *(share,) * len(columns)),
-                tuple(range(1, len(columns) + 1)),
+                f"{_DISTANCES}: {telling.use(point)}", ("rule and tier", *columns), rows,
+                (0.3, *(share,) * len(columns)), tuple(range(1, len(columns) + 1)),
             )  # fmt: skip
     whys = dict.fromkeys(each.why for point in points for each in point.exposure if each.why)
     if whys:
@@ -43,7 +43,7 @@ def _places(point: OperatingPointRecord) -> Iterator[Block]:
         for place, each in sorted(found, key=lambda pair: ORDER.index(pair[0].verdict))
     )
     yield Table(
-        f"Places: {use(point)}", ("place", "rule, tier, edition", "field at worst, RMS", "verdict"), rows,
+        f"Places: {telling.use(point)}", ("place", "rule, tier, edition", "field at worst, RMS", "verdict"), rows,
         (0.17, 0.2, 0.5, 0.13),
     )  # fmt: skip
 
@@ -61,7 +61,7 @@ def _exemptions(sheet: Sheet) -> Iterator[Block]:
         return
     yield Paragraph(exemption.HEADING, "strong")
     yield Paragraph(" ".join(warnings), "small")
-    yield Items(tuple(f"{use(p)}: {said}" for p in points for said in exemption.sentences(p)), style="small")
+    yield Items(tuple(f"{telling.use(p)}: {said}" for p in points for said in exemption.sentences(p)), style="small")
 
 
 def worked_in_turn(sheet: Sheet) -> Iterator[Block]:
@@ -78,9 +78,3 @@ def worked_in_turn(sheet: Sheet) -> Iterator[Block]:
             "Keep-out of this session in metres from the loop's centre", ("rule and tier", *columns), distances,
             (0.3, *(share,) * len(columns)), tuple(range(1, len(columns) + 1)),
         )  # fmt: skip
-
-
-def use(point: OperatingPointRecord) -> str:
-    """Return a transmission with its frequency and power."""
-    parts = dict.fromkeys((words.short(point.name), words.frequency(point.frequency)))
-    return f"{', '.join(parts)}, {words.watts(point.power)} PEP"

@@ -9,7 +9,7 @@ from magsafe.checks.ladder import ladder
 from magsafe.checks.sheet import OperatingPointRecord, Sheet
 from magsafe.checks.swr_curve import swr_curve
 from magsafe.design.model import Design
-from magsafe.reports import deratings, sky
+from magsafe.reports import deratings, sky, telling
 from magsafe.reports.charts import ladder_picture, swr_picture
 from magsafe.reports.elevation import elevation_figure
 from magsafe.reports.page import Block, Columns, Heading, Items, Page, Paragraph, Picture, Table
@@ -17,7 +17,7 @@ from magsafe.reports.page_figures import design_as_given, figures, methods
 from magsafe.reports.page_findings import findings, provenance
 from magsafe.reports.page_front import front, title
 from magsafe.reports.page_keydown import first_keydowns
-from magsafe.reports.page_people import exposure, use, worked_in_turn
+from magsafe.reports.page_people import exposure, worked_in_turn
 
 _ELEVATION_WIDTH = 82.0  # mm
 MOST_CHARTS = 12  # transmissions with charts of their own; the tables have all of them
@@ -60,7 +60,7 @@ def page_of(
 
 def _power(sheet: Sheet, index: int) -> Iterator[Block]:
     """Yield what power and detuning do to one transmission."""
-    name = use(sheet.operating_points[index])
+    name = telling.use(sheet.operating_points[index])
     made = ladder(sheet, index)
     if made.at_any_power:
         yield Paragraph(f"No power helps against {', '.join(made.at_any_power)}: {name}.", "strong")
@@ -81,7 +81,7 @@ def _loop(sheet: Sheet) -> Iterator[Block]:
     yield from methods(points)
     if len(points) > 1:
         for index, point in enumerate(points[:MOST_CHARTS]):
-            yield Heading(f"Power, bandwidth and pattern: {use(point)}")
+            yield Heading(f"Power, bandwidth and pattern: {telling.use(point)}")
             power, elevation = tuple(_power(sheet, index)), tuple(_elevation(sheet, index))
             yield Columns((power, elevation) if elevation else tuple((each,) for each in power))
             yield from _placings(point)
@@ -92,7 +92,7 @@ def _loop(sheet: Sheet) -> Iterator[Block]:
 def _swr(sheet: Sheet, index: int) -> Picture | None:
     point = sheet.operating_points[index]
     curve = swr_curve(point)
-    return None if curve is None else swr_picture(curve, use(point))
+    return None if curve is None else swr_picture(curve, telling.use(point))
 
 
 def _elevation(sheet: Sheet, index: int) -> Iterator[Picture]:
@@ -107,9 +107,15 @@ def _elevation(sheet: Sheet, index: int) -> Iterator[Picture]:
 def _placings(point: OperatingPointRecord) -> Iterator[Block]:
     """Yield what another height or plane would change; nothing where that is not known."""
     if point.placings:
-        head = ("placing", *(" ".join(each.split()) for each in sky.PLACING_HEAD))
-        rows = tuple(sky.placing_rows(point.placings))
-        yield Table(f"{sky.PLACINGS_HEADING}: {use(point)}", head, rows, (0.35, *(0.13,) * 5), (1, 2, 3, 4, 5))
+        columns = tuple(" ".join(each.split()) for each in sky.placing_head(point.placings))
+        rows, share = tuple(sky.placing_rows(point.placings)), 0.65 / len(columns)
+        yield Table(
+            f"{sky.PLACINGS_HEADING}: {telling.use(point)}",
+            ("placing", *columns),
+            rows,
+            (0.35, *(share,) * len(columns)),
+            tuple(range(1, len(columns) + 1)),
+        )
         yield Paragraph(sky.PLACING_NOTE, "small")
 
 

@@ -7,6 +7,7 @@ from textwrap import wrap
 
 from magsafe import words
 from magsafe.checks.sheet import LobeRecord, OperatingPointRecord, PatternCut, PatternRecord, PlacingRecord
+from magsafe.reports import telling
 
 PATTERN_HEADING = "Where the power goes"
 PLACINGS_HEADING = "How height and plane matter"
@@ -17,7 +18,7 @@ NOTHING = 1e-9  # of the strongest: what is less is rounding
 MOST_LOBES = 8  # that are told; the machine form has all
 UP = 89.0  # degrees from which a lobe points straight up
 # A space before each keeps them apart: they stand to the right.
-PLACING_HEAD = (" to the\nsky, %", " change,\ndB", " below 20\ndeg, dB", " above 60\ndeg, %", " volts,\nkV peak")
+_PLACING_HEAD = (" to the\nsky, %", " change,\ndB", " below 20\ndeg, dB", " above 60\ndeg, %", " volts,\nkV peak")
 PLACING_LABEL = 28  # columns for what a row of that table is about
 _UNKNOWN = "not known"
 _STEP = 5.0  # dB: the rim is a multiple of it
@@ -173,7 +174,7 @@ def pattern_in_words(point: OperatingPointRecord) -> str:
     if pattern is None:
         raise ValueError(f"the transmission {point.name!r} has no pattern")
     peak = strongest(pattern)
-    told = [f"{use(point)}.", basis(pattern)]
+    told = [f"{telling.use(point)}.", basis(pattern)]
     for cut in pattern.cuts:
         for side, away in ((cut.towards, False), (cut.away, True)):
             levels = ", ".join(
@@ -194,12 +195,6 @@ def sentences(point: OperatingPointRecord) -> tuple[str, ...]:
 def weaker(count: int) -> str:
     """Return how many lobes are not told; empty where all are."""
     return f"{count - MOST_LOBES} more lobes are weaker." if count > MOST_LOBES else ""
-
-
-def use(point: OperatingPointRecord) -> str:
-    """Return a transmission in words: its name, frequency and power."""
-    parts = dict.fromkeys((words.short(" ".join(point.name.split())), words.frequency(point.frequency)))
-    return f"{', '.join(parts)}, {words.watts(point.power)} PEP"
 
 
 def designed(point: OperatingPointRecord) -> PlacingRecord | None:
@@ -224,11 +219,21 @@ PLACING_NOTE = (
 )
 
 
+def placing_head(placings: Sequence[PlacingRecord]) -> tuple[str, ...]:
+    """Return the heads of the columns of a table of placings; of volts where a capacitor has any."""
+    return _PLACING_HEAD if _have_volts(placings) else _PLACING_HEAD[:-1]
+
+
+def _have_volts(placings: Sequence[PlacingRecord]) -> bool:
+    return any(each.capacitor_peak_voltage is not None for each in placings)
+
+
 def placing_rows(placings: Sequence[PlacingRecord]) -> Iterator[tuple[str, ...]]:
-    """Yield a row for each placing, as `PLACING_HEAD` has them, what it is about before."""
+    """Yield a row for each placing, as `placing_head` has them, what it is about before."""
+    columns = len(placing_head(placings))
     for each in placings:
         label = f"{plane(each)}, {_metres(each)}{', as designed' if each.as_designed else ''}"
-        yield (label, *_figures(each))
+        yield (label, *_figures(each)[:columns])
 
 
 def placing_sentences(placings: Sequence[PlacingRecord]) -> Iterator[str]:
@@ -237,10 +242,8 @@ def placing_sentences(placings: Sequence[PlacingRecord]) -> Iterator[str]:
     for each in placings:
         sky, change, low, high, volts = _figures(each)
         changes = "" if each.as_designed else f", change {_with(change, 'dB')}, below 20 deg {_with(low, 'dB')}"
-        yield (
-            f"{_said(each, now)}: {sky} % to the sky{changes}, {high} % of it above 60 deg, capacitor "
-            f"{_with(volts, 'kV peak')}."
-        )
+        told = f", capacitor {_with(volts, 'kV peak')}" if _have_volts(placings) else ""
+        yield f"{_said(each, now)}: {sky} % to the sky{changes}, {high} % of it above 60 deg{told}."
 
 
 def _figures(each: PlacingRecord) -> tuple[str, str, str, str, str]:

@@ -4,7 +4,16 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 from magsafe import words
-from magsafe.checks.sheet import ORDER, Finding, KeepoutSheet, OperatingPointRecord, PowerCeiling, Sheet, Verdict
+from magsafe.checks.sheet import (
+    ORDER,
+    Finding,
+    KeepoutPoint,
+    KeepoutSheet,
+    OperatingPointRecord,
+    PowerCeiling,
+    Sheet,
+    Verdict,
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -116,6 +125,12 @@ def in_the_way(sheet: Sheet) -> Iterator[Told]:
         yield from findings(sheet, verdict)
 
 
+def use(point: OperatingPointRecord | KeepoutPoint) -> str:
+    """Return a transmission in words: its name on one line, its frequency and power."""
+    parts = dict.fromkeys((words.short(" ".join(point.name.split())), words.frequency(point.frequency)))
+    return f"{', '.join(parts)}, {words.watts(point.power)} PEP"
+
+
 @dataclass(frozen=True, slots=True)
 class Row:
     """A row of the figures' table: its figure, how it is called, its SI unit and the unit shown."""
@@ -134,6 +149,21 @@ def rows(points: Sequence[OperatingPointRecord]) -> tuple[Row, ...]:
     return tuple(row for row in (FULL_WAVE_ROWS if full_wave else ROWS) if row.figure in known)
 
 
+_SKY_ROWS = (
+    Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),
+    Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
+    Row("gain", "Gain, strongest, dBi", "1", "dBi"),
+    Row("gain_elevation", "Strongest at, degrees up", "deg", "deg"),
+    Row("share_above_60_degrees", "Sky, above 60 deg, %", "1", "%"),
+    Row("share_below_20_degrees", "Sky, below 20 deg, %", "1", "%"),
+    Row("effective_isotropic_radiated_power", "EIRP, W PEP", "W", "W"),
+    Row("mean_effective_isotropic_radiated_power", "EIRP, W mean", "W", "W"),
+    Row("effective_radiated_power", "ERP, W PEP", "W", "W"),
+    Row("mean_effective_radiated_power", "ERP, W mean", "W", "W"),
+    Row("directivity_along_axis", "Directivity on the axis", "1", ""),
+    Row("directivity_in_plane", "Directivity in the plane", "1", ""),
+)
+
 ROWS = (
     Row("perimeter_in_wavelengths", "Perimeter, wavelengths", "1", ""),
     Row("radiation_resistance", "Radiation resistance, mΩ", "ohm", "mΩ"),
@@ -145,18 +175,7 @@ ROWS = (
     Row("port_reactance", "Port reactance, Ω", "ohm", "Ω"),
     Row("inductance", "Inductance, µH", "H", "µH"),
     Row("tuning_capacitance", "Tuning capacitance, pF", "F", "pF"),
-    Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),
-    Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
-    Row("gain", "Gain, strongest, dBi", "1", "dBi"),
-    Row("gain_elevation", "at elevation, degrees", "deg", "deg"),
-    Row("share_above_60_degrees", "Of it above 60 deg, %", "1", "%"),
-    Row("share_below_20_degrees", "Of it below 20 deg, %", "1", "%"),
-    Row("effective_isotropic_radiated_power", "EIRP, W PEP", "W", "W"),
-    Row("mean_effective_isotropic_radiated_power", "EIRP, W mean", "W", "W"),
-    Row("effective_radiated_power", "ERP, W PEP", "W", "W"),
-    Row("mean_effective_radiated_power", "ERP, W mean", "W", "W"),
-    Row("directivity_along_axis", "Directivity on the axis", "1", ""),
-    Row("directivity_in_plane", "Directivity in the plane", "1", ""),
+    *_SKY_ROWS,
     Row("unloaded_q", "Unloaded Q", "1", ""),
     Row("loaded_q", "Loaded Q, matched", "1", ""),
     Row("half_power_bandwidth", "Half-power bandwidth, kHz", "Hz", "kHz"),
@@ -179,18 +198,7 @@ FULL_WAVE_ROWS = (
     Row("terminal_peak_voltage", "Terminal voltage, kV peak", "V", "kV"),
     Row("swr_at_50_ohm", "SWR at 50 Ω", "1", ""),
     Row("nearest_resonance", "Nearest resonance, MHz", "Hz", "MHz"),
-    Row("conductor_efficiency", "Efficiency, no ground, %", "1", "%"),
-    Row("overall_efficiency", "Efficiency to the sky, %", "1", "%"),
-    Row("gain", "Gain, strongest, dBi", "1", "dBi"),
-    Row("gain_elevation", "at elevation, degrees", "deg", "deg"),
-    Row("share_above_60_degrees", "Of it above 60 deg, %", "1", "%"),
-    Row("share_below_20_degrees", "Of it below 20 deg, %", "1", "%"),
-    Row("effective_isotropic_radiated_power", "EIRP, W PEP", "W", "W"),
-    Row("mean_effective_isotropic_radiated_power", "EIRP, W mean", "W", "W"),
-    Row("effective_radiated_power", "ERP, W PEP", "W", "W"),
-    Row("mean_effective_radiated_power", "ERP, W mean", "W", "W"),
-    Row("directivity_along_axis", "Directivity on the axis", "1", ""),
-    Row("directivity_in_plane", "Directivity in the plane", "1", ""),
+    *_SKY_ROWS,
     Row("largest_current", "Largest current, A RMS", "A", "A"),
     Row("conductor_temperature_rise", "Conductor, rise in K", "K", "K"),
 )

@@ -142,7 +142,7 @@ class Speaker:
         for finding in sheet.findings:
             yield self.item(finding.verdict, f"{finding.id}: {finding.because}. Do: {finding.do}.")
         for point in sheet.operating_points:
-            yield from self.heading(_use(point))
+            yield from self.heading(telling.use(point))
             for finding in (each for each in point.findings if each.session is None):
                 yield self._told(finding)
             head = ("rule and tier", "direction", "m", "set by", "key-down, m")
@@ -209,7 +209,7 @@ class Speaker:
             return
         yield from self.heading("People: places")
         for point in points:
-            yield self.paragraph(_use(point))
+            yield self.paragraph(telling.use(point))
             places = [(place, exposure) for exposure in point.exposure for place in exposure.places]
             for place, exposure in sorted(places, key=lambda each: ORDER.index(each[0].verdict)):
                 yield self.item(place.verdict, f"{people.place_text(place, exposure)}.")
@@ -242,7 +242,7 @@ class Speaker:
         for point in points:
             said = tuple(exemption.sentences(point))
             if said:
-                yield self.paragraph(_use(point))
+                yield self.paragraph(telling.use(point))
             for sentence in said:
                 yield self.paragraph(sentence, indent=2)
 
@@ -317,7 +317,7 @@ class Speaker:
             yield self.paragraph(next(iter(bases)))
         for point, pattern in shown:
             yield Text("")
-            yield self.paragraph(f"{_use(point)}. {sky.scale(pattern)}")
+            yield self.paragraph(f"{telling.use(point)}. {sky.scale(pattern)}")
             if len(bases) > 1:
                 yield self.paragraph(sky.basis(pattern))
             yield Text(self.letters("\n".join(sky.bars(pattern, self.width))), no_wrap=True)
@@ -333,10 +333,10 @@ class Speaker:
             if self.width < _TABLE or number == 0:
                 yield Text("")
             if self.width < _TABLE:
-                yield self.paragraph(_use(point))
+                yield self.paragraph(telling.use(point))
                 yield from (self.paragraph(text, indent=2) for text in sky.placing_sentences(point.placings))
             else:
-                head = (words.short(point.name, sky.PLACING_LABEL), *sky.PLACING_HEAD)
+                head = (words.short(point.name, sky.PLACING_LABEL), *sky.placing_head(point.placings))
                 yield self.grid(head, sky.placing_rows(point.placings), sky.PLACING_LABEL)
 
     def measure_first(self, sheet: Sheet) -> Iterator[RenderableType]:
@@ -373,8 +373,3 @@ def _title(told: telling.Told) -> str:
         return f"{told.finding.id}{where}"
     rule = told.finding.id.rsplit(".", 1)[0]
     return f"{rule}, {words.short(told.finding.place)}{where}"
-
-
-def _use(point: OperatingPointRecord | KeepoutPoint) -> str:
-    parts = dict.fromkeys((words.short(point.name), words.frequency(point.frequency)))
-    return f"{', '.join(parts)}, {words.watts(point.power)} PEP"

@@ -8,7 +8,8 @@ import numpy as np
 import pytest
 
 from magsafe.checks.ladder import Ladder, Rung
-from magsafe.checks.swr_curve import SwrCurve, series_swr
+from magsafe.checks.swr_curve import SwrCurve
+from magsafe.physics.tuned_circuit import detuned_impedance, standing_wave_ratio
 from magsafe.reports.charts import MOST_RUNGS, WIDTH, ladder_picture, swr_picture
 from magsafe.reports.page import Picture
 
@@ -85,7 +86,8 @@ def test_a_name_without_end_stays_within_the_picture() -> None:
 def curve(likely: float = 800.0) -> SwrCurve:
     width = 7.1e6 / (2.0**0.5 * likely)
     offset = np.linspace(-4.0, 4.0, 321) * width
-    return SwrCurve(7.1e6, offset, series_swr(offset, 7.1e6, likely), series_swr(offset, 7.1e6, 1200.0), None, width)
+    ratios = [standing_wave_ratio(detuned_impedance(offset, 7.1e6, q), 1.0) for q in (likely, 1200.0)]
+    return SwrCurve(7.1e6, offset, ratios[0], ratios[1], None, width)
 
 
 def test_the_curve_passes_two_at_the_ends_of_the_width() -> None:

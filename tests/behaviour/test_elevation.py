@@ -574,6 +574,14 @@ def test_placings_are_rows_with_the_one_as_designed_in_words() -> None:
     assert "upright, 3.00 m                 21.8         +1.9      +3.0      41.2      5.74" in made
 
 
+def test_a_loop_without_a_capacitor_has_no_column_of_volts() -> None:
+    bare = tuple(each.model_copy(update={"capacitor_peak_voltage": None}) for each in PLACINGS)
+    assert len(sky.placing_head(PLACINGS)) == 5
+    assert len(sky.placing_head(bare)) == 4
+    assert {len(row) for row in sky.placing_rows(bare)} == {5}
+    assert not any("capacitor" in each for each in sky.placing_sentences(bare))
+
+
 def test_placings_are_sentences_where_it_is_narrow() -> None:
     assert list(sky.placing_sentences(PLACINGS)) == [
         "As designed, upright at 2.00 m: 14.1 % to the sky, 41.2 % of it above 60 deg, capacitor 5.74 kV peak.",

@@ -5,7 +5,7 @@ import math
 import re
 import subprocess
 import sys
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, fields
 from functools import cache
 from pathlib import Path
@@ -189,6 +189,7 @@ def families_made() -> Iterator[str]:
     """Yield an id of each family that checks/ makes: of `Check(` calls, names of the design replaced by stand-ins."""
     for path in sorted((PACKAGE / "checks").glob("*.py")):
         tree = ast.parse(path.read_text(encoding="utf-8"))
+        texts = dict(_texts(tree))
         for scope in ast.walk(tree):
             if not isinstance(scope, ast.FunctionDef | ast.Module):
                 continue
@@ -196,15 +197,29 @@ def families_made() -> Iterator[str]:
                 inner = ast.walk(node) if isinstance(scope, ast.Module) and isinstance(node, ast.Assign) else [node]
                 for call in inner:
                     if isinstance(call, ast.Call) and isinstance(call.func, ast.Name) and call.func.id == "Check":
-                        yield from _ids_of(call.args[0], scope)
+                        yield from _ids_of(call.args[0], scope, texts)
 
 
-def _ids_of(first: ast.expr, scope: ast.AST) -> Iterator[str]:
+def _texts(tree: ast.Module) -> Iterator[tuple[str, str]]:
+    """Yield the names of a module that stand for a text, and the text."""
+    for node in tree.body:
+        if isinstance(node, ast.Assign):
+            target, value = node.targets[0], node.value
+            names = target.elts if isinstance(target, ast.Tuple) else [target]
+            values = value.elts if isinstance(value, ast.Tuple) else [value]
+            for name, each in zip(names, values, strict=False):
+                if isinstance(name, ast.Name) and isinstance(each, ast.Constant) and isinstance(each.value, str):
+                    yield name.id, each.value
+
+
+def _ids_of(first: ast.expr, scope: ast.AST, texts: Mapping[str, str]) -> Iterator[str]:
     match first:
         case ast.Constant(str(value)):
             yield value
         case ast.JoinedStr(values):
-            yield "".join(_stand_in(value) for value in values)
+            yield "".join(_stand_in(value, texts) for value in values)
+        case ast.Name(id=name) if name in texts:
+            yield texts[name]
         case ast.Name():
             # An id by its name: one of those that stand in a table of the same function.
             for node in ast.walk(scope):
@@ -217,10 +232,12 @@ def _ids_of(first: ast.expr, scope: ast.AST) -> Iterator[str]:
             raise AssertionError(f"an id that this test cannot read: {ast.unparse(first)}")
 
 
-def _stand_in(value: ast.expr) -> str:
+def _stand_in(value: ast.expr, texts: Mapping[str, str]) -> str:
     if isinstance(value, ast.Constant):
         return str(value.value)
-    text = ast.unparse(value)
+    text = ast.unparse(value.value if isinstance(value, ast.FormattedValue) else value)
+    if text in texts:
+        return texts[text]
     if re.search(r"\bwho\b", text):
         return "public"
     return "us-fcc" if "rule" in text else "" if " if " in text else "1"

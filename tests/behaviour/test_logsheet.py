@@ -23,8 +23,9 @@ from pypdf import PdfReader
 
 import magsafe
 from magsafe import words
+from magsafe.analysis.operating_point import operating_points
 from magsafe.checks.first_keydown import first_keydown
-from magsafe.checks.run import check, operating_points
+from magsafe.checks.run import check
 from magsafe.checks.sheet import Limit, Value
 from magsafe.cli.logsheet import _file, _page
 from magsafe.design.model import Design

@@ -12,7 +12,7 @@ import pytest
 from pypdf import PdfReader
 
 import magsafe
-from magsafe.checks.run import operating_points
+from magsafe.analysis.operating_point import operating_points
 from magsafe.cli.logsheet import _page
 from magsafe.reports.html import as_html
 from magsafe.reports.page import Page

@@ -735,6 +735,51 @@ def test_it_fits_the_terminal(
 # The command ------------------------------------------------------------------------------------------------
 
 
+def test_a_distance_that_is_not_told_any_more_is_worse_and_a_new_one_is_not(sheet: Sheet) -> None:
+    def without_floors(tree: Tree) -> None:
+        tree["operating_points"][0]["exposure"][0]["keepout"]["on_floors"] = []
+
+    less = altered(sheet, without_floors)
+    gone = [each for each in against(sheet, less).changes if each.kind == "keepout"]
+    assert gone
+    assert {each.direction for each in gone} == {"worse"}
+    assert all("not told any more" in each.text and each.after is None for each in gone)
+    new = [each for each in against(less, sheet).changes if each.kind == "keepout"]
+    assert {each.direction for each in new} == {"other"}
+    assert [each.after for each in new] == [each.before for each in gone]
+
+
+def test_a_rule_that_goes_from_one_transmission_alone_is_told(sheet: Sheet) -> None:
+    rule = sheet.operating_points[0].exposure[0].rule
+
+    def without_rule(tree: Tree) -> None:
+        point = tree["operating_points"][0]
+        point["exposure"] = [each for each in point["exposure"] if each["rule"] != rule]
+
+    told = [each for each in against(sheet, altered(sheet, without_rule)).changes if each.kind == "rule"]
+    assert {(each.direction, each.transmission) for each in told} == {("worse", sheet.operating_points[0].name)}
+    assert all("is not judged any more" in each.text for each in told)
+
+
+def test_an_exemption_that_is_gone_is_told(sheet: Sheet) -> None:
+    def without(tree: Tree) -> None:
+        tree["operating_points"][0]["exemptions"] = []
+
+    told = [each for each in against(sheet, altered(sheet, without)).changes if each.kind == "exemption"]
+    assert len(told) == len(sheet.operating_points[0].exemptions) > 0
+
+
+@pytest.mark.parametrize("key", ["value", "at_limit"])
+@pytest.mark.parametrize("whole", [True, False])
+def test_a_ceiling_that_the_findings_do_not_give_is_refused(sheet: Sheet, key: str, whole: bool) -> None:
+    def raised(tree: Tree) -> None:
+        (tree if whole else tree["operating_points"][1])["power_ceiling"][key] = 9999.0
+
+    with pytest.raises(CommandError, match=f"power_ceiling.{key}") as told:
+        parse_sheet(altered(sheet, raised).to_json().encode(), "filed.json")
+    assert "the sheet was altered" in str(told.value)
+
+
 @pytest.fixture
 def folder(tmp_path: Path, small: tuple[bytes, Sheet]) -> Path:
     """Give a folder with a design, its sheet, and a design that is worse."""
@@ -773,7 +818,16 @@ def test_another_design_may_be_given_and_the_second_verdict_decides(folder: Path
 
 
 def test_two_filed_sheets_are_told_as_they_are(folder: Path, small: tuple[bytes, Sheet]) -> None:
-    other = altered(small[1], lambda tree: tree["power_ceiling"].update(value=1.0))
+    def lower(tree: Tree) -> None:
+        point = tree["operating_points"][0]
+        held = tree["power_ceiling"]["held_by"]
+        for finding in point["findings"]:
+            if finding["id"] == held:
+                finding["power_at_margin"] = 1.0
+        for made in (tree["power_ceiling"], point["power_ceiling"]):
+            made["value"] = 1.0
+
+    other = altered(small[1], lower)
     (folder / "other").write_text(other.to_json(), encoding="utf-8")
     done = run("recheck", str(folder / "small.json"), str(folder / "other"))
     text = " ".join(done.stdout.split())

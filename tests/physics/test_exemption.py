@@ -131,6 +131,21 @@ def test_a_loop_that_is_not_computed_has_no_gain() -> None:
         assert "gain is not known: no series capacitor" in (found[name].why or "")
 
 
+def test_over_ground_the_larger_counts_and_without_a_height_nothing_is_known() -> None:
+    """Who leaves the height out is exempt by no more than over any ground at any height."""
+    design = plain_design(site__ground="sea water", loop__centre_height="2 m", transmission__0__frequency="28.5 MHz")
+    point = point_of(design)
+    over = point.figures.effective_isotropic_radiated_power.spread.high or 0.0
+    free = most_eirp(point_of(plain_design(transmission__0__frequency="28.5 MHz")), point.power) or 0.0
+    assert over > 2.0 * free
+    assert most_eirp(point, point.power) == pytest.approx(over)
+    anywhere = plain_design(site__ground="average", site__rules=["us-fcc"])
+    assert most_eirp(point_of(anywhere), 100.0) is None
+    told = [each for each in records(anywhere).values() if each.kind != "power"]
+    assert told
+    assert all(each.power is None and "centre_height" in (each.why or "") for each in told)
+
+
 def test_a_mean_counts_the_pattern_and_a_crest_does_not() -> None:
     """CW, 40 % while keyed, 6 of any 36 minutes: 100 W x 0.4 x 6 / 30 = 8 W over 30 min, 40 W over 6 min."""
     over = {"transmit": "6 min", "listen": "30 min"}

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from scipy.constants import atm
+from scipy.constants import Stefan_Boltzmann, atm
 
 from magsafe.physics.arrays import Array
 from magsafe.physics.conductor import conductivity_at, tube_impedance
@@ -28,6 +28,7 @@ from magsafe.physics.warming import (
     repeated_over_temperature,
     temperature_after,
     temperature_history,
+    time_to_cool,
 )
 
 COPPER = 0.0033  # 1/K
@@ -253,6 +254,55 @@ def test_a_history_that_leaves_the_range_says_so() -> None:
     assert np.isinf(temperature_after(60.0, 303.15, ElectricHeat(1e4, 0.004), BRIGHT, AIR, CAPACITY))
 
 
+SPENT = ElectricHeat(0.0, COPPER)
+NO_DRAUGHT = Surface(0.022, 0.022, 0.8, 0.3, 1e-9)  # it radiates alone
+
+
+def test_a_small_rise_that_is_radiated_goes_by_newtons_law() -> None:
+    """Time constants of C / (4 pi d epsilon sigma T^3), and the logarithm of the rises: Newton's law of cooling."""
+    constant = CAPACITY / (4.0 * np.pi * 0.022 * 0.8 * Stefan_Boltzmann * 303.15**3)
+    found = time_to_cool(np.array([303.25, 303.20]), 303.16, NO_DRAUGHT, AIR, CAPACITY)
+    assert found == pytest.approx(constant * np.log([10.0, 5.0]), rel=2e-3)
+
+
+def test_a_radiated_heat_takes_the_time_of_the_closed_form() -> None:
+    """Cooling by radiation alone from 700 to 350 K: Incropera & DeWitt, transient conduction, lumped (memory)."""
+
+    def indefinite(kelvin: float) -> float:
+        return float(0.5 * np.log((kelvin + 303.15) / (kelvin - 303.15)) + np.arctan(kelvin / 303.15))
+
+    per_second = 2.0 * np.pi * 0.022 * 0.8 * Stefan_Boltzmann * 303.15**3 / CAPACITY
+    expected = (indefinite(350.0) - indefinite(700.0)) / per_second
+    assert float(time_to_cool(700.0, 350.0, NO_DRAUGHT, AIR, CAPACITY)) == pytest.approx(expected, rel=1e-4)
+
+
+@given(start=st.floats(330.0, 1300.0), share=st.floats(0.01, 0.99), emissivity=shares, sun=suns)
+@settings(max_examples=20, deadline=None)
+def test_the_time_to_cool_is_the_inverse_of_the_cooling(
+    start: float, share: float, emissivity: float, sun: float
+) -> None:
+    surface, around = Surface(0.022, 0.022, emissivity, 0.3), Surroundings(303.15, atm, sun)
+    idle = float(steady_temperature(SPENT, surface, around))
+    if start <= idle + 1.0:
+        return
+    end = idle + share * (start - idle)
+    taken = float(time_to_cool(start, end, surface, around, CAPACITY))
+    assert float(temperature_after(taken, start, SPENT, surface, around, CAPACITY)) == pytest.approx(end, abs=1e-2)
+
+
+def test_what_is_no_warmer_needs_no_time_and_what_the_sun_keeps_warm_never_cools() -> None:
+    sunny = Surroundings(303.15, atm, 1000.0)
+    idle = float(steady_temperature(SPENT, BRIGHT, sunny))
+    assert idle > 310.0
+    ends = np.array([310.0, idle, idle + 5.0, 400.0, 420.0])
+    found = time_to_cool(400.0, ends, BRIGHT, sunny, CAPACITY)
+    assert np.isinf(found).tolist() == [True, True, False, False, False]
+    assert found[2] > 0.0
+    assert found[3:].tolist() == [0.0, 0.0]
+    assert float(time_to_cool(305.0, 309.0, BRIGHT, sunny, CAPACITY)) == 0.0
+    assert time_to_cool(400.0, 330.0, BRIGHT, AIR, np.array([[1.0], [2.0]])).shape == (2, 1)
+
+
 def test_a_loop_that_grows_drifts_down_by_its_growth() -> None:
     """f goes with size^-1/2 for L alone and with 1/size for both: finite growth against the linear form."""
     inductance_only, both = frequency_drift(7.1e6, 17e-6, 40.0)
@@ -285,6 +335,9 @@ def test_heat_capacity_is_that_of_the_metal() -> None:
         lambda: temperature_after(1.0, 1400.0, *CONDUCTOR),
         lambda: temperature_after(1.0, 300.0, HEAT, BRIGHT, AIR, 0.0),
         lambda: temperature_after(np.inf, 300.0, *CONDUCTOR),
+        lambda: time_to_cool(1400.0, 300.0, BRIGHT, AIR, CAPACITY),
+        lambda: time_to_cool(0.0, 300.0, BRIGHT, AIR, CAPACITY),
+        lambda: time_to_cool(400.0, 300.0, BRIGHT, AIR, 0.0),
         lambda: temperature_history(np.array([2.0, 1.0]), 1.0, 1.0, 300.0, *CONDUCTOR),
         lambda: temperature_history(np.array([-1.0, 1.0]), 1.0, 1.0, 300.0, *CONDUCTOR),
         lambda: temperature_history(np.array([1.0]), 0.0, 1.0, 300.0, *CONDUCTOR),

@@ -15,7 +15,7 @@ import magsafe
 from magsafe.analysis.exposure import use_of
 from magsafe.analysis.losses import Corner
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
-from magsafe.analysis.warmth import POORER, Warmth, joint_warmth, warmth
+from magsafe.analysis.warmth import POORER, Warmth, expansion_of, joint_warmth, warmth
 from magsafe.checks.sheet import Finding, Sheet
 from magsafe.design.model import Design
 from magsafe.physics.atmosphere import standard_pressure
@@ -100,6 +100,7 @@ def body(
         exponent=0.5,
         growth=1.0,
         capacity=227.0,
+        most_capacity=227.0,
         duty=1.0,
         over=over,
         pause=pause,
@@ -430,6 +431,41 @@ def test_the_drift_by_hand() -> None:
     assert found.limit.value == pytest.approx(width / 2.0)
     assert found.verdict in ("clear", "narrow")
     assert "after 3 min of transmitting" in found.because
+
+
+def test_a_metal_that_is_not_stated_drifts_as_the_one_that_expands_most() -> None:
+    """Zinc expands most of the table, 30.2 ppm/K; solder holds least of a volume, 8500 kg/m3 times 176 J/(kg K).
+
+    Stainless steel holds most, 7930 times 500. Handbooks of physics and metals (memory).
+    """
+    over = {"transmit": "3 min", "listen": "3 min"}
+    plain = {"form": "rod", "outer_diameter": "22 mm", "surface": "painted", "conductivity": "58 MS/m"}
+    changes = {"loop__conductor": plain, "transmission__0__over": over}
+    warm, sheet = warm_of(**changes), magsafe.check(design_of(**changes))
+    section = pi * 0.011**2
+    assert (warm.capacity, warm.most_capacity) == pytest.approx((1.496e6 * section, 3.965e6 * section), rel=1e-6)
+    found = finding_of(sheet, "loop.drift")
+    assert found.value is not None
+    rise = (warm.temperature().high or 0.0) - warm.idle
+    assert found.value.high == pytest.approx(7.1e6 * 30.2e-6 * rise, rel=1e-3)
+    assert "no metal is stated" in found.because
+    tube = {key: value for key, value in plain.items() if key != "conductivity"} | {"material": "copper tube"}
+    stated = {**changes, "loop__conductor": tube}
+    copper = warm_of(**stated)
+    assert copper.capacity == copper.most_capacity == pytest.approx(8940.0 * 385.0 * section, rel=0.02)
+    assert "no metal is stated" not in finding_of(magsafe.check(design_of(**stated)), "loop.drift").because
+    assert expansion_of(design_of(**stated).loop.conductor) == pytest.approx(16.5e-6, rel=0.03)
+
+
+def test_a_rise_is_heat_times_time_and_a_time_constant_that_of_small_steps() -> None:
+    """Conservation of energy; the constant against what is lost at two temperatures of the likely end."""
+    warm = body(20.0, 180.0, 180.0)
+    assert float(warm.rise_of(10.0, 60.0)) == pytest.approx(10.0 * 60.0 / 227.0)
+    assert np.isinf(replace(warm, capacity=0.0).rise_of(np.ones(2), 60.0)).all()
+    assert np.isinf(warm.rise_of(10.0, inf))
+    low, high = (float(lost_heat(330.0 + step, warm.surface, warm.air)) for step in (-2.0, 2.0))
+    assert warm.time_constant(330.0) == pytest.approx(227.0 * 4.0 / (high - low), rel=1e-3)
+    assert replace(warm, most_capacity=454.0).slowest.time_constant(330.0) == 2.0 * warm.time_constant(330.0)
 
 
 @pytest.mark.parametrize("surface", ["bright", "oxidised", "painted"])
