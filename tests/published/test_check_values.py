@@ -19,11 +19,13 @@ from magsafe.physics import (
     atmosphere,
     conductor,
     convection,
+    coupling,
     deratings,
     divided_voltage,
     ground,
     heat,
     inductance,
+    matching,
     open_line,
     proximity,
     small_loop,
@@ -31,6 +33,7 @@ from magsafe.physics import (
     tuned_circuit,
     warming,
 )
+from magsafe.physics.near_field import SegmentCurrents
 
 Row = dict[str, Any]
 
@@ -300,6 +303,47 @@ def _drift(row: Row) -> float:
     return float(ends[1] if "_LC_" in row["id"] else ends[0])
 
 
+def _coupling_size(row: Row) -> float:
+    """The small-loop resistance and an even current, as the table has it: 240 sides of a circle's area."""
+    i = row["inputs"]
+    across, radius, f = i["D_m"] / 2.0, i["tube_diameter_m"] / 2.0, i["f_Hz"]
+    loss = float(conductor.tube_impedance(f, i["sigma"], radius, i["wall_m"]).real) * 2.0 * np.pi * across
+    total = float(small_loop.radiation_resistance(np.pi * across**2, 1, c / f)) + loss + i["esr_ohm"]
+    angle = 2.0 * np.pi / 240 * np.arange(240)
+    corners = np.stack([np.cos(angle), np.sin(angle), 0.0 * angle], axis=1)
+    nodes, even = across * np.sqrt(angle[1] / np.sin(angle[1])) * corners, np.ones(240, dtype=np.complex128)
+    currents = SegmentCurrents(nodes, np.roll(nodes, -1, axis=0), even, even, radius)
+    axis, edge = np.array([0.0, 0.0, 1.0]), np.array([-across, 0.0, 0.0])
+    centred = "_centre_" in row["id"]
+    place = coupling.centred(0.0 * edge, axis) if centred else coupling.beside(edge, -edge, axis, 0.01)
+    found = coupling.matching_size(coupling.Circuit(currents, f, total, i["Z0"]), place, 0.002).matched
+    assert found is not None
+    return found.diameter / float(i["D_m"])
+
+
+def _coupling_reactance(row: Row) -> float:
+    i = row["inputs"]
+    return float(coupling.matching_mutual_reactance(i["R_ohm"], i.get("Xc_ohm", 0.0), i["Z0"]))
+
+
+def _coupling_detuning(row: Row) -> float:
+    i = row["inputs"]
+    return float(coupling.best_tuned_reactance(1.0, i["Xc_ohm"], i["R_ohm"], i["Z0"]))
+
+
+def _two_capacitors(row: Row) -> float:
+    i = row["inputs"]
+    match = matching.capacitor_match(complex(i["R_ohm"], i["X_ohm"]), i["f_Hz"], i["Z0"])
+    return match.parallel if "_Cpar_" in row["id"] else match.series
+
+
+def _turns(row: Row) -> float:
+    # The ratio of turns whose square, as a ratio of impedances, brings the load to the line.
+    i = row["inputs"]
+    squared = brentq(lambda n: float(matching.impedance_through_transformer(i["Zl"], n).real) - i["Z0"], 1.0, 4.0)
+    return float(np.sqrt(float(squared)))
+
+
 CALCULATIONS: dict[str, Callable[[Row], Any]] = {
     "stub_": _stub,
     "coaxial_sleeve": _sleeve,
@@ -338,6 +382,14 @@ CALCULATIONS: dict[str, Callable[[Row], Any]] = {
     "loop": _loop,
     "ground_pec": _image,
     "chu_": lambda row: float(tuned_circuit.chu_bound(row["inputs"]["ka"])),
+    "coupling_ratio": _coupling_size,
+    "coupling_wM": _coupling_reactance,
+    "coupling_detune": _coupling_detuning,
+    "two_cap": _two_capacitors,
+    "quarter_wave": lambda row: float(matching.quarter_wave_impedance(row["inputs"]["Zl"], row["inputs"]["Z0"])),
+    "turns_ratio": _turns,
+    "swr_112": lambda row: float(tuned_circuit.standing_wave_ratio(row["inputs"]["Zl"] + 0j, row["inputs"]["Z0"])),
+    "swr_mismatch": lambda row: -10.0 * float(np.log10(matching.mismatch_share(row["inputs"]["S"]))),
     "eta0": lambda _: small_loop.FREE_SPACE_IMPEDANCE,
     "line_model": _line,
     # The half-power points of a matched loop lie where the SWR is 3 + 2 sqrt 2: bandwidth 2 f/Q.
