@@ -408,6 +408,7 @@ def beside(point: Array, inward: Array, normal: Array, clearance: float) -> Plac
     ------
     ValueError : no direction, or a clearance that is not a length
 
+    Valid     any loop in one plane.
     Source    plane geometry.
     """
     length = float(np.linalg.norm(inward))
@@ -498,8 +499,8 @@ def coupled(circuit: Circuit, place: Place, conductor_radius: float, diameters: 
 
     Parameters
     ----------
-    circuit : tuned loop and line
-    place : where they lie
+    circuit : tuned loop and line [A, m, Hz, ohm]
+    place : where they lie [m, 1]
     conductor_radius : of their round conductor [m]
     diameters : to the axis of it [m], shape (circle,)
 
@@ -538,8 +539,8 @@ def matching_size(circuit: Circuit, place: Place, conductor_radius: float) -> Si
 
     Parameters
     ----------
-    circuit : tuned loop and line
-    place : where the coupling loop lies
+    circuit : tuned loop and line [A, m, Hz, ohm]
+    place : where the coupling loop lies [m, 1]
     conductor_radius : of its round conductor [m]
 
     Returns

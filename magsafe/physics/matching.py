@@ -279,8 +279,8 @@ def share_through_line(matched_share: Values, reflection: Values, tuned: bool) -
     ----------
     matched_share : what the line leaves of the power with a matched load [1], shape (...), 0 to 1
     reflection : magnitude of the reflection factor of the load on the line [1], broadcast, 0 to 1
-    tuned : whether the transmitter's end is matched to what the line shows there, so that all the available power goes
-        in (a tuner without loss); else what comes back is lost to the transmitter [1]
+    tuned : whether the transmitter's end is matched to what the line shows there [1], so that all the available power
+        goes in (a tuner without loss); else what comes back is lost to the transmitter
 
     Returns
     -------
