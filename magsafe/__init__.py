@@ -20,7 +20,7 @@ if TYPE_CHECKING:
     from magsafe.design.reading import parse_design, read_design
     from magsafe.errors import CommandError, DesignError, MagsafeError
 
-__version__ = "0.2.0"
+__version__ = "0.3.0"
 
 _HOMES = {
     "CommandError": "magsafe.errors",

@@ -3,6 +3,8 @@
 from dataclasses import dataclass
 from math import isfinite
 
+ROUNDING = 1e-9  # of a value: what the last digits of a sum may leave
+
 
 @dataclass(frozen=True, slots=True)
 class Spread:
@@ -32,6 +34,21 @@ class Spread:
     def exact(cls, value: float) -> "Spread":
         """Return a spread of no width."""
         return cls(value, value, value)
+
+    @classmethod
+    def about(cls, low: float | None, likely: float, high: float) -> "Spread":
+        """Return a spread whose ends were computed another way than its likely value: the last digits may cross.
+
+        Raises
+        ------
+        ValueError : they cross by more than rounding
+        """
+        last = ROUNDING * abs(likely)
+        if low is not None and likely < low <= likely + last:
+            low = likely
+        if likely - last <= high < likely:
+            high = likely
+        return cls(low, likely, high)
 
     @property
     def known(self) -> bool:

@@ -11,6 +11,7 @@ COMMANDS = (
     "keepout",
     "logsheet",
     "recheck",
+    "measured",
     "draft",
     "explain",
     "rules",

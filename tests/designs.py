@@ -4,6 +4,7 @@ from collections.abc import Callable
 from copy import deepcopy
 from typing import Any
 
+from magsafe.design.as_built import NO_GROUND, identity
 from magsafe.design.model import Design
 from magsafe.design.reading import parse_design
 
@@ -73,6 +74,22 @@ def plain_tree(**changes: Any) -> Tree:
     for name, value in changes.items():
         put(tree, name.replace("__", "."), value)
     return tree
+
+
+def measured_changes(quality: float, spread: float = 0.02, **changes: Any) -> Tree:
+    """Return changes of the plain design with the record of a Q, measured of it as it then is at its frequency."""
+    design = plain_design(**changes)
+    height = design.loop.centre_height
+    record = {
+        "frequency": f"{design.transmission[0].frequency / 1e6:.9g} MHz",
+        "unloaded_q": {"low": quality * (1.0 - spread), "likely": quality, "high": quality * (1.0 + spread)},
+        "date": "2026-05-04",
+        "ground": design.ground_name or NO_GROUND,
+        "design": identity(design),
+    }
+    if height is not None:
+        record["centre_height"] = f"{height:.9g} m"
+    return {**changes, "measured": [record]}
 
 
 def plain_design(**changes: Any) -> Design:

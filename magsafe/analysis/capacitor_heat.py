@@ -19,10 +19,10 @@ def heat_of(chain: Chain, parts: Sequence[Loss], others: str = "low") -> Spread:
 
     def heat(end: str, rest: str, corner: Corner, power: float) -> float:
         mine = sum(part.at(end, corner) for part in parts)
-        other = chain.resistance(rest, corner) - sum(part.at(rest, corner) for part in parts)
-        return power * mine / (other + mine)
+        instead = sum(part.at(rest, corner) for part in parts)
+        return power * mine / chain.resistance_with(mine, instead, rest, corner)
 
     low = min((heat("low", "high", each, chain.power.low or 0.0) for each in chain.most), default=None)
     likely = heat("likely", "likely", chain.likely, chain.power.likely or 0.0)
     high = max(heat("high", others, each, chain.power.high or 0.0) for each in chain.least)
-    return Spread(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR)
+    return Spread.about(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR)

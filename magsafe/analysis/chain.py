@@ -7,8 +7,9 @@ one excess of the reactance between two ends, because most of it cancels.
 
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass, replace
-from math import pi, sqrt
+from math import inf, pi, sqrt
 
+import numpy as np
 from scipy.constants import c, mu_0
 
 from magsafe.analysis import line_capacitor
@@ -26,10 +27,12 @@ from magsafe.analysis.losses import (
 )
 from magsafe.analysis.surroundings import State, Surroundings, surroundings
 from magsafe.analysis.wires import electrical_radius, extent
+from magsafe.design.as_built import standing
 from magsafe.design.model import Design
 from magsafe.design.shape import Outline, outline
 from magsafe.physics import small_loop, tuned_circuit
-from magsafe.spread import Spread
+from magsafe.physics.arrays import Array
+from magsafe.spread import UNKNOWN, Spread
 
 Question = Callable[[str, Corner, float], float]
 
@@ -42,6 +45,7 @@ STUDY = "thin-wire method of moments, held against the Fourier series of the cir
 
 LOSSY_SHARE, LOSSY_BEND = 0.03, 0.005  # of the conductor's resistance in its reactance: see `current_is_perfect`
 CROWDED_SHARE = 0.2  # of what crowding takes from the inductance of turns: they are bent, and their currents differ
+CARRIED = 1.5  # power of the frequency by which Q may change otherwise than its parts tell: soil, a line's loss
 LARGEST_SHARE = 0.5  # of the susceptance that cancels the reactance, which the gap's may be
 
 # Capacitance across the port of a gap wider or narrower than the one computed [F, F/m of conductor diameter]: from
@@ -71,7 +75,8 @@ class Chain:
     reactance, power at the loop [W]. `corner_error` is the relative uncertainty of the inductance by sharp corners and
     crowded turns. `capacitor` is the loss of its main part, `padding` those of the parts joined to it. The derivative
     of its reactance by the frequency, times it, over that reactance is `capacitor_steepness`, the highest voltage in it
-    over that at its terminals `capacitor_crest`: 1 unless it is a line.
+    over that at its terminals `capacitor_crest`: 1 unless it is a line. `measured` is the unloaded Q that an instrument
+    told, at the ends of its uncertainty: it decides the total resistance in place of the parts, whatever the corner.
     """
 
     frequency: float
@@ -93,11 +98,14 @@ class Chain:
     padding: tuple[Loss, ...]
     capacitor_steepness: float = 1.0
     capacitor_crest: float = 1.0
+    measured: Spread | None = None
 
-    def corners(self, states: Iterable[State]) -> tuple[Corner, ...]:
+    def corners(self, states: Iterable[State], *, in_place: bool = True) -> tuple[Corner, ...]:
         """Return states with every excess of the reactance that the port's gap leaves open."""
         return tuple(
-            Corner(state, self._excess(state, sign), self.internal) for state in states for sign in (-1.0, 0.0, 1.0)
+            Corner(state, self._excess(state, sign), self.internal, in_place)
+            for state in states
+            for sign in (-1.0, 0.0, 1.0)
         )
 
     def _excess(self, state: State, sign: float) -> float:
@@ -139,13 +147,17 @@ class Chain:
 
     @property
     def least(self) -> tuple[Corner, ...]:
-        """The corners with the least resistance of radiation and ground."""
-        return self.corners(self.around.least)
+        """The corners with the least resistance of radiation and ground; of a measured Q, which tells it, all."""
+        return self.corners(self.around.least) if self.measured is None else self._all_in_place
 
     @property
     def most(self) -> tuple[Corner, ...]:
-        """The corners with the most; empty where no height bounds what soil adds."""
-        return self.corners(self.around.most)
+        """The corners with the most; empty where no height bounds what soil adds. Of a measured Q, all."""
+        return self.corners(self.around.most) if self.measured is None else self._all_in_place
+
+    @property
+    def _all_in_place(self) -> tuple[Corner, ...]:
+        return (*self.corners((*self.around.least, *self.around.most)), self.likely)
 
     @property
     def every(self) -> tuple[Corner, ...]:
@@ -155,7 +167,7 @@ class Chain:
     @property
     def free(self) -> tuple[Corner, ...]:
         """The corners in free space."""
-        return self.corners(State(each, each.radiation) for each in self.around.free)
+        return self.corners((State(each, each.radiation) for each in self.around.free), in_place=False)
 
     @property
     def likely(self) -> Corner:
@@ -166,7 +178,7 @@ class Chain:
     def likely_free(self) -> Corner:
         """The likely corner in free space."""
         first = self.around.free[0]
-        return Corner(State(first, first.radiation), 0.0, self.internal)
+        return Corner(State(first, first.radiation), 0.0, self.internal, in_place=False)
 
     @property
     def losses(self) -> tuple[Loss, ...]:
@@ -179,8 +191,70 @@ class Chain:
         return tuple(dict.fromkeys(row for loss in self.losses for row in loss.typical))
 
     def resistance(self, end: str, corner: Corner) -> float:
-        """Return the total resistance with every loss at one end [ohm]."""
+        """Return the total resistance with every loss at one end [ohm]; by the measured Q where there is one."""
+        if self.measured is None:
+            return self.resistance_of_parts(end, corner)
+        if not corner.in_place:
+            return corner.radiated + self._measured_losses(end)
+        return self._half_slope(corner) / self._measured_q(end)
+
+    def resistance_of_parts(self, end: str, corner: Corner) -> float:
+        """Return the total resistance as its parts add up [ohm], whatever was measured."""
         return corner.radiated + sum(loss.at(end, corner) for loss in self.losses)
+
+    def resistance_with(self, mine: float, instead: float, others: str, corner: Corner) -> float:
+        """Return the total resistance [ohm], all losses at one end, but some parts at `mine` where they are `instead`.
+
+        A measured Q tells the total whatever its parts are, so it stays where those parts alone are not more.
+        """
+        if self.measured is None:
+            return self.resistance_of_parts(others, corner) - instead + mine
+        return max(self.resistance(others, corner), mine)
+
+    def resistance_over(self, radiated: Array, end: str, corner: Corner) -> Array:
+        """Return the total resistance [ohm] with other radiation and ground [ohm, for 1 A into the conductor].
+
+        Measured, the total is what it is, and at least what is radiated.
+        """
+        if self.measured is None:
+            losses = self.resistance_of_parts(end, corner) - corner.radiated
+            return np.asarray(radiated * corner.growth + losses)
+        return np.maximum(radiated * corner.growth, self._half_slope(corner) / self._measured_q(end))
+
+    def taken(self, corner: Corner) -> float:
+        """Return the likely resistance [ohm], at least what is radiated: shares of the power are counted by it.
+
+        Only a measured Q that is higher than the loop can have leaves less.
+        """
+        return max(self.resistance("likely", corner), corner.radiated)
+
+    def unexplained(self, end: str, corner: Corner) -> float:
+        """Return what a measured Q adds to the parts [ohm], below zero where it leaves less; 0 without one."""
+        return self.resistance(end, corner) - self.resistance_of_parts(end, corner)
+
+    def _half_slope(self, corner: Corner) -> float:
+        """Return half of the slope of the reactance of loop and capacitor [ohm]: Q times the resistance."""
+        return (corner.slope + (self.capacitor_steepness - 1.0) * abs(corner.reactance)) / 2.0
+
+    def _measured_q(self, end: str) -> float:
+        """Return the end of the measured Q that stands for an end of the losses: few losses make a high Q."""
+        known = self.measured or UNKNOWN
+        return {"high": known.low, "likely": known.likely}.get(end, known.high) or inf
+
+    def _measured_losses(self, end: str) -> float:
+        """Return what the loop itself loses [ohm] by the measured Q, what radiates and goes to the ground taken off.
+
+        Where no height bounds what the ground takes, the parts tell the low end.
+        """
+        if end == "likely":
+            return max(0.0, self.resistance(end, self.likely) - self.likely.radiated)
+        every = [self.resistance(end, each) - each.radiated for each in self.every]
+        if end == "high":
+            return max(0.0, *every)
+        if not self.around.most:
+            parts = min(self.resistance_of_parts(end, each) - each.radiated for each in self.free)
+            return min(parts, self._measured_losses("likely"))
+        return max(0.0, min(every))
 
     def voltage(self, end: str, corner: Corner, power: float) -> float:
         """Return the crest of the voltage at the port, with the overshoot [V]."""
@@ -197,8 +271,7 @@ class Chain:
 
     def quality(self, end: str, corner: Corner, power: float = 0.0) -> float:  # noqa: ARG002
         """Return the unloaded Q, which no power changes."""
-        slope = corner.slope + (self.capacitor_steepness - 1.0) * abs(corner.reactance)
-        factor = slope / (2.0 * abs(corner.reactance))
+        factor = self._half_slope(corner) / abs(corner.reactance)
         return float(tuned_circuit.unloaded_q(self.resistance(end, corner), corner.reactance, factor))
 
     def efficiency(self, end: str, corner: Corner) -> float:
@@ -207,9 +280,8 @@ class Chain:
 
     def heat_in(self, part: Loss, own: str, others: str, corner: Corner, power: float) -> float:
         """Return the heat in one of the losses [W], that loss at one end, all others at another."""
-        rest = self.resistance(others, corner) - part.at(others, corner)
         mine = part.at(own, corner)
-        return power * mine / (rest + mine)
+        return power * mine / self.resistance_with(mine, part.at(others, corner), others, corner)
 
     def heat_spread(self, part: Loss, share: float = 1.0) -> Spread:
         """Return the heat in a part, or in a share of it that may be at its high end alone [W], key-down."""
@@ -219,13 +291,13 @@ class Chain:
         )
         likely = share * self.heat_in(part, "likely", "likely", self.likely, power.likely or 0.0)
         high = max(self.heat_alone(part, share, each, power.high or 0.0, "low") for each in self.least)
-        return Spread(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR)
+        return Spread.about(low, likely, high).widened(2.0 * VOLTAGE_ERROR, 2.0 * VOLTAGE_ERROR)
 
     def heat_alone(self, part: Loss, share: float, corner: Corner, power: float, others: str) -> float:
         """Return the heat in a share of a part [W] at its high end, the rest of it and all others at another end."""
         mine = share * part.at("high", corner)
-        rest = self.resistance(others, corner) - share * part.at(others, corner)
-        return power * mine / (rest + mine)
+        rest = share * part.at(others, corner)
+        return power * mine / self.resistance_with(mine, rest, others, corner)
 
     def terminals(self) -> list[complex]:
         """Return the impedance of a loop that is fed as it is [ohm] at every corner.
@@ -251,7 +323,7 @@ class Chain:
         """Return the spread of a question whose answer rises as the resistance falls."""
         low = min((ask("high", corner, self.power.low or 0.0) for corner in self.most), default=None)
         likely = ask("likely", self.likely, self.power.likely or 0.0)
-        return Spread(low, likely, self.dangerous(ask, "low"))
+        return Spread.about(low, likely, self.dangerous(ask, "low"))
 
     @property
     def voltage_error(self) -> float:
@@ -325,7 +397,31 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
         network=joined,
         padding=tuple(padding_loss(part, joined) for part in joined.padding),
     )
-    return _of_its_sizes(made, design) if made.tuned and line_capacitor.is_complete(design.capacitor) else made
+    if made.tuned and line_capacitor.is_complete(design.capacitor):
+        made = _of_its_sizes(made, design)
+    return replace(made, measured=_measured(made, design)) if made.tuned else made
+
+
+def _measured(made: Chain, design: Design) -> Spread | None:
+    """Return the unloaded Q that was measured of the loop as it is, carried over to its frequency; None without.
+
+    Radiation goes with the fourth power of the frequency, what soil takes about with its square, a conductor's loss
+    with its root, a capacitor's of one Q with the frequency; more, the steeper the reactance is, as less of the current
+    flows at the port (computed: circles of one and two turns, to 0.8 of their anti-resonance).
+    """
+    found = standing(design, made.frequency)
+    if found is None or found.why_not or found.record.unloaded_q is None:
+        return None
+    quality, away = found.record.unloaded_q, made.frequency / (found.record.frequency or made.frequency)
+    likely, bent = made.likely, made.steepness - 1.0
+    soil = max(0.0, likely.radiated - likely.state.flow.radiation * likely.growth)
+    powers = [(4.0 + 2.5 * bent, likely.radiated - soil), (2.0 + 2.0 * bent, soil)]
+    powers.append((0.5 + 2.0 * bent, made.conductor.at("likely", likely)))
+    powers += [(0.0 if each.where == "port" else 2.0 * bent, each.at("likely", likely)) for each in made.joints]
+    powers += [(1.0 + bent, part.at("likely", likely)) for part in (made.capacitor, *made.padding)]
+    grows = sum(power * part for power, part in powers) / made.resistance_of_parts("likely", likely)
+    carried, unsure = away ** (1.0 + 2.0 * bent - grows), max(away, 1.0 / away) ** CARRIED
+    return Spread(quality.low * carried / unsure, quality.likely * carried, quality.high * carried * unsure)
 
 
 def _of_its_sizes(made: Chain, design: Design) -> Chain:

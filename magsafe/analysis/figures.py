@@ -40,6 +40,7 @@ class Figures:
     joint_resistance: Figure
     capacitor_resistance: Figure
     ground_resistance: Figure
+    unexplained_resistance: Figure
     total_resistance: Figure
     port_reactance: Figure
     inductance: Figure
@@ -66,6 +67,16 @@ class Figures:
     capacitor_dissipation: Figure
     conductor_temperature_rise: Figure
     coupling_loop_diameter: Figure
+    match_parallel_capacitance: Figure
+    series_capacitance: Figure
+    series_capacitor_peak_voltage: Figure
+    series_capacitor_rms_current: Figure
+    quarter_wave_impedance: Figure
+    quarter_wave_length: Figure
+    swr_through_quarter_wave: Figure
+    swr_through_2_to_1: Figure
+    swr_through_4_to_1: Figure
+    swr_at_feed: Figure
     terminal_resistance: Figure
     terminal_reactance: Figure
     terminal_peak_voltage: Figure
@@ -91,6 +102,7 @@ def figures_of(chain: Chain, design: Design) -> Figures:
         "radiation_resistance": _radiation(chain),
         "conductor_resistance": _conductor(chain),
         "joint_resistance": _joints(chain),
+        "unexplained_resistance": _unexplained(chain),
         "total_resistance": _total(chain),
         "port_reactance": _reactance(chain),
         "inductance": _inductance(chain),
@@ -98,14 +110,28 @@ def figures_of(chain: Chain, design: Design) -> Figures:
         "largest_current": _answer(
             chain, chain.largest_current, VOLTAGE_ERROR, "A", "RMS, anywhere on the conductor", _LOOP_SOURCE
         ),
-        "coupling_loop_diameter": _not_yet("m", "the coupling loop"),
         **_directivities(chain),
         **(_tuned(chain) if tuned else _terminals(chain, design)),
     }
+    return Figures(**{f.name: known.get(f.name) or _none(f.name, tuned) for f in fields(Figures)})
+
+
+_BY_CAPACITORS = (
+    "match_parallel_capacitance",
+    "series_capacitance",
+    "series_capacitor_peak_voltage",
+    "series_capacitor_rms_current",
+)
+
+
+def _none(name: str, tuned: bool) -> Figure:
+    """Return a figure that this loop does not have."""
     why = "for a full-wave loop, used without a capacitor" if tuned else "the loop has no capacitor that tunes it"
-    return Figures(
-        **{f.name: known.get(f.name) or Figure(UNKNOWN, _unit(f.name), "none", "none", why) for f in fields(Figures)}
-    )
+    if tuned and name in _BY_CAPACITORS:
+        why = "for a loop that capacitors match"
+    elif tuned and name == "coupling_loop_diameter":
+        why = "for a loop that a small loop feeds"
+    return Figure(UNKNOWN, _unit(name), "none", "none", why)
 
 
 def _tuned(chain: Chain) -> dict[str, Figure]:
@@ -213,6 +239,9 @@ def _answer(chain: Chain, ask: Question, error: float, unit: str, method: str, s
 
 
 def _say(chain: Chain) -> str:
+    """Return what is to be said of the total resistance that a figure goes with."""
+    if chain.measured is not None:
+        return "; with the resistance that the measured Q tells, each end by an end of its 95 %"
     return "" if chain.around.ground_known else "; the likely value leaves the ground out"
 
 
@@ -224,6 +253,12 @@ def _unit(name: str) -> str:
     units = {
         "inductance": "H",
         "tuning_capacitance": "F",
+        "match_parallel_capacitance": "F",
+        "series_capacitance": "F",
+        "series_capacitor_peak_voltage": "V",
+        "series_capacitor_rms_current": "A",
+        "quarter_wave_impedance": "ohm",
+        "quarter_wave_length": "m",
         "half_power_bandwidth": "Hz",
         "swr2_bandwidth": "Hz",
         "nearest_resonance": "Hz",
@@ -239,10 +274,6 @@ def _unit(name: str) -> str:
     if name.endswith("radiated_power"):
         return "W"
     return units.get(name, "ohm" if name.endswith(("_resistance", "_reactance")) else "1")
-
-
-def _not_yet(unit: str, what: str) -> Figure:
-    return Figure(UNKNOWN, unit, "none", "none", f"{what} is not computed by this version")
 
 
 def _size(line: Outline, frequency: float) -> Figure:
@@ -302,8 +333,24 @@ def _total(chain: Chain) -> Figure:
         chain.resistance("likely", chain.likely),
         max((chain.resistance("high", corner) for corner in chain.most), default=None),
     ).widened(RESISTANCE_ERROR, RESISTANCE_ERROR)
+    if chain.measured is not None:
+        method = "half of the slope of the reactance over the measured Q, each end by an end of its 95 %"
+        return Figure(found, "ohm", method, f"{_YAGHJIAN}; {_LOOP_SOURCE}")
     method = f"sum of all, its low end with the least of free space, perfect image and any soil{_say(chain)}"
     return Figure(found, "ohm", method, _LOOP_SOURCE, "" if chain.most else _ADDED)
+
+
+def _unexplained(chain: Chain) -> Figure:
+    """Return what the measured Q leaves that no part accounts for, its ends by those of both."""
+    if chain.measured is None:
+        return Figure(UNKNOWN, "ohm", "none", "none", "no Q was measured of this loop at this frequency")
+    found = Spread(
+        min(chain.resistance("low", each) - chain.resistance_of_parts("high", each) for each in chain.least),
+        chain.unexplained("likely", chain.likely),
+        max(chain.resistance("high", each) - chain.resistance_of_parts("low", each) for each in chain.most),
+    )
+    method = "the resistance that the measured Q tells, less the sum of radiation, ground and all parts as computed"
+    return Figure(found, "ohm", method, f"{_YAGHJIAN}; the record in [measured]")
 
 
 def _reactance_ends(chain: Chain) -> Spread:

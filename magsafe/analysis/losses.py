@@ -22,11 +22,15 @@ Where = Literal["conductor", "spread", "opposite", "port", "capacitor"]
 
 @dataclass(frozen=True, slots=True)
 class Corner:
-    """A state of the loop with a capacitance across its port: `excess` is by how much it raises the reactance [1]."""
+    """A state of the loop with a capacitance across its port: `excess` is by how much it raises the reactance [1].
+
+    `in_place` tells that it is one that the loop may be in where it stands, which a measurement there speaks of.
+    """
 
     state: State
     excess: float
     internal: float
+    in_place: bool = True
 
     @property
     def reactance(self) -> float:

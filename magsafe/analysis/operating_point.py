@@ -9,6 +9,8 @@ from magsafe import words
 from magsafe.analysis.chain import VOLTAGE_ERROR, Chain, GroundCase, chain
 from magsafe.analysis.closed_form import SecondOpinion, second_opinion
 from magsafe.analysis.exposure import use_of
+from magsafe.analysis.feed_figures import feed_figures
+from magsafe.analysis.feeding import arriving as arriving_at
 from magsafe.analysis.figures import NO_HEIGHT, Figure, Figures, figures_of, unknown_figures
 from magsafe.analysis.flow import TUNING_SCAN, tuning_limit
 from magsafe.analysis.losses import conductivity
@@ -88,6 +90,8 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
     if made is None:
         figures = unknown_figures(line, frequency, reasons)
         return OperatingPoint(transmission, power, arriving, figures, reasons, limit, beyond)
+    arriving = arriving_at(design, made)
+    made = replace(made, power=arriving)
     warm, figures = warmth(made, design, use_of(transmission)), figures_of(made, design)
     free_gain = (figures.directivity_along_axis, figures.directivity_in_plane)
     reaching = sky(made)
@@ -97,14 +101,14 @@ def operating_point(design: Design, transmission: Transmission) -> OperatingPoin
         transmission=transmission,
         power=power,
         power_at_loop=arriving,
-        figures=replace(figures, conductor_temperature_rise=_rise(warm), **over_ground),
+        figures=replace(figures, conductor_temperature_rise=_rise(warm), **over_ground, **feed_figures(made, design)),
         tuning_limit=limit,
         bare_voltage=bare_voltage if tuned else None,
         bare_current=made.dangerous(made.current, "bare") * (1.0 + VOLTAGE_ERROR),
         typical=made.typical,
         ground_left_out=not made.around.ground_known,
         bound_ratio=made.bound_ratio() if tuned else UNKNOWN,
-        opinion=second_opinion(design, made) if tuned else None,
+        opinion=second_opinion(design, replace(made, measured=None)) if tuned else None,
         ground_cases=made.ground_cases(),
         field_error=made.voltage_error,
         chain=made,

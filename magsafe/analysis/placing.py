@@ -99,7 +99,7 @@ def _at(design: Design, chain: Chain, plane: Plane, heights: Sequence[float]) ->
 
 
 def _placing(chain: Chain, state: State, plane: Plane, height: float, as_designed: bool, sky: Array) -> Placing:
-    corner = Corner(state, 0.0, chain.internal)
-    total, power = chain.resistance("likely", corner), chain.power.likely or 0.0
+    corner = Corner(state, 0.0, chain.internal, in_place=as_designed)
+    total, power = chain.taken(corner), chain.power.likely or 0.0
     voltage = float(tuned_circuit.peak_voltage(power, total, corner.reactance)) * chain.overshoot
     return Placing(plane, height, as_designed, sky / total, voltage if chain.tuned else None)

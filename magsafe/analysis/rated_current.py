@@ -1,7 +1,7 @@
 """What a rating of amps, kVA or watts counts: its heat from which frequency up, and in which air."""
 
 from magsafe import words
-from magsafe.design.model import Capacitor, Design, Padding
+from magsafe.design.model import Capacitor, Design, Padding, SeriesCapacitor
 
 # In these the dielectric itself warms, and at the same amps the more the lower the frequency is.
 SOLID_KINDS = ("ceramic", "mica", "dielectric plate", "coaxial stub", "trombone")
@@ -9,12 +9,14 @@ SOLID_KINDS = ("ceramic", "mica", "dielectric plate", "coaxial stub", "trombone"
 RATED_AIR = 303.15  # K
 
 
-def uncounted_heat(part: Capacitor | Padding, frequency: float) -> str:
+def uncounted_heat(part: Capacitor | Padding | SeriesCapacitor, frequency: float) -> str:
     """Return why a rating of amps does not count what a part may take as heat at a frequency [Hz]; empty if it does.
 
     A part of unknown kind, as padding is, may be solid.
     """
-    name = "capacitor.rated_current" if isinstance(part, Capacitor) else "rated_current of the padding"
+    name = "capacitor.rated_current"
+    if not isinstance(part, Capacitor):
+        name = f"rated_current of the {'padding' if isinstance(part, Padding) else 'series capacitor'}"
     if part.rated_current is None:
         return f"{name} is not given"
     if isinstance(part, Capacitor) and part.kind not in SOLID_KINDS:
@@ -26,7 +28,7 @@ def uncounted_heat(part: Capacitor | Padding, frequency: float) -> str:
     return ""
 
 
-def rated_current(part: Capacitor | Padding, frequency: float) -> tuple[float, str]:
+def rated_current(part: Capacitor | Padding | SeriesCapacitor, frequency: float) -> tuple[float, str]:
     """Return the amps that a part may carry at a frequency [Hz], and in words what lowered them; empty if nothing did.
 
     Raises

@@ -153,14 +153,14 @@ def _delivered(chain: Chain, over: OverGround) -> Iterator[Array]:
     """Yield the power into the loop for 1 A into the conductor at the port [W], shape (soil,), at every corner."""
     for corner in chain.corners([State(over.flow, 0.0)]):
         for end in ("low", "high"):
-            yield over.radiated + chain.resistance(end, corner) / corner.growth
+            yield chain.resistance_over(over.radiated, end, corner) / corner.growth
 
 
 def _likely(chain: Chain, found: "Pattern") -> _Values:
     over = chain.around.over[0]
     whole = over.sky[0].sum()
     return _Values(
-        efficiency=whole / chain.resistance("likely", chain.likely),
+        efficiency=whole / chain.taken(chain.likely),
         gain=np.array(found.gain),
         elevation=np.array(found.elevation),
         above_60=over.sky[0, 2] / whole,
@@ -207,7 +207,7 @@ def pattern(chain: Chain) -> Pattern | None:
     over = chain.around.over
     if not over or not chain.around.ground_known:
         return None
-    made, into = _ground_pattern(chain), chain.resistance("likely", chain.likely)
+    made, into = _ground_pattern(chain), chain.taken(chain.likely)
     beyond = 0.5 * pi < CUT_ANGLES
     elevation = np.where(beyond, pi - CUT_ANGLES, CUT_ANGLES)
     cuts = tuple(

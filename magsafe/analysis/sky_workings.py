@@ -56,9 +56,9 @@ def _cases(chain: Chain) -> Iterator[_Case]:
     for over in chain.around.over:
         for corner in chain.corners([State(over.flow, 0.0)]):
             for end in ("low", "high"):
-                losses = chain.resistance(end, corner) / corner.growth
-                for soil, radiated in enumerate(over.radiated):
-                    yield _Case(over, soil, float(radiated), losses)
+                into = chain.resistance_over(over.radiated, end, corner) / corner.growth
+                for soil, (radiated, whole) in enumerate(zip(over.radiated, into, strict=True)):
+                    yield _Case(over, soil, float(radiated), float(whole - radiated))
 
 
 def _without_soil(chain: Chain) -> tuple[_Case, ...]:
@@ -79,7 +79,7 @@ def _likely(chain: Chain) -> _Case | None:
     if not chain.around.ground_known:
         return None
     over = chain.around.over[0]
-    losses = chain.resistance("likely", chain.likely) - chain.likely.radiated
+    losses = chain.taken(chain.likely) - chain.likely.radiated
     return _Case(over, 0, chain.likely.radiated, losses, likely=True)
 
 
@@ -229,7 +229,7 @@ def _gain(chain: Chain, _: Design, point: OperatingPoint) -> tuple[Term, ...]:
 
     # The likely case counts here by its own search, finer than that of the others.
     found = point.pattern
-    likely = 0.0 if found is None else found.gain * chain.resistance("likely", chain.likely) / (4.0 * pi)
+    likely = 0.0 if found is None else found.gain * chain.taken(chain.likely) / (4.0 * pi)
     made = _chosen(chain, lambda case: sent(case) / case.whole, soil_error(chain) + BETWEEN_DIRECTIONS)
     return made.term("U", "W/sr", sent), made.term("P", "W", lambda case: case.whole), made.off
 

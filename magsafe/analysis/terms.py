@@ -116,7 +116,8 @@ def parts(chain: Chain, columns: Columns) -> tuple[Term, ...]:
         "Rc": (chain.capacitor, *chain.padding),
     }
     radiated = term("Rr", "ohm", columns, lambda each: each.corner.radiated)
-    return (radiated, *(_group(letter, losses, columns) for letter, losses in groups.items()))
+    unexplained = term("Ru", "ohm", columns, lambda each: chain.unexplained(each.losses, each.corner))
+    return (radiated, *(_group(letter, losses, columns) for letter, losses in groups.items()), unexplained)
 
 
 def _group(letter: str, losses: Sequence[Loss], columns: Columns) -> Term:

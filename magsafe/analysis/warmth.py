@@ -243,7 +243,7 @@ def _heat(chain: Chain, design: Design) -> tuple[Spread, float]:
     def metre(end: str, others: str, corner: Corner, watts: float, factor: float) -> float:
         value: float = getattr(part, end)
         own = value * factor * corner.growth * corner.state.flow.largest**2
-        total = chain.resistance(others, corner) - part.at(others, corner) + part.at(end, corner)
+        total = chain.resistance_with(part.at(end, corner), part.at(others, corner), others, corner)
         return watts * own / total
 
     low = min((metre("low", "high", each, power.low or 0.0, crowded[0]) for each in chain.most), default=None)
@@ -253,7 +253,7 @@ def _heat(chain: Chain, design: Design) -> tuple[Spread, float]:
         for others in ("low", "bare")
     )
     error = 2.0 * VOLTAGE_ERROR
-    return _with_joints(chain, design, Spread(low, likely, high).widened(error, error), bare * (1.0 + error))
+    return _with_joints(chain, design, Spread.about(low, likely, high).widened(error, error), bare * (1.0 + error))
 
 
 def _with_joints(chain: Chain, design: Design, heat: Spread, bare: float) -> tuple[Spread, float]:

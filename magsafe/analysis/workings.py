@@ -14,6 +14,7 @@ from scipy.constants import c
 
 from magsafe.analysis import terms
 from magsafe.analysis.chain import REACTANCE_ERROR, RESISTANCE_ERROR, VOLTAGE_ERROR, Chain
+from magsafe.analysis.feed_workings import FEED_WORKINGS
 from magsafe.analysis.flow import inductance
 from magsafe.analysis.losses import Corner, Loss
 from magsafe.analysis.operating_point import OperatingPoint
@@ -111,6 +112,21 @@ def _total(chain: Chain, _: Design, __: OperatingPoint) -> tuple[Term, ...]:
     return *terms.parts(chain, columns), terms.stated_error(RESISTANCE_ERROR, ends=columns)
 
 
+def _unexplained(chain: Chain, _: Design, __: OperatingPoint) -> tuple[Term, ...]:
+    other = {"low": "high", "likely": "likely", "high": "low"}
+
+    def parts(each: Column) -> float:
+        return chain.resistance_of_parts(other[each.losses], each.corner)
+
+    columns = terms.own(
+        chain.likely,
+        chain.least,
+        chain.most,
+        lambda end, corner: chain.resistance(end, corner) - chain.resistance_of_parts(other[end], corner),
+    )
+    return terms.total(chain, columns), terms.term("S", "ohm", columns, parts)
+
+
 def _reactance(chain: Chain, _: Design, point: OperatingPoint) -> tuple[Term, ...]:
     low, likely, high = terms.own(chain.likely, chain.every, chain.every, lambda _, corner: corner.reactance)
     spread = point.figures.port_reactance.spread
@@ -202,11 +218,12 @@ def _dissipation(chain: Chain, _: Design, __: OperatingPoint) -> tuple[Term, ...
     def own(end: str, corner: Corner) -> float:
         return sum(part.at(end, corner) for part in parts)
 
-    def rest(end: str, corner: Corner) -> float:
-        return chain.resistance(end, corner) - own(end, corner)
+    def rest(end: str, others: str, corner: Corner) -> float:
+        mine = own(end, corner)
+        return chain.resistance_with(mine, own(others, corner), others, corner) - mine
 
     def share(end: str, others: str, corner: Corner) -> float:
-        return own(end, corner) / (own(end, corner) + rest(others, corner))
+        return own(end, corner) / (own(end, corner) + rest(end, others, corner))
 
     power = chain.power
     low = min(chain.most, key=lambda corner: share("low", "high", corner), default=None)
@@ -220,7 +237,7 @@ def _dissipation(chain: Chain, _: Design, __: OperatingPoint) -> tuple[Term, ...
     return (
         terms.power(columns),
         terms.term("r", "ohm", columns, lambda each: own(each.losses, each.corner)),
-        terms.term("R", "ohm", columns, lambda each: rest(others[each.losses], each.corner)),
+        terms.term("R", "ohm", columns, lambda each: rest(each.losses, others[each.losses], each.corner)),
         terms.stated_error(2.0 * VOLTAGE_ERROR, ends=columns),
     )
 
@@ -359,6 +376,7 @@ _WORKINGS: dict[str, Working] = {
     "conductor_resistance": _conductor,
     "joint_resistance": _joints,
     "capacitor_resistance": _capacitor,
+    "unexplained_resistance": _unexplained,
     "total_resistance": _total,
     "port_reactance": _reactance,
     "inductance": _inductance,
@@ -379,4 +397,5 @@ _WORKINGS: dict[str, Working] = {
     "swr_at_50_ohm": _terminal("swr_at_50_ohm"),
     "nearest_resonance": _nearest,
     **SKY_WORKINGS,
+    **FEED_WORKINGS,
 }

@@ -10,6 +10,7 @@ from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.rated_current import is_rated_for_heat
 from magsafe.analysis.rated_voltage import RATED_TO
 from magsafe.design import tables, warmth_tables
+from magsafe.design.as_built import standing
 from magsafe.design.implied import AT_THE_CAPACITOR
 from magsafe.design.model import Design, SoilConstants
 
@@ -17,6 +18,7 @@ from magsafe.design.model import Design, SoilConstants
 def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, ...]:
     """Return the assumptions behind a sheet, most weighty first."""
     found = (
+        *_measured(design, points),
         *_ground(design, points),
         *_losses(design),
         *_feed(design),
@@ -28,6 +30,26 @@ def assumptions(design: Design, points: Sequence[OperatingPoint]) -> tuple[str, 
         *_kept(design),
     )
     return tuple(dict.fromkeys(found))
+
+
+def _measured(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
+    """Yield which figures rest on a measurement, and which records in the file count for nothing."""
+    used = set()
+    for title, point in zip(design.titles, points, strict=True):
+        found = standing(design, point.transmission.frequency)
+        if found is None:
+            continue
+        used.add(id(found.record))
+        if point.chain is not None and point.chain.measured is not None:
+            yield (
+                f"{words.short(title)}: Q, total resistance, volts, amps, fields and efficiency rest on the Q measured "
+                f"on {words.short(found.record.date or '')}, as the loop stood that day; rain, salt, loose clamps and "
+                "things near it change it. For volts, amps and fields the upper end of its 95 % counts."
+            )
+    for record in design.measured:
+        if id(record) not in used:
+            where = "without a frequency" if record.frequency is None else f"at {words.frequency(record.frequency)}"
+            yield f"A record in [measured] {where} belongs to no transmission and counts for nothing."
 
 
 def _ground(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
@@ -201,8 +223,12 @@ def _feed(design: Design) -> Iterator[str]:
             "The loop is matched at its resonance. The capacitor's terminals are about 20 to 100 mm apart, and three "
             "conductor radii at least; a narrower gap's end faces belong to the capacitor."
         )
-    if design.feed.coupling == "small loop":
-        yield "The coupling loop's own size is not computed by this version."
+    if design.capacitor.kind != "none" and design.feed.coupling in ("small loop", "none stated"):
+        small = design.feed.small_loop
+        if small is None or small.wire is None:
+            yield "The coupling loop's wire is not stated: 4 mm is taken."
+        if small is None:
+            yield "Where the coupling loop lies is not stated: the middle of the loop is taken, in its plane."
 
 
 def _use(design: Design) -> Iterator[str]:

@@ -6,12 +6,11 @@ from magsafe import words
 from magsafe.analysis.capacitor_heat import heat_of
 from magsafe.analysis.capacitor_parts import CHANGE, PartUse, main_part
 from magsafe.analysis.exposure import use_of
-from magsafe.analysis.losses import Loss
 from magsafe.analysis.operating_point import OperatingPoint
 from magsafe.analysis.rated_current import beyond_rated_air, uncounted_heat
 from magsafe.checks.judge import Check, holds, in_proportion, judge, unproven
 from magsafe.checks.sheet import Finding
-from magsafe.design.model import Capacitor, Design, Padding
+from magsafe.design.model import Capacitor, Design, Padding, SeriesCapacitor
 from magsafe.spread import Spread
 
 CAPACITOR_HEAT = "capacitor.heat"  # id of the finding
@@ -34,14 +33,15 @@ def capacitor_heat(design: Design, point: OperatingPoint, current: Finding, reac
     if point.chain is None:
         return unproven(_HEAT, "; ".join(point.out_of_range))
     losses = (point.chain.capacitor,)
-    return heat_of_part(_HEAT, design, point, (design.capacitor, main_part(point), losses), (current, *reactive))
+    heats = heat_of(point.chain, losses), heat_of(point.chain, losses, "bare").high or 0.0
+    return heat_of_part(_HEAT, design, point, (design.capacitor, main_part(point), heats), (current, *reactive))
 
 
 def heat_of_part(
     check: Check,
     design: Design,
     point: OperatingPoint,
-    of: tuple[Capacitor | Padding, PartUse, tuple[Loss, ...]],
+    of: tuple[Capacitor | Padding | SeriesCapacitor, PartUse, tuple[Spread, float]],
     others: Sequence[Finding],
 ) -> Finding:
     """Hold the heat in one part against its watts, or tell which of its other ratings counts it.
@@ -52,21 +52,20 @@ def heat_of_part(
     ----------
     check : what is asked
     design, point : the design, and the transmission, which is computed
-    of : the part, what it sees, and its losses
+    of : the part, what it sees, and its heat, key-down: the spread, and its high end without credit for typical losses
     others : the finding about its current, and that about its reactive power if there is one
     """
-    (part, use, losses), made = of, point.chain
+    (part, use, (keyed, bare_keyed)), made = of, point.chain
     if made is None or use.missing:
         return unproven(check, use.missing or "; ".join(point.out_of_range), do=CHANGE if use.missing else None)
     keying = use_of(point.transmission)
     duty = max(keying.duty, keying.tune_up_power / keying.envelope)
-    keyed = heat_of(made, losses)
     value = keyed.scaled(duty)
     told = f"{words.amount(keyed.high or 0.0, 'W')} at worst, key-down"
     if duty < 1.0:
         told = f"{told}, {words.amount(value.high or 0.0, 'W')} averaged over an over"
     if part.rated_dissipation is not None:
-        bare = (heat_of(made, losses, "bare").high or 0.0) * duty
+        bare = bare_keyed * duty
         thin = dict.fromkeys(filter(None, (_guessed(part), use.thin_voltage, use.thin_current)))
         found = _by_watts(check, design, point, (value, bare), part.rated_dissipation, tuple(thin))
         said = f"{told}; {found.because}" if duty < 1.0 else found.because
@@ -96,7 +95,7 @@ def _by_watts(
     )
 
 
-def _guessed(part: Capacitor | Padding) -> str:
+def _guessed(part: Capacitor | Padding | SeriesCapacitor) -> str:
     """Return whether nothing that is stated bounds what a part loses, in words; empty where something does."""
     resistance = part.series_resistance if isinstance(part, Capacitor) else None
     if part.quality_factor is not None or resistance is not None:

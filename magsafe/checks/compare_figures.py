@@ -16,6 +16,9 @@ HIGHER_IS_WORSE = frozenset(
         "conductor_temperature_rise",
         "terminal_peak_voltage",
         "swr_at_50_ohm",
+        "series_capacitor_peak_voltage",
+        "series_capacitor_rms_current",
+        "swr_at_feed",
     }
 )
 LOWER_IS_WORSE = frozenset({"conductor_efficiency", "overall_efficiency", "half_power_bandwidth", "swr2_bandwidth"})

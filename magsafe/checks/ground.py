@@ -64,6 +64,8 @@ def _added(design: Design, point: OperatingPoint, chain: Chain) -> str:
 
 def _raised(chain: Chain) -> str:
     """Return by how much the ground at worst raises volts, amps and fields; empty where it does not."""
+    if chain.measured is not None:
+        return ""
     free = min(chain.resistance("low", corner) for corner in chain.free)
     least = min(chain.resistance("low", corner) for corner in chain.least)
     more = sqrt(free / least)

@@ -1,27 +1,22 @@
 """Does each padding part stand its own volts, amps and heat? Its kind is unknown, so it may be solid."""
 
 from collections.abc import Iterator
-from math import sqrt
 
 from magsafe import words
+from magsafe.analysis.capacitor_heat import heat_of
 from magsafe.analysis.capacitor_network import network
-from magsafe.analysis.capacitor_parts import CHANGE, PaddingUse, padding_parts
+from magsafe.analysis.capacitor_parts import padding_parts
 from magsafe.analysis.operating_point import OperatingPoint
-from magsafe.analysis.rated_current import beyond_rated_air, rated_current
-from magsafe.analysis.rated_voltage import altitude_derating
 from magsafe.checks.capacitor_heat import heat_of_part
-from magsafe.checks.judge import Check, judge, unproven
+from magsafe.checks.judge import Check, unproven
+from magsafe.checks.rated_part import current_of_part, voltage_of_part
 from magsafe.checks.reactive_power import against_reactive_power
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Design, Padding
 
 _PADDING, _HEAT = "capacitor.padding.", ".heat"  # how the ids of findings begin, and how those about heat end
 _AS_STATED = "the padding's rating as stated"
-_LOOK_VOLTS = (
-    "look in the part's data sheet for its volts at radio frequency, and state rated_voltage and rated_voltage_kind; "
-    "the volts printed on a body are often a direct or a test voltage"
-)
-_LOOK_AMPS = "look in the part's data sheet for its amps at this frequency, and state rated_current"
+_CALLED = "the padding"
 
 
 def padding(design: Design, point: OperatingPoint) -> Iterator[Finding]:
@@ -37,15 +32,16 @@ def padding(design: Design, point: OperatingPoint) -> Iterator[Finding]:
         return
     for found, loss in zip(padding_parts(point), point.chain.padding, strict=True):
         part, use, name = found.part, found.use, names[id(found.part)]
-        current = _current(design, point, found, _amps(name, part))
+        current = current_of_part(_amps(name, part), design, point, (part, use, found.heat), _CALLED)
         powers = []
         if part.rated_reactive_power is not None:
             check = _reactive(name, part)
             powers = [against_reactive_power(check, design, point, use, part.rated_reactive_power)]
-        yield _voltage(design, point, found, _volts(name, part))
+        yield voltage_of_part(_volts(name, part), design, point, (part, use), _CALLED)
         yield current
         yield from powers
-        yield heat_of_part(_warmth(name, part), design, point, (part, use, (loss,)), (current, *powers))
+        heats = heat_of(point.chain, (loss,)), heat_of(point.chain, (loss,), "bare").high or 0.0
+        yield heat_of_part(_warmth(name, part), design, point, (part, use, heats), (current, *powers))
 
 
 def padding_names(design: Design) -> dict[int, str]:
@@ -111,58 +107,3 @@ def _warmth(name: str, part: Padding) -> Check:
         "the padding's dissipation rating as stated; the losses as listed",
         "W",
     )
-
-
-def _voltage(design: Design, point: OperatingPoint, found: PaddingUse, check: Check) -> Finding:
-    part, use = found.part, found.use
-    if missing := use.missing or _not_rated(part, use.bare_voltage or use.voltage.high):
-        return unproven(check, missing, use.voltage, CHANGE if use.missing else _LOOK_VOLTS)
-    limit = (part.rated_voltage or 0.0) * (sqrt(2.0) if part.rated_voltage_kind == "RMS RF" else 1.0)
-    thinner = altitude_derating(design)
-    lowered = "" if thinner is None else f"{thinner.factor:.3g} of it is taken in {thinner.name} ({thinner.evidence})"
-    return judge(
-        check,
-        use.voltage,
-        limit if thinner is None else limit * thinner.factor,
-        design.margins.voltage,
-        bare_end=use.bare_voltage,
-        power=point.power,
-        thin="; ".join(filter(None, (lowered, use.thin_voltage))),
-        provenance="stated in the design",
-    )
-
-
-def _not_rated(part: Padding, crest: float | None) -> str:
-    if part.rated_voltage is None:
-        return "rated_voltage of the padding is not given"
-    kind = part.rated_voltage_kind
-    if kind is None:
-        as_peak = ""
-        if crest:
-            as_peak = f"; as peak RF it would be {part.rated_voltage / crest:.3g} times the volts at worst"
-        return f"rated_voltage_kind of the padding is not given: the rating may be of peak RF, RMS RF or DC{as_peak}"
-    if kind.startswith("DC"):
-        return f"the rating is a {kind} voltage; of padding of unknown kind that tells nothing at radio frequency"
-    return ""
-
-
-def _current(design: Design, point: OperatingPoint, found: PaddingUse, check: Check) -> Finding:
-    part, use = found.part, found.use
-    heat = found.heat.high
-    warm = "" if heat is None else f"; it turns at most {words.amount(heat, 'W')} into heat, key-down"
-    if part.rated_current is None or use.missing:
-        missing = use.missing or "rated_current of the padding is not given"
-        return unproven(check, f"{missing}{warm}", use.current, CHANGE if use.missing else _LOOK_AMPS)
-    limit, lowered = rated_current(part, point.transmission.frequency)
-    above = ", lowered above its frequency by common practice" if lowered else ""
-    made = judge(
-        check,
-        use.current,
-        limit,
-        design.margins.current,
-        bare_end=use.bare_current,
-        power=point.power,
-        thin="; ".join(filter(None, (lowered, beyond_rated_air(design), use.thin_current))),
-        provenance=f"stated in the design{above}",
-    )
-    return made.model_copy(update={"because": f"{made.because}{warm}"})

@@ -9,6 +9,7 @@ from magsafe.analysis.exposure import use_of
 from magsafe.analysis.figures import Figure
 from magsafe.analysis.operating_point import OperatingPoint, operating_points
 from magsafe.checks import capacitor, loop
+from magsafe.checks.as_built import as_built
 from magsafe.checks.assumptions import assumptions
 from magsafe.checks.capacitor_heat import capacitor_heat
 from magsafe.checks.cautions import cautions
@@ -17,12 +18,14 @@ from magsafe.checks.corona import corona
 from magsafe.checks.deratings import deratings
 from magsafe.checks.exemption import exemptions
 from magsafe.checks.exposure import exposure, no_rules
+from magsafe.checks.feeding import coupling_loop, feeding
 from magsafe.checks.gap import gap
 from magsafe.checks.ground import ground
 from magsafe.checks.heat import heat
 from magsafe.checks.later import later
 from magsafe.checks.line_capacitor import sizes
 from magsafe.checks.measure import measure_first
+from magsafe.checks.measurement import measurement
 from magsafe.checks.padding import padding
 from magsafe.checks.probe import probes
 from magsafe.checks.reactive_power import reactive_power
@@ -67,6 +70,7 @@ def check(design: Design, on: date | None = None, points: Sequence[OperatingPoin
         power_ceiling=least([record.power_ceiling for record in records]),
         operating_points=records,
         sessions=worked,
+        coupling_loop=coupling_loop(design, points),
         measure_first=measure_first(design, points),
         deratings=deratings(design, points),
         cautions=cautions(points, tuned=design.capacitor.kind != "none", findings=everything),
@@ -84,13 +88,15 @@ def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Fin
     has_capacitor = design.capacitor.kind != "none"
     tuned = _tuned(design, point) if has_capacitor else ()
     resonant = (loop.bandwidth(point), loop.q_bound(point))
-    agreed, grounded = loop.methods_agree(point), ground(design, point)
+    agreed, grounded, measured = loop.methods_agree(point), ground(design, point), as_built(design, point)
     findings = (
         *tuned,
         loop.size(design, point),
         *([agreed] if agreed else ()),
         *([grounded] if grounded else ()),
+        *([measured] if measured else ()),
         *(resonant if has_capacitor else ()),
+        *feeding(design, point),
         *heat(design, point),
         corona(design, point),
         *exposed,
@@ -112,6 +118,7 @@ def _record(index: int, view: View, summed: Sequence[Finding], shared: tuple[Fin
         exemptions=exemptions(view),
         pattern=pattern_record(design, point),
         placings=placing_records(design, point),
+        measurement=measurement(design, point),
     )
 
 

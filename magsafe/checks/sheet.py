@@ -356,10 +356,29 @@ class PlacingRecord(Record):
     capacitor_peak_voltage: float | None
 
 
+class MeasurementRecord(Record):
+    """The measured Q that a transmission rests on, beside the Q that its parts make.
+
+    `unloaded_q` is as it was read at `resonance` [Hz], `carried_q` what it comes to at the transmission's frequency, as
+    `computed_q` is. `coupling` is the load that the line put on the loop over the loop's own [1], null where it was not
+    told. `points` are frequency [Hz], real and imaginary part of the reflection at the loop's own terminals, 1 far off.
+    """
+
+    date: str
+    by: str | None
+    resonance: float
+    unloaded_q: Value
+    carried_q: Value
+    computed_q: Value
+    coupling: Value | None
+    points: tuple[tuple[float, float, float], ...] = ()
+
+
 class OperatingPointRecord(Record):
     """One transmission: its figures, its findings, its ceiling, people; where its power goes, and what height does.
 
-    `pattern` is null and `placings` empty where the ground or the loop's height is not stated.
+    `pattern` is null and `placings` empty where the ground or the loop's height is not stated; `measurement` is null
+    where no measured Q counts.
     """
 
     name: str
@@ -375,6 +394,7 @@ class OperatingPointRecord(Record):
     exemptions: tuple[ExemptionRecord, ...] = ()
     pattern: PatternRecord | None = None
     placings: tuple[PlacingRecord, ...] = ()
+    measurement: MeasurementRecord | None = None
 
 
 class DeratingRecord(Record):
@@ -385,6 +405,36 @@ class DeratingRecord(Record):
     source: str
     evidence: str
     applies_to: str
+
+
+class CouplingRecord(Record):
+    """What one coupling loop does at one transmission.
+
+    `matching_diameter` is that of the one which would match there [m]; `coefficient` the load that the line puts on the
+    loop over the loop's own resistance [1], 1 where it matches; `swr` the lowest that retuning reaches; `offset` how
+    far that lies above the loop's own resonance [Hz].
+    """
+
+    name: str
+    matching_diameter: Value
+    coefficient: Value
+    swr: Value
+    offset: float
+
+
+class CouplingLoopRecord(Record):
+    """The coupling loop as `stated`, or else that whose worst SWR over the transmissions is least; sizes in metres.
+
+    `share_of_loop` is its diameter over that of a circle with the loop's mean radius [1].
+    """
+
+    diameter: float
+    stated: bool
+    wire: float
+    position: str
+    clearance: float | None
+    share_of_loop: float
+    transmissions: tuple[CouplingRecord, ...]
 
 
 class Sheet(Record):
@@ -401,6 +451,7 @@ class Sheet(Record):
     power_ceiling: PowerCeiling
     operating_points: tuple[OperatingPointRecord, ...]
     sessions: tuple[SessionRecord, ...] = ()
+    coupling_loop: CouplingLoopRecord | None = None
     measure_first: str | None = None
     deratings: tuple[DeratingRecord, ...] = ()
     cautions: tuple[str, ...]

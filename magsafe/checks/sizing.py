@@ -69,7 +69,8 @@ def sizing(design: Design, power: float | None = None, on: date | None = None) -
     power : the envelope power on every transmission [W]; None for the design's own
     on : the date on the sheet; today where it is not given
     """
-    used = design if power is None else at_power(design, power)
+    # Another capacitor makes another Q, so what was measured with this one sizes none.
+    used = (design if power is None else at_power(design, power)).model_copy(update={"measured": []})
     origin = design.origin
     blank = CapacitorSheet(
         magsafe=__version__,
@@ -103,9 +104,19 @@ def sizing(design: Design, power: float | None = None, on: date | None = None) -
             "tuning": _tuning(used, points),
             "findings": found,
             "shared_findings": shared,
-            "notes": _notes(used, uses),
+            "notes": (*_notes(used, uses), *_unmeasured(design)),
             "cautions": _cautions(sheet),
         }
+    )
+
+
+def _unmeasured(design: Design) -> tuple[str, ...]:
+    """Return that a measured Q counts for nothing here; empty where the design holds none."""
+    if not design.measured:
+        return ()
+    return (
+        "The Q in [measured] is that of the loop with the capacitor that it has; a better one has more, and more "
+        "volts. All this is sized by the parts alone; magsafe check counts the measured Q.",
     )
 
 

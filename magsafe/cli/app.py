@@ -5,7 +5,7 @@ from collections.abc import Sequence
 
 import typer
 
-from magsafe.cli import capacitor, check, draft, explain, keepout, logsheet, recheck, schema, tables
+from magsafe.cli import capacitor, check, draft, explain, keepout, logsheet, measured, recheck, schema, tables
 
 app = typer.Typer(
     name="magsafe",
@@ -21,6 +21,7 @@ app.command("capacitor")(capacitor.capacitor)
 app.command("keepout")(keepout.keepout)
 app.command("logsheet")(logsheet.logsheet)
 app.command("recheck")(recheck.recheck)
+app.command("measured")(measured.measured)
 app.command("draft")(draft.draft)
 app.command("rules")(tables.rules)
 app.command("materials")(tables.materials)

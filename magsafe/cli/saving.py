@@ -59,6 +59,8 @@ def save(option: str, path: Path, data: bytes, *, replace: bool) -> None:
             file.flush()
             os.fsync(file.fileno())
         if replace:
+            with suppress(FileNotFoundError):
+                aside.chmod(path.stat().st_mode & 0o7777)
             aside.replace(path)
         else:
             _put_where_nothing_is(aside, path)

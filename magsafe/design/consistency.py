@@ -9,6 +9,7 @@ from collections.abc import Callable, Iterator
 from pydantic import ValidationError
 
 from magsafe.design import shape
+from magsafe.design.feed_consistency import feed_complaints
 from magsafe.design.model import KINDS, Loop
 from magsafe.design.people_consistency import people_complaints
 from magsafe.design.quantities import show
@@ -65,6 +66,7 @@ def complaints(tree: Tree) -> Iterator[Complaint]:
     )
     for rule in rules:
         yield from rule(tree)
+    yield from feed_complaints(tree)
     yield from people_complaints(tree)
 
 

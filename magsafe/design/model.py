@@ -119,6 +119,8 @@ Loss = Annotated[
     UncertainQuantity(DECIBEL, 0.0, 20.0, '{ low = "0.1 dB", likely = "0.3 dB", high = "0.5 dB" }'),
 ]
 QualityFactor = Annotated[Uncertain, UncertainQuantity(None, 5.0, 1e5, "{ low = 500, likely = 1000, high = 3000 }")]
+Coupling = Annotated[Uncertain, UncertainQuantity(None, 1e-3, 1e3, "{ low = 0.8, likely = 0.9, high = 1.0 }")]
+Reflection = Annotated[float, Field(ge=-1.5, le=1.5)]
 
 
 CapacitorKind = Literal[
@@ -275,11 +277,49 @@ class Tuning(Block):
     steps_per_range: Annotated[int, Field(ge=2, le=10_000_000)] | None = None
 
 
+class SmallLoop(Block):
+    """The coupling loop: its diameter to the middle of its conductor, which is round, and where it lies.
+
+    With a `clearance` between the surfaces of both conductors it lies inside the loop opposite the capacitor, else in
+    the loop's middle.
+    """
+
+    diameter: Annotated[float, Quantity(LENGTH, 5e-3, 50.0)] | None = None
+    wire: ConductorSize | None = None
+    position: Literal["centred", "opposite the capacitor"] | None = None
+    clearance: Annotated[float, Quantity(LENGTH, 0.0, 10.0)] | None = None
+
+    @property
+    def lies(self) -> str:
+        """Where it lies, in words."""
+        return "centred" if self.clearance is None else "opposite the capacitor"
+
+
+class SeriesCapacitor(Block):
+    """The small capacitor of a match, between line and loop; `balanced`: each of two, one in either lead."""
+
+    capacitance: Capacitance | None = None
+    balanced: bool = False
+    rated_voltage: Voltage | None = None
+    rated_voltage_kind: Literal["peak RF", "RMS RF", "DC working", "DC test"] | None = None
+    rated_current: Current | None = None
+    rated_current_at: Frequency | None = None
+    rated_reactive_power: ReactivePower | None = None
+    rated_dissipation: Dissipation | None = None
+    quality_factor: QualityFactor | None = None
+
+
 class Feed(Block):
-    """How the power comes to the loop."""
+    """How the power comes to the loop: the line, and what matches the loop to it."""
 
     line_loss: Loss | None = None
+    line_impedance: Annotated[float, Quantity(RESISTANCE, 10.0, 1000.0)] = 50.0
     coupling: Literal["small loop", "capacitors", "direct", "none stated"] = "none stated"
+    small_loop: SmallLoop | None = None
+    series_capacitor: SeriesCapacitor | None = None
+    match: Literal["none", "quarter-wave section", "2:1 transformer", "4:1 transformer"] | None = None
+    section_impedance: Annotated[float, Quantity(RESISTANCE, 10.0, 1000.0)] | None = None
+    velocity_factor: Annotated[float, Field(gt=0.3, le=1.0)] | None = None
 
 
 class Over(Block):
@@ -415,14 +455,29 @@ class Margins(Block):
         return float(10.0 ** (self.overshoot / 20.0))
 
 
+def _as_tuple(value: Any) -> Any:
+    return tuple(value) if isinstance(value, list) else value
+
+
 class Measured(Block):
-    """What an instrument said of the loop as built, at one frequency."""
+    """What an instrument said of the loop as built, at one resonance; `magsafe measured --save` writes it.
+
+    `unloaded_q` is a 95 % interval about the likely value, `coupling` the load that the feed puts on the loop over the
+    loop's own. `design` tells which loop was measured (`as_built.identity`); `points` are frequency, real and imaginary
+    part of the reflection at the loop's own terminals, for a picture.
+    """
 
     frequency: Frequency | None = None
     unloaded_q: QualityFactor | None = None
+    coupling: Coupling | None = None
+    by: Literal["sweep", "points of one SWR", "half-power points"] | None = None
     date: Name | None = None
     centre_height: Annotated[float, Quantity(LENGTH, 0.0, 500.0)] | None = None
     ground: Name | None = None
+    design: Name | None = None
+    points: Annotated[
+        list[Annotated[tuple[Frequency, Reflection, Reflection], BeforeValidator(_as_tuple)]], Field(max_length=201)
+    ] = []
 
 
 def _as_list(value: Any) -> Any:

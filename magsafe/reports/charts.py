@@ -32,8 +32,8 @@ _RATIOS = (1.0, 2.0, 3.0, 5.0, 10.0)
 _INK, _GREY = "#000000", "#999999"
 
 
-class _Chart:
-    """A picture that grows by what is drawn in it."""
+class Chart:
+    """A picture that grows by what is drawn in it; lengths in millimetres from its top left."""
 
     def __init__(self, axes: "Axes") -> None:
         self.axes = axes
@@ -60,11 +60,11 @@ class _Chart:
         )  # fmt: skip
 
 
-def _chart(height: float, title: str, about: str, draw: Callable[[_Chart], None]) -> str:
+def _chart(height: float, title: str, about: str, draw: Callable[[Chart], None]) -> str:
     """Return what is drawn in a picture of a height [mm] as SVG with its words."""
     with plotting.own_settings():
         figure, axes = plotting.picture_of(WIDTH, height)
-        draw(_Chart(axes))
+        draw(Chart(axes))
         return plotting.as_svg(figure, title, about)
 
 
@@ -122,7 +122,7 @@ def _over_the_line(rung: Rung) -> str:
     return f"{name}{'' if name == _label(rung) else '...'}{tail}"
 
 
-def _draw_ladder(chart: _Chart, made: Ladder, shown: Sequence[Rung]) -> None:
+def _draw_ladder(chart: Chart, made: Ladder, shown: Sequence[Rung]) -> None:
     known = [made.planned, *(p for each in shown for p in (each.at_margin, each.at_limit) if p)]
     least, most = min(known) / 1.4, max(known) * 1.4
     wide = WIDTH - 2.0 * _EDGE
@@ -188,7 +188,7 @@ def swr_picture(made: SwrCurve, name: str) -> Picture:
     )
 
 
-def _draw_swr(chart: _Chart, made: SwrCurve) -> None:
+def _draw_swr(chart: Chart, made: SwrCurve) -> None:
     left, right, top, bottom = _SWR_LEFT, WIDTH - _EDGE, _EDGE + 1.0, _SWR_HEIGHT - _FOOT
     reach = float(made.offset[-1])
     middle, scale = 0.5 * (left + right), 0.5 * (right - left) / reach

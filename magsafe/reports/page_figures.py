@@ -22,8 +22,18 @@ def design_as_given(sheet: Sheet) -> Iterator[Block]:
     """Yield the design in its own words."""
     yield Heading("The design as given")
     tables = tomllib.loads(sheet.design.text)
-    rows = tuple(row for name, value in tables.items() if name not in _NOT_SHOWN for row in _given(name, value))
+    shown = {name: _counted(value) if name == "measured" else value for name, value in tables.items()}
+    rows = tuple(row for name, value in shown.items() if name not in _NOT_SHOWN for row in _given(name, value))
     yield Table(f"{words.short(sheet.design.name, 60)}, in its own words", ("part", "as given"), rows, (0.2, 0.8))
+
+
+def _counted(value: Any) -> Any:
+    """Return records of measurements with the number of their points, which a picture shows."""
+    if isinstance(value, list):
+        return [_counted(each) for each in value]
+    if isinstance(value, dict) and isinstance(value.get("points"), list):
+        return value | {"points": f"{len(value['points'])} of the sweep"}
+    return value
 
 
 def _given(name: str, value: Any) -> Iterator[tuple[str, str]]:
@@ -147,6 +157,6 @@ def methods(points: Sequence[OperatingPointRecord]) -> Iterator[Block]:
     )
     sources = list(dict.fromkeys(source for _, _, source in found))
     told = (f"{label}: {method} [{sources.index(source) + 1}]." for label, method, source in found)
-    yield Paragraph("How each figure was found, and its source", "strong")
+    yield Heading("How each figure was found, and its source", 3)
     yield Paragraph(" ".join(told), "small")
     yield Paragraph(" ".join(f"[{number}] {source}." for number, source in enumerate(sources, 1)), "small")

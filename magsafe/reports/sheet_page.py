@@ -13,6 +13,7 @@ from magsafe.reports import deratings, sky, telling
 from magsafe.reports.charts import ladder_picture, swr_picture
 from magsafe.reports.elevation import elevation_figure
 from magsafe.reports.page import Block, Columns, Heading, Items, Page, Paragraph, Picture, Table
+from magsafe.reports.page_feed import feeding, measurement
 from magsafe.reports.page_figures import design_as_given, figures, methods
 from magsafe.reports.page_findings import findings, provenance
 from magsafe.reports.page_front import front, title
@@ -78,6 +79,8 @@ def _loop(sheet: Sheet) -> Iterator[Block]:
         yield Columns(((*told, *_placings(points[0])), charts))
     else:
         yield from told
+    yield from feeding(sheet)
+    yield from (block for point in points[:MOST_CHARTS] for block in measurement(point))
     yield from methods(points)
     if len(points) > 1:
         for index, point in enumerate(points[:MOST_CHARTS]):

@@ -133,12 +133,16 @@ def use(point: OperatingPointRecord | KeepoutPoint) -> str:
 
 @dataclass(frozen=True, slots=True)
 class Row:
-    """A row of the figures' table: its figure, how it is called, its SI unit and the unit shown."""
+    """A row of the figures' table: its figure, how it is called, its SI unit and the unit shown.
+
+    One that is `told_if_known` is left out where no transmission has its figure.
+    """
 
     figure: str
     label: str
     si: str
     unit: str
+    told_if_known: bool = False
 
 
 def rows(points: Sequence[OperatingPointRecord]) -> tuple[Row, ...]:
@@ -146,7 +150,12 @@ def rows(points: Sequence[OperatingPointRecord]) -> tuple[Row, ...]:
     terminals = [point.figures.get("terminal_resistance") for point in points]
     full_wave = any(figure is not None and figure.likely is not None for figure in terminals)
     known = set.intersection(*(set(point.figures) for point in points))
-    return tuple(row for row in (FULL_WAVE_ROWS if full_wave else ROWS) if row.figure in known)
+    held = {name for point in points for name, figure in point.figures.items() if figure.likely is not None}
+    return tuple(
+        row
+        for row in (FULL_WAVE_ROWS if full_wave else ROWS)
+        if row.figure in known and (row.figure in held or not row.told_if_known)
+    )
 
 
 _SKY_ROWS = (
@@ -171,6 +180,7 @@ ROWS = (
     Row("joint_resistance", "Joint resistance, mΩ", "ohm", "mΩ"),
     Row("capacitor_resistance", "Capacitor resistance, mΩ", "ohm", "mΩ"),
     Row("ground_resistance", "Ground resistance, mΩ", "ohm", "mΩ"),
+    Row("unexplained_resistance", "Unexplained, mΩ", "ohm", "mΩ", told_if_known=True),
     Row("total_resistance", "Total resistance, mΩ", "ohm", "mΩ"),
     Row("port_reactance", "Port reactance, Ω", "ohm", "Ω"),
     Row("inductance", "Inductance, µH", "H", "µH"),
@@ -185,6 +195,12 @@ ROWS = (
     Row("largest_current", "Largest current, A RMS", "A", "A"),
     Row("capacitor_dissipation", "Heat in the capacitor, W", "W", "W"),
     Row("conductor_temperature_rise", "Conductor, rise in K", "K", "K"),
+    Row("coupling_loop_diameter", "Coupling loop, mm", "m", "mm", told_if_known=True),
+    Row("match_parallel_capacitance", "Capacitor across, pF", "F", "pF", told_if_known=True),
+    Row("series_capacitance", "Series capacitor, pF", "F", "pF", told_if_known=True),
+    Row("series_capacitor_peak_voltage", "Series capacitor, kV peak", "V", "kV", told_if_known=True),
+    Row("series_capacitor_rms_current", "Series capacitor, A RMS", "A", "A", told_if_known=True),
+    Row("swr_at_feed", "SWR at the loop", "1", "", told_if_known=True),
 )
 
 FULL_WAVE_ROWS = (
@@ -197,6 +213,12 @@ FULL_WAVE_ROWS = (
     Row("terminal_reactance", "Terminal reactance, Ω", "ohm", "Ω"),
     Row("terminal_peak_voltage", "Terminal voltage, kV peak", "V", "kV"),
     Row("swr_at_50_ohm", "SWR at 50 Ω", "1", ""),
+    Row("swr_through_quarter_wave", "SWR, quarter-wave section", "1", "", told_if_known=True),
+    Row("quarter_wave_impedance", "Section that matches, Ω", "ohm", "Ω", told_if_known=True),
+    Row("quarter_wave_length", "Quarter wave, m", "m", "m", told_if_known=True),
+    Row("swr_through_2_to_1", "SWR, 2:1 transformer", "1", "", told_if_known=True),
+    Row("swr_through_4_to_1", "SWR, 4:1 transformer", "1", "", told_if_known=True),
+    Row("swr_at_feed", "SWR, the match as stated", "1", "", told_if_known=True),
     Row("nearest_resonance", "Nearest resonance, MHz", "Hz", "MHz"),
     *_SKY_ROWS,
     Row("largest_current", "Largest current, A RMS", "A", "A"),

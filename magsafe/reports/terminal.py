@@ -23,7 +23,7 @@ from magsafe.checks.sheet import (
     Sheet,
     Verdict,
 )
-from magsafe.reports import deratings, exemption, people, sessions, sky, telling
+from magsafe.reports import deratings, exemption, feed, people, sessions, sky, telling
 from magsafe.reports.marks import MARKS
 from magsafe.spread import Spread
 
@@ -87,6 +87,7 @@ def render(sheet: Sheet, width: int, *, plain: bool) -> RenderableType:
         *say.top(sheet),
         *say.in_the_way(sheet),
         *say.figures(sheet.operating_points),
+        *say.feeding(sheet),
         *say.patterns(sheet.operating_points),
         *say.placings(sheet.operating_points),
         *say.derations(sheet.deratings),
@@ -306,6 +307,17 @@ class Speaker:
         likely = "?" if spread.likely is None else words.number(spread.likely, row.si, row.unit)
         ends = words.ends(spread, row.si, row.unit).strip("()").replace("at most", "up to").replace("at least", "from")
         return self.letters(f"{likely}\n{ends}" if ends else likely)
+
+    def feeding(self, sheet: Sheet) -> Iterator[RenderableType]:
+        """Yield what matches the loop to its line; nothing where there is nothing to say."""
+        told = feed.feed(sheet)
+        if told is None:
+            return
+        yield from self.heading(feed.HEADING)
+        yield from (self.paragraph(sentence) for sentence in told.sentences)
+        if told.rows:
+            yield self.grid(told.head, told.rows, feed.LABEL)
+        yield from (self.paragraph(note, "dim") for note in told.notes)
 
     def patterns(self, points: Sequence[OperatingPointRecord]) -> Iterator[RenderableType]:
         """Yield where the power of each transmission goes; nothing where that is not known."""

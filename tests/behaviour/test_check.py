@@ -310,7 +310,7 @@ def test_credit_for_typical_values_that_alone_keeps_the_limit_is_told() -> None:
 
 
 def test_matches_and_hands_that_are_not_computed_are_unproven(design: MakeDesign) -> None:
-    assert finding(sheet_of(design, feed={"coupling": "capacitors"}), "feed.coupling").verdict == "unproven"
+    assert finding(sheet_of(design, feed={"coupling": "direct"}), "feed.coupling").verdict == "unproven"
 
 
 @pytest.mark.parametrize("plane", ["vertical", "horizontal"])

@@ -37,7 +37,7 @@ CAPACITOR = [
     *("vacuum variable", "top", "variable", "12 pF", "500 pF", ""),
     *("10 kV", "peak RF", "40 A", "30 MHz", "", "unknown", "sealed"),
 ]
-FEED = ["motor", "unknown", "0.2 dB, 0.3 dB, 0.5 dB", "small loop"]
+FEED = ["motor", "unknown", "0.2 dB, 0.3 dB, 0.5 dB", "small loop", "5 mm", "unknown", "30 mm"]
 SITE = ["5 m", "25 degC", "8 m", "", "icnirp-2020"]
 PLACES = [
     *("yes", "operator's chair", "trained", "", "6 m", "0 m", "sitting", "0 m"),
@@ -135,6 +135,14 @@ def test_nearly_every_key_of_the_file_is_asked_for() -> None:
         "loop.conductor.temperature",  # the default of the contract
         "loop.conductor.strip_lies",  # changes nothing that is computed
         "capacitor.series_resistance",  # a quality factor says the same
+        "feed.line_impedance",  # nearly always the 50 ohm of the default
+        "feed.section_impedance",
+        "feed.velocity_factor",
+        "feed.small_loop.position",  # told by the clearance
+        "feed.series_capacitor.balanced",
+        "feed.series_capacitor.rated_current_at",
+        "feed.series_capacitor.rated_reactive_power",
+        "feed.series_capacitor.rated_dissipation",
         "site.sessions",  # told by whether all is worked in turn
         "site.over_the_body",
         "site.ground.conductivity",  # a soil of the table is asked for

@@ -375,7 +375,8 @@ def test_every_surface_says_the_same(quay: Case, attacked: Case) -> None:
         told = [bare(each) for each in texts(case.page.blocks) if each]
         seen = bare("".join(case.tree().itertext()))
         marked = bare(shown(case.markdown))
-        printed = bare(text_of(as_pdf(case.page)))
+        # A paragraph that two sheets of paper share has the line at the foot of the first one in its midst.
+        printed = re.sub(rf"{re.escape(bare(case.page.footer))}\d+/\d+", "", bare(text_of(as_pdf(case.page))))
         for each in told:
             assert each in seen
             assert each in marked

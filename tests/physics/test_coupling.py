@@ -12,9 +12,10 @@ from scipy.optimize import brentq, minimize_scalar
 from thin_wires import rectangle, solved, source
 from windings import cut
 
-from magsafe.physics import conductor, coupling, geometry, inductance, near_field, thin_wire
+from magsafe.physics import conductor, coupling, coupling_loop, geometry, inductance, near_field, thin_wire
 from magsafe.physics.arrays import Array
-from magsafe.physics.coupling import Circuit, Place, beside, centred, matching_size, mutual_inductance
+from magsafe.physics.coupling import mutual_inductance
+from magsafe.physics.coupling_loop import Circuit, Place, beside, centred, matching_size
 from magsafe.physics.geometry import Wire
 from magsafe.physics.near_field import SegmentCurrents
 from magsafe.physics.thin_wire import Potentials
@@ -311,12 +312,12 @@ def test_a_coupling_loop_in_a_polygon_keeps_clear_of_its_sides(corners: Array) -
     room = place.largest(circuit.currents, 0.002)
     sizes = np.linspace(0.05, 2.0 * room, 12)
     angle = 2.0 * pi / 720 * np.arange(720)
-    for each in coupling.coupled(circuit, place, 0.002, sizes):
+    for each in coupling_loop.coupled(circuit, place, 0.002, sizes):
         points = each.centre + 0.5 * each.diameter * np.stack([np.cos(angle), np.sin(angle), 0.0 * angle], axis=1)
         nearest = float(near_field.distance_to_axis(points, circuit.currents).min()) - 0.01
         assert nearest == pytest.approx(0.02, rel=0.02)
     with pytest.raises(ValueError, match="has no room"):
-        coupling.coupled(circuit, place, 0.002, np.array([2.01 * room]))
+        coupling_loop.coupled(circuit, place, 0.002, np.array([2.01 * room]))
     matched = matching_size(circuit, place, 0.002).matched
     assert matched is not None
     assert matched.coefficient == pytest.approx(1.0, rel=1e-6)
@@ -339,7 +340,7 @@ def test_where_nothing_matches_it_says_how_much_couples() -> None:
     assert found.strongest.coefficient < 1.0
     assert found.largest.diameter == pytest.approx(1.0 - 2.0 * 0.011 - 2.0 * 0.002 - 2.0 * 0.03, abs=0.003)
     assert found.strongest.standing_wave_ratio == pytest.approx(1.0 / found.strongest.coefficient, rel=1e-9)
-    tried = coupling.coupled(poor, inside(wire, 0.03), 0.002, np.linspace(0.05, found.largest.diameter, 30))
+    tried = coupling_loop.coupled(poor, inside(wire, 0.03), 0.002, np.linspace(0.05, found.largest.diameter, 30))
     assert max(each.coefficient for each in tried) <= found.strongest.coefficient * 1.001
 
 
@@ -364,7 +365,7 @@ def test_the_smallest_of_two_that_match_is_taken() -> None:
     place = inside(wire, 0.03)
     matched = matching_size(circuit, place, 0.002).matched
     assert matched is not None
-    smaller = coupling.coupled(circuit, place, 0.002, np.linspace(0.041, 0.999 * matched.diameter, 40))
+    smaller = coupling_loop.coupled(circuit, place, 0.002, np.linspace(0.041, 0.999 * matched.diameter, 40))
     assert max(each.coefficient for each in smaller) < 1.0
 
 
@@ -396,7 +397,7 @@ class Both:
 
     whole: TwoPort
     circuit: Circuit
-    lumped: coupling.Coupled
+    lumped: coupling_loop.Coupled
 
     @property
     def ratio(self) -> float:
@@ -422,7 +423,7 @@ def of_diameter(frequency: float, diameter: float, clearance: float | None, bear
     resistance = float(found.resistance[0]) + internal.real * float(found.square.sum())
     circuit = Circuit(source(found), frequency, resistance, 50.0)
     place = centred(MIDDLE, AXIS) if clearance is None else inside(wire, clearance)
-    (lumped,) = coupling.coupled(circuit, place, 0.002, np.array([diameter]))
+    (lumped,) = coupling_loop.coupled(circuit, place, 0.002, np.array([diameter]))
     small = ring(diameter, 0.002, 40, bearing, float(lumped.centre[0]))
     return Both(two_port(wire, small, frequency, (internal, 0.0), known), circuit, lumped)
 
@@ -499,7 +500,7 @@ def test_kappa_of_a_polygon_is_between_its_ends(corners: Array, bearing: float) 
     found = solved(wire, np.array([frequency]))
     circuit = Circuit(source(found), frequency, float(found.resistance[0]), 50.0)
     centre = np.append(corners.mean(axis=0), 0.0)
-    (lumped,) = coupling.coupled(circuit, centred(centre, AXIS), 0.002, np.array([0.33]))
+    (lumped,) = coupling_loop.coupled(circuit, centred(centre, AXIS), 0.002, np.array([0.33]))
     away = centre - opposite(wire)
     small = ring(0.33, 0.002, 40, float(np.arctan2(away[1], away[0])) + bearing)
     whole = two_port(wire, Wire(small.nodes + centre, small.turn, 0.002), frequency)

@@ -20,6 +20,7 @@ from magsafe.physics import (
     conductor,
     convection,
     coupling,
+    coupling_loop,
     deratings,
     divided_voltage,
     ground,
@@ -315,8 +316,8 @@ def _coupling_size(row: Row) -> float:
     currents = SegmentCurrents(nodes, np.roll(nodes, -1, axis=0), even, even, radius)
     axis, edge = np.array([0.0, 0.0, 1.0]), np.array([-across, 0.0, 0.0])
     centred = "_centre_" in row["id"]
-    place = coupling.centred(0.0 * edge, axis) if centred else coupling.beside(edge, -edge, axis, 0.01)
-    found = coupling.matching_size(coupling.Circuit(currents, f, total, i["Z0"]), place, 0.002).matched
+    place = coupling_loop.centred(0.0 * edge, axis) if centred else coupling_loop.beside(edge, -edge, axis, 0.01)
+    found = coupling_loop.matching_size(coupling_loop.Circuit(currents, f, total, i["Z0"]), place, 0.002).matched
     assert found is not None
     return found.diameter / float(i["D_m"])
 
