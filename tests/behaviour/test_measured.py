@@ -33,7 +33,7 @@ from magsafe.design import as_built as built
 from magsafe.design.as_built import identity, standing
 from magsafe.design.model import Design, Measured
 from magsafe.design.reading import parse_design, read_design
-from magsafe.design.sweep import Sweep
+from magsafe.design.sweep import Sweep, read_sweep
 from magsafe.spread import Spread
 
 Tree = dict[str, Any]
@@ -762,3 +762,11 @@ def test_the_instrument_comes_off_before_anybody_transmits() -> None:
     sheet = measured(design, by_sweep(sweep, None, 0.02), sweep, date(2026, 5, 4))
     assert sheet.cautions[0].startswith("Instrument.")
     assert "off the loop before anybody transmits" in sheet.cautions[0]
+
+
+def test_the_sample_sweep_gives_the_record_in_its_design() -> None:
+    folder = Path(__file__).parents[2] / "sample_designs"
+    design, sweep = read_design(folder / "net_loft_balcony.toml"), read_sweep(folder / "net_loft_40m.s1p")
+    (kept,) = design.measured
+    made = record_of(design, by_sweep(sweep, None, 0.02), kept.date or "")
+    assert Measured.model_validate(made) == kept
