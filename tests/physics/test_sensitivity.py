@@ -136,7 +136,9 @@ def test_the_sheet_says_it_in_one_line(sample: Path) -> None:
         assert sheet.measure_first is None
         return
     assert sheet.measure_first is not None
-    assert sheet.measure_first.startswith("Measure first: the capacitor's losses")
+    # Where the volts are highest its Q was measured: that leaves no loss of the loop's own to ask for.
+    first = "the line's loss" if sample.stem == "net_loft_balcony" else "the capacitor's losses"
+    assert sheet.measure_first.startswith(f"Measure first: {first}")
     assert "\n" not in sheet.measure_first
 
 
