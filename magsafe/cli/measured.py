@@ -54,8 +54,8 @@ ReflectionError = Annotated[
         max=0.3,
     ),
 ]
-On = Annotated[
-    str | None, typer.Option("--on", metavar="DATE", help="The day of the measurement, as 2026-05-04; else today.")
+OnDate = Annotated[
+    str | None, typer.Option("--date", metavar="DATE", help="The day of the measurement, as 2026-05-04; else today.")
 ]
 Save = Annotated[bool, typer.Option("--save", help="Write it into DESIGN as a [[measured]] block, for check to use.")]
 Replace = Annotated[
@@ -78,7 +78,7 @@ def measured(  # noqa: PLR0913, PLR0917  (an option each)
     line_loss: LineLoss = None,
     coupled: Coupled = None,
     reflection_error: ReflectionError = 0.02,
-    on: On = None,
+    on: OnDate = None,
     save: Save = False,
     replace: Replace = False,
     picture: PicturePath = None,
@@ -171,9 +171,9 @@ def _day(text: str | None) -> "date | None":
     try:
         found = date.fromisoformat(text)
     except ValueError:
-        raise _refused("--on", repr(text[:40]), "a date such as 2026-05-04", "write year, month and day") from None
+        raise _refused("--date", repr(text[:40]), "a date such as 2026-05-04", "write year, month and day") from None
     if found > date.today():
-        raise _refused("--on", text, "a day that has been", "check the date")
+        raise _refused("--date", text, "a day that has been", "check the date")
     return found
 
 

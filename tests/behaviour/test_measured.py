@@ -532,9 +532,9 @@ REFUSED: list[tuple[tuple[str, ...], str]] = [
     (("--swr2", "14.097 MHz", "14.103 MHz", *POINTS[3:]), "within 2 % of a transmission"),
     (("--swr2", "5.2000 MHz", "9.7000 MHz", *POINTS[3:]), "one between 5 and 100000"),
     ((*BETWEEN, "--swr-at-resonance", "2.5", "--line-loss", "0 dB"), "below that of the points"),
-    ((*POINTS, "--on", "yesterday"), "'yesterday'"),
-    ((*POINTS, "--on", "2026-02-30"), "'2026-02-30'"),
-    ((*POINTS, "--on", TOMORROW), "a day that has been"),
+    ((*POINTS, "--date", "yesterday"), "'yesterday'"),
+    ((*POINTS, "--date", "2026-02-30"), "'2026-02-30'"),
+    ((*POINTS, "--date", TOMORROW), "a day that has been"),
     ((*POINTS, "--replace"), "neither --save nor --picture"),
     ((*POINTS, "--picture", "x.svg"), "a sweep, whose circle can be drawn"),
     (("--sweep", "x.s1p", "--picture", "x.pdf"), ".svg or .png"),
@@ -622,7 +622,7 @@ def test_a_sweep_without_a_resonance_names_its_file_and_moves_no_terminal(
 
 def test_the_machine_form_is_alone_and_valid(file: Path, capsys: pytest.CaptureFixture[str]) -> None:
     sweep = sweep_file(file.parent, KnownLoop(unloaded_q=2500.0, coupling=1.4, line_loss=0.5, noise=2e-4))
-    status = inside("measured", str(file), "--sweep", str(sweep), "--json", "--on", "2026-05-04")
+    status = inside("measured", str(file), "--sweep", str(sweep), "--json", "--date", "2026-05-04")
     told = capsys.readouterr()
     assert told.err == ""
     sheet = MeasuredSheet.model_validate_json(told.out)
@@ -719,7 +719,7 @@ def test_on_a_pipe_it_is_plain_text_of_that_width(columns: str, file: Path) -> N
 
 
 def test_the_text_tells_the_numbers_of_the_machine_form(file: Path, capsys: pytest.CaptureFixture[str]) -> None:
-    options = (*BETWEEN, "--swr-at-resonance", "1.5", "--line-loss", "0.5 dB", "--on", "2026-05-04")
+    options = (*BETWEEN, "--swr-at-resonance", "1.5", "--line-loss", "0.5 dB", "--date", "2026-05-04")
     inside("measured", str(file), *options, "--json")
     sheet = MeasuredSheet.model_validate_json(capsys.readouterr().out)
     inside("measured", str(file), *options)

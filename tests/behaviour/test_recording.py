@@ -243,7 +243,17 @@ def test_any_file_of_blocks_keeps_all_else_byte_for_byte(pieces: list[str], last
 
 # By the command --------------------------------------------------------------------------------------------
 
-POINTS = ("--swr2", "7.097 MHz", "7.103 MHz", "--swr-at-resonance", "1.0", "--line-loss", "0 dB", "--on", "2026-05-04")
+POINTS = (
+    "--swr2",
+    "7.097 MHz",
+    "7.103 MHz",
+    "--swr-at-resonance",
+    "1.0",
+    "--line-loss",
+    "0 dB",
+    "--date",
+    "2026-05-04",
+)
 
 
 def saved(file: Path, *more: str) -> int:
