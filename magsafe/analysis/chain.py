@@ -77,6 +77,7 @@ class Chain:
     of its reactance by the frequency, times it, over that reactance is `capacitor_steepness`, the highest voltage in it
     over that at its terminals `capacitor_crest`: 1 unless it is a line. `measured` is the unloaded Q that an instrument
     told, at the ends of its uncertainty: it decides the total resistance in place of the parts, whatever the corner.
+    `read` is the same as it was read; all of it below what the parts make, its upper end counts no lower than theirs.
     """
 
     frequency: float
@@ -99,6 +100,7 @@ class Chain:
     capacitor_steepness: float = 1.0
     capacitor_crest: float = 1.0
     measured: Spread | None = None
+    read: Spread | None = None
 
     def corners(self, states: Iterable[State], *, in_place: bool = True) -> tuple[Corner, ...]:
         """Return states with every excess of the reactance that the port's gap leaves open."""
@@ -399,10 +401,30 @@ def chain(design: Design, frequency: float, line: Outline, power: Spread) -> Cha
     )
     if made.tuned and line_capacitor.is_complete(design.capacitor):
         made = _of_its_sizes(made, design)
-    return replace(made, measured=_measured(made, design)) if made.tuned else made
+    return _with_measured(made, design) if made.tuned else made
 
 
-def _measured(made: Chain, design: Design) -> Spread | None:
+def _with_measured(made: Chain, design: Design) -> Chain:
+    """Return the chain with the Q that was measured; one lower than the parts make it takes no volts away."""
+    read = _read(made, design)
+    if read is None:
+        return made
+    if (read.high or 0.0) >= least_quality(made):
+        return replace(made, measured=read, read=read)
+    bare = max(read.high or 0.0, made.dangerous(made.quality, "bare"))
+    return replace(made, measured=Spread(read.low, read.likely, bare), read=read)
+
+
+def least_quality(made: Chain) -> float:
+    """Return the least unloaded Q that the parts make, with its stated error, whatever was measured.
+
+    Where no height bounds what the ground takes it is that without what the ground takes at most.
+    """
+    parts = replace(made, measured=None)
+    return min(parts.quality("high", each) for each in parts.most or parts.least) * (1.0 - parts.quality_error)
+
+
+def _read(made: Chain, design: Design) -> Spread | None:
     """Return the unloaded Q that was measured of the loop as it is, carried over to its frequency; None without.
 
     Radiation goes with the fourth power of the frequency, what soil takes about with its square, a conductor's loss
@@ -421,7 +443,21 @@ def _measured(made: Chain, design: Design) -> Spread | None:
     powers += [(1.0 + bent, part.at("likely", likely)) for part in (made.capacitor, *made.padding)]
     grows = sum(power * part for power, part in powers) / made.resistance_of_parts("likely", likely)
     carried, unsure = away ** (1.0 + 2.0 * bent - grows), max(away, 1.0 / away) ** CARRIED
-    return Spread(quality.low * carried / unsure, quality.likely * carried, quality.high * carried * unsure)
+    high = quality.high * carried * unsure / (1.0 - _cold_share(made, design))
+    return Spread(quality.low * carried / unsure, quality.likely * carried, high)
+
+
+def _cold_share(made: Chain, design: Design) -> float:
+    """Return what share of the resistance the conductor loses in the coldest air stated [1]; none where none is.
+
+    How warm it was when Q was measured no record tells: the temperature at the start of an over is taken.
+    """
+    made_of, air = design.loop.conductor, design.site.air_temperature
+    if air is None or air >= made_of.temperature:
+        return 0.0
+    warm, cold = (conductor_loss(made_of, made.frequency, each)[0].low for each in (made_of.temperature, air))
+    share = made.conductor.at("likely", made.likely) / made.resistance_of_parts("likely", made.likely)
+    return share * (1.0 - cold / warm)
 
 
 def _of_its_sizes(made: Chain, design: Design) -> Chain:

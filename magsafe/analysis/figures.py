@@ -154,8 +154,12 @@ def _tuned(chain: Chain) -> dict[str, Figure]:
             chain.voltage,
             chain.voltage_error,
             "V",
-            "crest of the RF at the crest of the envelope; its high end with the least resistance of free space, "
-            "perfect image and any soil",
+            "crest of the RF at the crest of the envelope"
+            + (
+                ""
+                if chain.measured
+                else "; its high end with the least resistance of free space, perfect image and any soil"
+            ),
             _LOOP_SOURCE,
         ),
         "capacitor_rms_current": _answer(

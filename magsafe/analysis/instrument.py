@@ -10,12 +10,16 @@ from magsafe.design.as_built import LEAST_COUPLING, MOST_COUPLING, MOST_REFLECTI
 from magsafe.design.model import Design, Measured
 from magsafe.design.sweep import Sweep
 from magsafe.physics.resonance_fit import Estimate, ResonanceFit, fit_resonance
-from magsafe.physics.swr_points import Branch, PointsQ, q_of_half_power_points, q_of_swr_points
+from magsafe.physics.swr_points import Branch, PointsQ, half_power_swr, q_of_swr_points
 from magsafe.spread import UNKNOWN, Spread
 
 By = Literal["sweep", "points of one SWR", "half-power points"]
 Way = Literal["over", "under"]
 
+_ONE_SWEEP = (
+    "one sweep does not show a resonance that moves while it is taken: sweep once upwards and once downwards, and "
+    "trust neither if they differ"
+)
 KEPT = 41  # points of a sweep that a record keeps for its picture
 WIDE = 6.0  # half-power widths to either side of resonance, within which they are kept
 
@@ -27,7 +31,8 @@ class Reading:
     `resonance` [Hz]; `unloaded_q`, `loaded_q`, `coupling` [1], the last unknown where the points do not tell its way;
     `line_loss` is that unfolded, or seen in the sweep, one way [dB]. `branches` name the two ways of coupling with what
     each means. `points` are frequency [Hz] and reflection at the loop's own terminals [1]. `noise` and `systematic` are
-    the two parts of the upper end of Q over Q [1], where a sweep tells them apart.
+    the two parts of the upper end of Q over Q [1], where a sweep tells them apart. `notes` are sentences about the
+    reading, `doubts` what speaks against it and its ends do not hold.
     """
 
     by: By
@@ -43,6 +48,7 @@ class Reading:
     noise: float | None = None
     systematic: float | None = None
     notes: tuple[str, ...] = ()
+    doubts: tuple[str, ...] = ()
 
 
 def by_sweep(sweep: Sweep, line_loss: Spread | None, reflection_error: float) -> Reading:
@@ -60,6 +66,12 @@ def by_sweep(sweep: Sweep, line_loss: Spread | None, reflection_error: float) ->
     """
     found = fit_resonance(sweep.frequency, sweep.reflection, reflection_error)
     quality = found.unloaded_q
+    if found.loss.high < 0.0:
+        raise ValueError(
+            "far from resonance the reflection is more than 1, beyond the instrument's error: calibrate the analyser "
+            "at its port and sweep again"
+        )
+    held = found.notes[:1] if found.delay_held else ()
     return Reading(
         by="sweep",
         resonance=_spread(found.resonance),
@@ -72,7 +84,8 @@ def by_sweep(sweep: Sweep, line_loss: Spread | None, reflection_error: float) ->
         residual=found.residual,
         noise=quality.noise / quality.value,
         systematic=quality.above / quality.value,
-        notes=(*found.notes, *_about_the_line(found.loss, line_loss)),
+        notes=(*held, _ONE_SWEEP),
+        doubts=(*found.notes[len(held) :], *_about_the_line(found.loss, line_loss)),
     )
 
 
@@ -84,8 +97,6 @@ def _spread(found: Estimate) -> Spread:
 
 def _about_the_line(seen: Estimate, stated: Spread | None) -> tuple[str, ...]:
     """Return what is to be said of the loss that a sweep shows, held against the line's as stated."""
-    if seen.high < 0.0:
-        return ("far from resonance the reflection is more than 1: calibrate the analyser at its port and sweep again",)
     if stated is None:
         return ()
     if (stated.low or 0.0) > seen.high:
@@ -124,6 +135,7 @@ def by_points(
     resolution: float,
     reflection_error: float,
     way: Way | None,
+    swr_at_points: float | None = None,
 ) -> Reading:
     """Return what two frequencies say: of an SWR of 2, or the half-power points.
 
@@ -136,28 +148,28 @@ def by_points(
     resolution : how far each frequency may be off [Hz]
     reflection_error : how far each reading of the reflection factor may be off [1]
     way : of coupling, where something else tells it; None carries both
+    swr_at_points : the SWR read at the half-power points [1]; None for the one that belongs to them
 
     Raises
     ------
     ValueError : the points do not go with each other, or with the line's loss; the message says why
     """
+    ratio, notes = 2.0, tuple[str, ...]()
     if half_power:
-        found = q_of_half_power_points(
-            *ends,
-            swr_at_resonance,
-            line_loss=line_loss,
-            frequency_resolution=resolution,
-            reflection_error=reflection_error,
+        there = half_power_swr(swr_at_resonance, line_loss.likely or 0.0)
+        ratio = swr_at_points or there
+        notes = (
+            f"through this line half power is where the instrument reads an SWR of {there:.3g}, and {ratio:.3g} was "
+            "taken to be read there: points of another SWR give another Q, and --swr-at-points says which",
         )
-    else:
-        found = q_of_swr_points(
-            *ends,
-            2.0,
-            swr_at_resonance,
-            line_loss=line_loss,
-            frequency_resolution=resolution,
-            reflection_error=reflection_error,
-        )
+    found = q_of_swr_points(
+        *ends,
+        ratio,
+        swr_at_resonance,
+        line_loss=line_loss,
+        frequency_resolution=resolution,
+        reflection_error=reflection_error,
+    )
     branches = (("overcoupled", found.overcoupled), ("undercoupled", found.undercoupled))
     chosen = {"over": found.overcoupled, "under": found.undercoupled}.get(way or "")
     both = _both(found)
@@ -169,7 +181,7 @@ def by_points(
         coupling=UNKNOWN if chosen is None else chosen.coupling,
         line_loss=line_loss,
         branches=branches if chosen is None else (),
-        notes=_about_the_branches(found) if chosen is None else (),
+        notes=(*notes, *(_about_the_branches(found) if chosen is None else ())),
     )
 
 
@@ -191,15 +203,23 @@ def _about_the_branches(found: PointsQ) -> tuple[str, ...]:
 
 def record_of(design: Design, reading: Reading, on: str) -> dict[str, Any]:
     """Return the record of a reading made on a day (ISO), as a [[measured]] block of a design file has it."""
-    coupling, height = reading.coupling, design.loop.centre_height
+    coupling, height, resonance = reading.coupling, design.loop.centre_height, reading.resonance.likely or 0.0
+
+    def away(frequency: float) -> float:
+        return abs(frequency - resonance)
+
     found: dict[str, Any] = {
-        "frequency": _megahertz(reading.resonance.likely or 0.0),
+        "frequency": _megahertz(resonance),
         "unloaded_q": _rounded(reading.unloaded_q),
         "by": reading.by,
+        "tuned_for": _megahertz(min((each.frequency for each in design.transmission), key=away)),
+        "line_loss": {name: f"{max(0.0, loss or 0.0):.4f} dB" for name, loss in _ends(reading.line_loss).items()},
         "date": on,
         "ground": design.ground_name or NO_GROUND,
         "design": identity(design),
     }
+    if reading.doubts:
+        found["notes"] = list(reading.doubts)
     if height is not None:
         found["centre_height"] = f"{height:.9g} m"
     if (coupling.low or 0.0) >= LEAST_COUPLING and (coupling.high or inf) <= MOST_COUPLING:
@@ -222,5 +242,8 @@ def _megahertz(frequency: float) -> str:
 
 def _rounded(spread: Spread) -> dict[str, float]:
     """Return a spread as a file has it."""
-    ends = {"low": spread.low, "likely": spread.likely, "high": spread.high}
-    return {name: float(f"{end or 0.0:.6g}") for name, end in ends.items()}
+    return {name: float(f"{end or 0.0:.6g}") for name, end in _ends(spread).items()}
+
+
+def _ends(spread: Spread) -> dict[str, float | None]:
+    return {"low": spread.low, "likely": spread.likely, "high": spread.high}

@@ -62,8 +62,12 @@ def one_known(design: Design, chain: Chain) -> Iterator[tuple[str, Chain]]:
     for i, joint in enumerate(design.loop.joint):
         joints = (*chain.joints[:i], _known(chain.joints[i]), *chain.joints[i + 1 :])
         yield f"the resistance of joint {joint.name}", replace(chain, joints=joints)
-    if chain.power.low != chain.power.high:
-        yield "the line's loss", replace(chain, power=Spread.exact(chain.power.likely or 0.0))
+    loss = design.feed.line_loss
+    if loss is not None and loss.high > 0.0:
+        # The high end counts the least loss, and no mismatch.
+        least = 0.0 if loss.single else loss.low
+        arriving = (chain.power.high or 0.0) * 10.0 ** (-(loss.likely - least) / 10.0)
+        yield "the line's loss", replace(chain, power=Spread.exact(arriving))
     if design.ground_name is None or (design.ground_name != "none" and design.loop.centre_height is None):
         # A further key would only choose one of the states that are counted now; the likely one stands for it.
         around = replace(chain.around, least=(chain.around.likely,))

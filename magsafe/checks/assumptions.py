@@ -40,7 +40,12 @@ def _measured(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]
         if found is None:
             continue
         used.add(id(found.record))
-        if point.chain is not None and point.chain.measured is not None:
+        if point.chain is not None and point.chain.measured != point.chain.read:
+            yield (
+                f"{words.short(title)}: the likely values rest on the Q of {words.short(found.record.date or '')}, "
+                "all of which lies below what the parts make, so volts, amps and fields at worst are by the parts."
+            )
+        elif point.chain is not None and point.chain.measured is not None:
             yield (
                 f"{words.short(title)}: Q, total resistance, volts, amps, fields and efficiency rest on the Q measured "
                 f"on {words.short(found.record.date or '')}, as the loop stood that day; rain, salt, loose clamps and "
@@ -57,7 +62,9 @@ def _ground(design: Design, points: Sequence[OperatingPoint]) -> Iterator[str]:
     if name == "none":
         yield "Free space only: no ground, floor or wall is near, as the design states."
         return
-    if any(point.ground_left_out for point in points):
+    if points and all(point.chain is not None and point.chain.measured is not None for point in points):
+        yield "What the ground takes of the measured resistance is as computed; efficiency goes by that."
+    elif any(point.ground_left_out for point in points):
         yield (
             "Likely values leave the ground out. Volts and amps at worst take the least resistance that free space, "
             "a perfect plane or any soil can give."

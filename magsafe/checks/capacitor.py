@@ -2,6 +2,7 @@
 
 from dataclasses import replace
 
+from magsafe.analysis.capacitor_feed import by_capacitors
 from magsafe.analysis.capacitor_network import UNSTATED_TOLERANCE
 from magsafe.analysis.capacitor_parts import CHANGE, main_capacitance, main_part
 from magsafe.analysis.capacitor_reach import capacitance_reach
@@ -18,6 +19,7 @@ from magsafe.checks.line_capacitor import by_sizes_alone
 from magsafe.checks.sheet import Finding
 from magsafe.design.model import Design
 from magsafe.design.ratings import look_for
+from magsafe.spread import Spread
 
 _VOLTAGE = Check(
     "capacitor.voltage",
@@ -98,7 +100,7 @@ def current(design: Design, point: OperatingPoint) -> Finding:
 def tuning_range(design: Design, point: OperatingPoint) -> Finding:
     """Can the capacitor tune this frequency, with what its padding leaves for it?"""
     part, frequency = design.capacitor, point.transmission.frequency
-    as_stated, value = main_capacitance(point)
+    as_stated, value = (_with_match(design, point, each) for each in main_capacitance(point))
     if missing := _not_reached(point) or _too_low(design):
         return unproven(_RANGE, missing, value)
     if impossible := main_part(point).missing:
@@ -122,6 +124,18 @@ def tuning_range(design: Design, point: OperatingPoint) -> Finding:
     usual = f" (not given for all of it: {100.0 * UNSTATED_TOLERANCE:g} % taken, common practice)" if guessed else ""
     told = f"what the padding and its tolerance{usual} leave for it: {found.because}"
     return found.model_copy(update={"because": told})
+
+
+def _with_match(design: Design, point: OperatingPoint, needed: Spread) -> Spread:
+    """Return what is needed [F] where a series capacitor to the line tunes too: less by up to all of that."""
+    if not by_capacitors(design) or needed.low is None or needed.likely is None:
+        return needed
+    part = design.feed.series_capacitor
+    halves = 2.0 if part is not None and part.balanced else 1.0
+    matching = point.figures.series_capacitance.spread
+    stated = None if part is None else part.capacitance
+    likely, most = (stated or each or 0.0 for each in (matching.likely, matching.high))
+    return Spread(needed.low - most / halves, needed.likely - likely / halves, needed.high)
 
 
 def _too_low(design: Design) -> str:

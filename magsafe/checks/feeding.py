@@ -25,6 +25,8 @@ _MATCH = Check(
     "1",
 )
 _CALLED = "the series capacitor"
+_UNSIZED = "feed.series_capacitor.capacitance is not given, and what it carries hangs on it"
+_SIZE = "state its capacitance; series_capacitance in the figures is what would match"
 _AS_STATED = "the series capacitor's rating as stated"
 
 
@@ -57,6 +59,11 @@ def _series_capacitor(design: Design, point: OperatingPoint) -> Iterator[Finding
         yield from (unproven(check, str(error)) for check in (volts, amps, warmth))
         return
     use = PartUse(found.voltage, found.bare_voltage, found.current, found.bare_current)
+    if part.capacitance is None:
+        # One part serves every transmission, and matches none but one: what it carries hangs on its size.
+        yield voltage_of_part(volts, design, point, (part, use), _CALLED)
+        yield from (unproven(check, _UNSIZED, do=_SIZE) for check in (amps, warmth))
+        return
     current = current_of_part(amps, design, point, (part, use, found.heat), _CALLED)
     powers = []
     if part.rated_reactive_power is not None:

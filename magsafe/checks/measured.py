@@ -80,7 +80,7 @@ def measured(design: Design, reading: Reading, sweep: Sweep | None = None, on: d
         power_ceiling=CeilingsRecord(computed=plain.power_ceiling, measured=built.power_ceiling),
         findings=findings,
         verdict=worst(tuple(each.verdict for each in findings)),
-        notes=reading.notes,
+        notes=(*reading.notes, *reading.doubts),
         cautions=(_INSTRUMENT, *after.cautions),
     )
 

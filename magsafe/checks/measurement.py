@@ -12,7 +12,7 @@ from magsafe.spread import Spread
 def measurement(design: Design, point: OperatingPoint) -> MeasurementRecord | None:
     """Return the measurement that decides a transmission's resistance; None where none does."""
     found, made = standing(design, point.transmission.frequency), point.chain
-    if found is None or made is None or made.measured is None:
+    if found is None or made is None or made.read is None:
         return None
     record = found.record
     if record.frequency is None or record.unloaded_q is None:
@@ -22,7 +22,7 @@ def measurement(design: Design, point: OperatingPoint) -> MeasurementRecord | No
         by=record.by,
         resonance=record.frequency,
         unloaded_q=_read(record.unloaded_q),
-        carried_q=_value(made.measured),
+        carried_q=_value(made.read),
         computed_q=_value(computed_quality(made)),
         coupling=None if record.coupling is None else _read(record.coupling),
         points=tuple(record.points),

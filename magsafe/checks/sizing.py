@@ -13,6 +13,7 @@ from magsafe.analysis.gap import site_air
 from magsafe.analysis.losses import Loss, among
 from magsafe.analysis.operating_point import OperatingPoint, operating_point
 from magsafe.analysis.rated_voltage import altitude_derating
+from magsafe.checks.as_built import as_built
 from magsafe.checks.ceiling import ceiling, least
 from magsafe.checks.run import check
 from magsafe.checks.sheet import DesignRecord, Finding, Sheet, Value, worst
@@ -69,8 +70,11 @@ def sizing(design: Design, power: float | None = None, on: date | None = None) -
     power : the envelope power on every transmission [W]; None for the design's own
     on : the date on the sheet; today where it is not given
     """
-    # Another capacitor makes another Q, so what was measured with this one sizes none.
-    used = (design if power is None else at_power(design, power)).model_copy(update={"measured": []})
+    used = design if power is None else at_power(design, power)
+    too_good = _too_good(used)
+    if not too_good:
+        # Another capacitor makes another Q, so what was measured with this one sizes none.
+        used = used.model_copy(update={"measured": []})
     origin = design.origin
     blank = CapacitorSheet(
         magsafe=__version__,
@@ -87,7 +91,7 @@ def sizing(design: Design, power: float | None = None, on: date | None = None) -
         return blank.model_copy(update={"transmissions": transmissions, "why": _NO_CAPACITOR})
     sheet = check(_without_people(used))
     shared = _own(sheet.findings)
-    found = tuple(_own(point.findings) for point in sheet.operating_points)
+    found = tuple((*_own(point.findings), *too_good.get(i, ())) for i, point in enumerate(sheet.operating_points))
     uses = tuple(use for i, point in enumerate(points) for use in _uses(i, point))
     return blank.model_copy(
         update={
@@ -104,16 +108,26 @@ def sizing(design: Design, power: float | None = None, on: date | None = None) -
             "tuning": _tuning(used, points),
             "findings": found,
             "shared_findings": shared,
-            "notes": (*_notes(used, uses), *_unmeasured(design)),
+            "notes": (*_notes(used, uses), *_unmeasured(used, design)),
             "cautions": _cautions(sheet),
         }
     )
 
 
-def _unmeasured(design: Design) -> tuple[str, ...]:
-    """Return that a measured Q counts for nothing here; empty where the design holds none."""
+def _too_good(design: Design) -> dict[int, tuple[Finding, ...]]:
+    """Return the stops of transmissions whose measured Q is higher than the parts can make, by their index."""
+    if not design.measured or design.capacitor.kind == "none":
+        return {}
+    judged = ((i, as_built(design, operating_point(design, each))) for i, each in enumerate(design.transmission))
+    return {i: (each,) for i, each in judged if each is not None and each.verdict == "stop"}
+
+
+def _unmeasured(used: Design, design: Design) -> tuple[str, ...]:
+    """Return what becomes of a measured Q here; empty where the design holds none."""
     if not design.measured:
         return ()
+    if used.measured:
+        return ("The Q in [measured] is higher than the parts can make it, and so are the volts: all this counts it.",)
     return (
         "The Q in [measured] is that of the loop with the capacitor that it has; a better one has more, and more "
         "volts. All this is sized by the parts alone; magsafe check counts the measured Q.",

@@ -32,6 +32,10 @@ AtResonance = Annotated[
     float | None,
     typer.Option("--swr-at-resonance", metavar="SWR", help="The lowest SWR between them, as read.", min=1.0, max=20.0),
 ]
+AtPoints = Annotated[
+    float | None,
+    typer.Option("--swr-at-points", metavar="SWR", help="The SWR read at the half-power points.", min=1.0, max=100.0),
+]
 LineLoss = Annotated[
     str | None,
     typer.Option(
@@ -50,7 +54,7 @@ ReflectionError = Annotated[
     typer.Option(
         "--reflection-error",
         help="Bound of the instrument's own error in the reflection factor.",
-        min=0.0,
+        min=0.005,
         max=0.3,
     ),
 ]
@@ -66,6 +70,7 @@ PicturePath = Annotated[
     typer.Option("--picture", metavar="FILE", help="Draw circle and SWR, as .svg or .png, by its ending."),
 ]
 
+CONNECTOR = 0.1  # dB, more than is said of a line loss that is one value (common practice)
 SINGLE = 0.2  # of a line loss that is one value: what tables of cables leave (common practice)
 
 
@@ -75,6 +80,7 @@ def measured(  # noqa: PLR0913, PLR0917  (an option each)
     swr2: Swr2 = None,
     half_power: HalfPower = None,
     swr_at_resonance: AtResonance = None,
+    swr_at_points: AtPoints = None,
     line_loss: LineLoss = None,
     coupled: Coupled = None,
     reflection_error: ReflectionError = 0.02,
@@ -92,6 +98,8 @@ def measured(  # noqa: PLR0913, PLR0917  (an option each)
     """
     day = _day(on)
     points = _points(sweep, swr2, half_power, swr_at_resonance, line_loss, coupled)
+    if swr_at_points is not None and half_power is None:
+        raise _refused("--swr-at-points", "no --half-power beside it", "half-power points", "leave it out")
     file = _picture_file(picture, sweep, replace=replace)
     if save and design == "-":
         raise _refused("--save", "a design from standard input", "a file to write into", "name the design's file")
@@ -100,7 +108,8 @@ def measured(  # noqa: PLR0913, PLR0917  (an option each)
     if points is None:
         found, reading = _swept(Path(sweep or ""), line_loss, reflection_error)
     else:
-        found, reading = None, _pointed(points, swr_at_resonance or 1.0, line_loss or "", reflection_error, coupled)
+        ratios = (swr_at_resonance or 1.0, swr_at_points)
+        found, reading = None, _pointed(points, ratios, line_loss or "", reflection_error, coupled)
     sheet = _held_against(read, reading, found, day)
     if save:
         _save(Path(design), read, reading, sheet.date, replace=replace)
@@ -209,7 +218,11 @@ def _swept(path: Path, line_loss: str | None, reflection_error: float) -> "tuple
 
 
 def _pointed(
-    points: tuple[tuple[str, str], bool], swr: float, line_loss: str, reflection_error: float, coupled: str | None
+    points: tuple[tuple[str, str], bool],
+    ratios: tuple[float, float | None],
+    line_loss: str,
+    reflection_error: float,
+    coupled: str | None,
 ) -> "Reading":
     from magsafe.analysis.instrument import by_points  # noqa: PLC0415
 
@@ -222,12 +235,13 @@ def _pointed(
     try:
         return by_points(
             (first, last),
-            swr,
+            ratios[0],
             half_power=half_power,
             line_loss=_loss(line_loss),
             resolution=max(fine, coarse),
             reflection_error=reflection_error,
             way="over" if coupled == "over" else "under" if coupled == "under" else None,
+            swr_at_points=ratios[1],
         )
     except ValueError as error:
         raise _unfit(option, error) from None
@@ -258,7 +272,8 @@ def _loss(text: str) -> "Spread":
 
     values = [_quantity("--line-loss", each, DECIBEL) for each in text.split(",")]
     if len(values) == 1:
-        return Spread.exact(values[0]).widened(SINGLE, SINGLE)
+        # More loss than is unfolded makes Q, and the volts, read low: a connector's is added at that end.
+        return Spread((1.0 - SINGLE) * values[0], values[0], (1.0 + SINGLE) * values[0] + CONNECTOR)
     if len(values) == 3 and 0.0 <= values[0] <= values[1] <= values[2]:
         return Spread(*values)
     raise _refused("--line-loss", repr(text[:60]), "one value, or low, likely and high in order", 'write "0.4 dB"')

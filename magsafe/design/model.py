@@ -463,14 +463,18 @@ class Measured(Block):
     """What an instrument said of the loop as built, at one resonance; `magsafe measured --save` writes it.
 
     `unloaded_q` is a 95 % interval about the likely value, `coupling` the load that the feed puts on the loop over the
-    loop's own. `design` tells which loop was measured (`as_built.identity`); `points` are frequency, real and imaginary
-    part of the reflection at the loop's own terminals, for a picture.
+    loop's own, `tuned_for` the frequency of the transmission, whose padding was joined, `line_loss` what was unfolded,
+    `notes` what speaks against the reading. `design` tells which loop was measured (`as_built.identity`); `points` are
+    frequency, real and imaginary part of the reflection at the loop's own terminals, for a picture.
     """
 
     frequency: Frequency | None = None
     unloaded_q: QualityFactor | None = None
     coupling: Coupling | None = None
     by: Literal["sweep", "points of one SWR", "half-power points"] | None = None
+    tuned_for: Frequency | None = None
+    line_loss: Loss | None = None
+    notes: Annotated[list[Name], Field(max_length=20)] = []
     date: Name | None = None
     centre_height: Annotated[float, Quantity(LENGTH, 0.0, 500.0)] | None = None
     ground: Name | None = None
