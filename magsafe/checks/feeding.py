@@ -50,19 +50,20 @@ def _part(design: Design) -> SeriesCapacitor:
 def _series_capacitor(design: Design, point: OperatingPoint) -> Iterator[Finding]:
     """Yield whether the small capacitor between line and loop stands its volts, amps and heat."""
     part, volts, amps, warmth = _part(design), _volts(), _amps(), _warmth()
+    carried = (amps, *(() if part.rated_reactive_power is None else (_reactive(),)), warmth)
     if point.chain is None:
-        yield from (unproven(check, "; ".join(point.out_of_range)) for check in (volts, amps, warmth))
+        yield from (unproven(check, "; ".join(point.out_of_range)) for check in (volts, *carried))
         return
     try:
         found = capacitor_feed(design, point.chain)
     except ValueError as error:
-        yield from (unproven(check, str(error)) for check in (volts, amps, warmth))
+        yield from (unproven(check, str(error)) for check in (volts, *carried))
         return
     use = PartUse(found.voltage, found.bare_voltage, found.current, found.bare_current)
     if part.capacitance is None:
         # One part serves every transmission, and matches none but one: what it carries hangs on its size.
         yield voltage_of_part(volts, design, point, (part, use), _CALLED)
-        yield from (unproven(check, _UNSIZED, do=_SIZE) for check in (amps, warmth))
+        yield from (unproven(check, _UNSIZED, do=_SIZE) for check in carried)
         return
     current = current_of_part(amps, design, point, (part, use, found.heat), _CALLED)
     powers = []

@@ -1,6 +1,5 @@
-"""Unloaded Q from two frequencies of one standing-wave ratio, or from the half-power points, read through a line."""
+"""Unloaded Q from two frequencies of one standing-wave ratio, such as the half-power points, read through a line."""
 
-from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -177,54 +176,9 @@ def q_of_swr_points(
     _must_be_errors(frequency_resolution, reflection_error)
     _must_be_a_loss(line_loss)
 
-    def product(away: Array, there: Array, kappa: Array) -> Array:
-        if not (there < away).all():
-            raise ValueError(
-                "within the error of the reflection factor the points have the ratio of the resonance: "
-                "take points of a higher ratio"
-            )
-        return tuning_times_q(away, kappa)
-
     resonance, tuning = _tuning(lower, upper, frequency_resolution)
     readings = (float(reflection_of(swr)), float(reflection_of(swr_at_resonance)))
-    return _points(resonance, tuning, readings, line_loss, reflection_error, product)
-
-
-def q_of_half_power_points(
-    lower: float,
-    upper: float,
-    swr_at_resonance: float,
-    *,
-    line_loss: Spread = Spread.exact(0.0),  # noqa: B008  (frozen)
-    frequency_resolution: float = 0.0,
-    reflection_error: float = 0.0,
-) -> PointsQ:
-    """Return unloaded Q by the frequencies at which the loop takes half of what it takes at resonance.
-
-    Parameters
-    ----------
-    lower, upper : the frequencies below and above resonance [Hz]; `half_power_swr` tells what is read there
-    swr_at_resonance : the lowest ratio between them, as read [1]
-    line_loss, frequency_resolution, reflection_error : as `q_of_swr_points` [dB, Hz, 1]; the error is that of the
-        reading at resonance
-
-    Returns
-    -------
-    PointsQ, its ends the worst case
-
-    Raises
-    ------
-    ValueError : values out of order or range, or a reflection that comes to 1 or more behind the line's loss
-
-    Valid     as `q_of_swr_points`.
-    Source    loaded Q is one over |f/f0 - f0/f| at the half-power points, unloaded Q (1 + kappa) times that.
-    """
-    _must_be_a_ratio(swr_at_resonance)
-    _must_be_errors(frequency_resolution, reflection_error)
-    _must_be_a_loss(line_loss)
-    resonance, tuning = _tuning(lower, upper, frequency_resolution)
-    reading = float(reflection_of(swr_at_resonance))
-    return _points(resonance, tuning, (reading, reading), line_loss, reflection_error, lambda _, __, kappa: 1.0 + kappa)
+    return _points(resonance, tuning, readings, line_loss, reflection_error)
 
 
 # The ends --------------------------------------------------------------------------------------------------
@@ -236,9 +190,8 @@ def _points(
     readings: tuple[float, float],
     line_loss: Spread,
     error: float,
-    product: Callable[[Array, Array, Array], Array],
 ) -> PointsQ:
-    """Return Q by readings of the reflection (at the points, at resonance) and a product of Q and tuning by them.
+    """Return Q by readings of the reflection, at the points and at resonance.
 
     Q goes up with the reading at the points throughout; by that at resonance and the loss it may turn in between.
     """
@@ -248,11 +201,16 @@ def _points(
     low, likely, high = _known(line_loss)
     loss = np.concatenate((np.linspace(low, likely, _BETWEEN // 2), [likely], np.linspace(likely, high, _BETWEEN // 2)))
     unfolded = _unfolded(away, loss[None, None, :]), _unfolded(there, loss[None, None, :])
+    if not (unfolded[1] < unfolded[0]).all():
+        raise ValueError(
+            "within the error of the reflection factor the points have the ratio of the resonance: "
+            "take points of a higher ratio"
+        )
     branches = []
     middle = 1, _BETWEEN // 2, _BETWEEN // 2
     narrow, usual, wide = _known(tuning)
     for kappa in couplings(unfolded[1]):
-        q = np.broadcast_to(product(*unfolded, kappa), (len(_ENDS), _BETWEEN, loss.size))
+        q = np.broadcast_to(tuning_times_q(unfolded[0], kappa), (len(_ENDS), _BETWEEN, loss.size))
         every = np.broadcast_to(kappa, q.shape)
         branches.append(
             Branch(

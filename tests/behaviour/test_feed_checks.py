@@ -170,10 +170,10 @@ def test_a_part_that_is_rated_for_what_it_sees_is_within() -> None:
 
 def test_a_part_of_no_size_is_judged_by_its_volts_alone() -> None:
     """It serves every transmission and matches none but one, so what it carries hangs on its size."""
-    found = found_of(feed=series(capacitance=None))
-    assert list(found) == [VOLTS, AMPS, WARM]
+    found = found_of(feed=series(capacitance=None, rated_reactive_power="20 kVA"))
+    assert list(found) == [VOLTS, AMPS, REACTIVE, WARM]
     assert found[VOLTS].verdict == "clear"
-    for name in (AMPS, WARM):
+    for name in (AMPS, REACTIVE, WARM):
         assert found[name].verdict == "unproven"
         assert "capacitance is not given" in found[name].because
         assert "state its capacitance" in found[name].do
